@@ -1,0 +1,110 @@
+// Fields that contradict each other although each is good alone.
+#include <glint/core/constants.h>
+#include <glint/design/load.h>
+
+#include <fmt/format.h>
+
+namespace glint {
+namespace {
+
+std::string show(double value, Kind kind) { return show_quantity(value, kind); }
+
+void check_timing(const Design& design, std::vector<Problem>& problems) {
+    const double period = 1 / design.firing.repetition;
+    if (design.drive.pulse_width > period)
+        problems.push_back({.what = fmt::format("a pulse of {} is longer than the {} from shot to shot",
+                                                show(design.drive.pulse_width, Kind::time), show(period, Kind::time)),
+                            .accepted = "a pulse_width up to 1 / firing/repetition",
+                            .path = "drive/pulse_width"});
+    // The histogram of one shot must end before the next shot, else echoes could not be told apart.
+    const PhotonCounting& counting = design.receiver.photon_counting;
+    const double flight = 2 * counting.gate / speed_of_light;
+    if (flight > period)
+        problems.push_back({.what = fmt::format("a gate of {} takes {}, but the next shot leaves after {}",
+                                                show(counting.gate, Kind::length), show(flight, Kind::time),
+                                                show(period, Kind::time)),
+                            .accepted = fmt::format("a gate up to {}, or a firing/repetition up to {}",
+                                                    show(period * speed_of_light / 2, Kind::length),
+                                                    show(1 / flight, Kind::frequency)),
+                            .path = "receiver/photon_counting/gate"});
+    if (counting.bin > flight)
+        problems.push_back({.what = "one bin is longer than the whole gate",
+                            .accepted = fmt::format("a bin up to {}", show(flight, Kind::time)),
+                            .path = "receiver/photon_counting/bin"});
+}
+
+void check_band(const Design& design, std::vector<Problem>& problems) {
+    const Filter& filter = design.receiver.filter;
+    const double low = filter.center - filter.width / 2, high = filter.center + filter.width / 2;
+    const double wavelength = design.emitters.wavelength;
+    if (wavelength < low || wavelength > high)
+        problems.push_back({.what = fmt::format("the filter passes {} to {}, the emitters send {}",
+                                                show_quantity(low, Kind::length, 4), show_quantity(high, Kind::length, 4),
+                                                show_quantity(wavelength, Kind::length, 4)),
+                            .accepted = "a pass band that holds emitters/wavelength",
+                            .path = "receiver/filter/center"});
+    if (low < 400e-9 || high > 1700e-9)
+        problems.push_back({.what = "the pass band leaves the range of the solar spectrum known here",
+                            .accepted = "a band within 400 nm to 1700 nm",
+                            .path = "receiver/filter/width"});
+}
+
+void check_addressing(const Design& design, std::vector<Problem>& problems) {
+    const Layout& layout = design.emitters.layout;
+    const Addressing& addressing = design.emitters.addressing;
+    const bool raster = layout.kind == LayoutKind::grid || layout.kind == LayoutKind::hexagonal;
+    const AddressingScheme scheme = addressing.scheme;
+    if (scheme == AddressingScheme::list && layout.kind != LayoutKind::list)
+        problems.push_back({.what = "zones come from the emitter list, but the layout is no list",
+                            .accepted = "emitters/layout kind=\"list\", or another scheme",
+                            .path = "emitters/addressing/scheme"});
+    const bool needs_lines = scheme == AddressingScheme::rows || scheme == AddressingScheme::columns ||
+                             scheme == AddressingScheme::interleaved || scheme == AddressingScheme::matrix;
+    if (needs_lines && !raster)
+        problems.push_back({.what = "the layout has no rows and columns to wire",
+                            .accepted = "scheme individual, blocks or, with a list, list",
+                            .path = "emitters/addressing/scheme"});
+    if (!raster) return;
+    const auto divide = [&](std::optional<int> zones, int emitters, const char* which) {
+        if (zones && emitters % *zones != 0)
+            problems.push_back({.what = fmt::format("{} {} of zones do not divide the {} {} of emitters", *zones, which,
+                                                    emitters, which),
+                                .accepted = fmt::format("a divisor of {}", emitters),
+                                .path = fmt::format("emitters/addressing/{}", which)});
+    };
+    divide(addressing.rows, layout.rows, "rows");
+    divide(addressing.columns, layout.columns, "columns");
+}
+
+void check_optics(const Design& design, std::vector<Problem>& problems) {
+    int lenses = 0;
+    bool diffused = false;
+    for (const OpticalElement& element : design.optics.elements) {
+        if (std::holds_alternative<Diffuser>(element)) {
+            if (diffused)
+                problems.push_back({.what = "a second diffuser", .accepted = "one", .path = "optics/diffuser[2]"});
+            diffused = true;
+            continue;
+        }
+        ++lenses;
+        if (lenses > 1)
+            problems.push_back({.what = "a second lens", .accepted = "one, with the focal length of the whole",
+                                .path = "optics/lens[2]"});
+        if (diffused)
+            problems.push_back({.what = "a lens behind a diffuser", .accepted = "the lens before the diffuser",
+                                .path = "optics/lens"});
+    }
+}
+
+}  // namespace
+
+std::vector<Problem> contradictions(const Design& design) {
+    std::vector<Problem> problems;
+    check_timing(design, problems);
+    check_band(design, problems);
+    check_addressing(design, problems);
+    check_optics(design, problems);
+    return problems;
+}
+
+}  // namespace glint

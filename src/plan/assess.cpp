@@ -1,0 +1,132 @@
+// One design worked through from the emitter to the verdict.
+#include <glint/plan/assess.h>
+#include <glint/plan/requirements.h>
+#include <glint/scene/scene_file.h>
+
+#include <algorithm>
+#include <fmt/format.h>
+
+namespace glint {
+namespace {
+
+std::vector<Point> form_points(const Returns& returns, int columns, double least_probability) {
+    std::vector<Point> points;
+    const auto pixel = [&](const Return& entry) { return entry.row * columns + entry.column; };
+    for (std::size_t first = 0; first < returns.list.size();) {
+        // A pixel lit in several dwells gives one point: that of its surest return.
+        const Return* best = &returns.list[first];
+        std::size_t next = first;
+        for (; next < returns.list.size() && pixel(returns.list[next]) == pixel(returns.list[first]); ++next)
+            if (returns.list[next].detection.probability > best->detection.probability) best = &returns.list[next];
+        first = next;
+        if (best->detection.probability < least_probability) continue;
+        points.push_back({.position = best->point, .zone = best->zone, .column = best->column, .row = best->row, .object = best->object,
+                          .range = best->range, .signal = best->detection.signal, .precision = best->detection.precision,
+                          .probability = best->detection.probability});
+    }
+    return points;
+}
+
+std::vector<ZoneReport> report_zones(const Assessment& assessment, std::vector<ZoneField> fields, std::vector<ZoneLanding> landings) {
+    std::vector<ZoneReport> zones(fields.size());
+    for (const int zone : assessment.array.zone_of) ++zones[zone].emitters;
+    for (std::size_t z = 0; z < zones.size(); ++z) {
+        zones[z].field = fields[z];
+        zones[z].landing = std::move(landings[z]);
+        zones[z].shot_energy = fields[z].power * assessment.plan.pulse_width;
+    }
+    for (const Return& entry : assessment.returns.list) {
+        ZoneReport& zone = zones[entry.zone];
+        ++zone.returns;
+        zone.nearest_return = zone.nearest_return == 0 ? entry.range : std::min(zone.nearest_return, entry.range);
+        zone.farthest_return = std::max(zone.farthest_return, entry.range);
+    }
+    for (const Point& point : assessment.points) ++zones[point.zone].points;
+    return zones;
+}
+
+void refuse_blind_receiver(const Returns& returns, std::span<const PixelLight> lights) {
+    if (std::ranges::none_of(lights, [](const PixelLight& light) { return light.intensity > 0; }))
+        throw Error(Problem{.what = "the receiver sees nothing: no zone lights any part of its field",
+                            .accepted = "a receiver field and a lit field that overlap",
+                            .path = "receiver/lens/focal_length"});
+    if (returns.pixels_seeing == 0)
+        throw Error(Problem{.what = "the receiver sees nothing: no surface of the scene is in its field within the gate",
+                            .accepted = "a placement that looks at the scene, or a longer gate",
+                            .path = "placement"});
+}
+
+std::vector<std::string> collect_findings(const Design& design, const Assessment& assessment) {
+    std::vector<std::string> findings;
+    findings.push_back("Eye safety is the simplified evaluation: every source is taken as a point (C6 = 1), at the fixed "
+                       "distances of conditions 1 and 3. It is stricter than the evaluation of the extended source.");
+    const double escaped = [&] {
+        double sum = 0;
+        for (const ZoneReport& zone : assessment.zones) sum += zone.landing.escaped;
+        return sum;
+    }();
+    double sent = 0;
+    for (const ZoneReport& zone : assessment.zones) sent += zone.field.power;
+    if (escaped > 0.005 * sent)
+        findings.push_back(fmt::format("{:.1f} % of the light meets no surface of the scene.", 100 * escaped / sent));
+    for (const Loss& loss : assessment.beams.losses)
+        if (loss.power > 0.2 * assessment.beams.emitted)
+            findings.push_back(fmt::format("{:.0f} % of the emitted light is lost {}.", 100 * loss.power / assessment.beams.emitted, loss.name));
+    std::size_t crowded = 0;
+    for (const Return& entry : assessment.returns.list)
+        crowded += entry.detection.background_rate * design.receiver.photon_counting.dead_time > 0.5;
+    if (crowded * 10 > assessment.returns.list.size())
+        findings.push_back(fmt::format("Background light keeps the detector blind for more than a third of the time in {:.0f} % of the returns.",
+                                       100.0 * static_cast<double>(crowded) / static_cast<double>(assessment.returns.list.size())));
+    return findings;
+}
+
+Assessment work_through(const LoadedDesign& loaded, const Progress& progress) {
+    const Design& design = loaded.design;
+    Assessment result;
+    result.array = build_array(design.emitters, field_sense(design.optics), loaded.folder);
+    result.packing = packing(design.emitters, result.array);
+    result.plan = plan_firing(design, result.array);
+    result.average_power = average_power(result.plan, result.array, design.drive.peak_power);
+    result.beams = project(result.array, design);
+    const FarField field = far_field(result.beams);
+
+    const Scene scene = load_scene(loaded.folder / design.placement.scene);
+    const Link link = make_link(design, result.plan, field);
+    const std::vector<PixelLight> lights = pixel_lights(link, progress);
+    result.returns = cast_returns(link, scene, progress);
+    refuse_blind_receiver(result.returns, lights);
+    result.points = form_points(result.returns, design.receiver.pixels.columns, design.sampling.point_probability);
+    result.zones = report_zones(result, zone_fields(field),
+                                land_zones(field, link.pose, scene, design.sampling.rays_per_beam, design.sampling.seed, progress));
+    for (const Object& object : scene.objects) result.object_names.push_back(object.name);
+    result.points_on_object.assign(scene.objects.size(), 0);
+    for (const Point& point : result.points) ++result.points_on_object[point.object];
+
+    result.safety = judge_small_source(design, result.plan, field, progress);
+    for (const Requirement& requirement : design.requirements.list)
+        if (const auto* range = std::get_if<RangeRequirement>(&requirement)) result.reaches.push_back(summarize_reach(link, lights, *range));
+    result.requirements = judge_requirements(design, result, link, lights);
+    result.findings = collect_findings(design, result);
+    return result;
+}
+
+}  // namespace
+
+bool Assessment::all_met() const {
+    return std::ranges::all_of(requirements, [](const RequirementResult& each) { return each.met; });
+}
+
+Assessment assess(const LoadedDesign& loaded, const Progress& progress) {
+    try {
+        return work_through(loaded, progress);
+    } catch (const Error& error) {
+        // Stages know the field; only here is it known where the field stands.
+        std::vector<Problem> problems = error.problems();
+        for (Problem& problem : problems)
+            if (problem.file.empty()) problem = loaded.places.at(std::move(problem));
+        throw Error(std::move(problems), error.blame());
+    }
+}
+
+}  // namespace glint

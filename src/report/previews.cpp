@@ -1,0 +1,137 @@
+// Pictures of one assessment.
+#include <glint/core/constants.h>
+#include <glint/optics/receiver.h>
+#include <glint/report/point_view.h>
+#include <glint/report/previews.h>
+#include <glint/report/zone_map.h>
+
+#include <algorithm>
+#include <array>
+#include <cmath>
+#include <fmt/format.h>
+
+namespace glint {
+namespace {
+
+constexpr const char* picture_note = "Modelled for early design from nominal data; not measured.";
+
+std::string title_of(const Design& design, const std::string& what) { return design.name.empty() ? what : what + ", " + design.name; }
+
+// Horizontal angle to the right and vertical angle up [deg].
+Vec2 field_angles(const Vec3& direction) {
+    return {degrees(std::atan2(-direction.y(), direction.x())), degrees(std::atan2(direction.z(), std::hypot(direction.x(), direction.y())))};
+}
+
+// Where a beam's density on a flat screen is half its peak, as field angles.
+std::vector<Vec2> half_power_outline(const Beam& beam) {
+    const double half_maximum = std::sqrt(std::log(2.0) / 2);
+    const Vec3 up = beam.right.cross(beam.axis);
+    std::vector<Vec2> tangents;
+    constexpr int corners = 32;
+    for (int i = 0; i < corners; ++i) {
+        const double angle = 2 * pi * i / corners;
+        const Vec2 round(std::cos(angle), std::sin(angle));
+        switch (beam.kernel.shape) {
+            case KernelShape::gaussian: tangents.push_back(round.cwiseProduct(half_maximum * Vec2(beam.kernel.a, beam.kernel.b))); break;
+            case KernelShape::ring: tangents.push_back(round * (beam.kernel.a + half_maximum * beam.kernel.b)); break;
+            case KernelShape::round: tangents.push_back(round * beam.kernel.a); break;
+            case KernelShape::rectangle:  // the circle pushed out onto the square
+                tangents.push_back((round / round.cwiseAbs().maxCoeff()).cwiseProduct(Vec2(beam.kernel.a, beam.kernel.b)));
+                break;
+        }
+    }
+    std::vector<Vec2> outline;
+    for (const Vec2& t : tangents) outline.push_back(field_angles(beam.axis + t.x() * beam.right + t.y() * up));
+    return outline;
+}
+
+// Smallest convex polygon around the points, counter-clockwise (Andrew 1979).
+std::vector<Vec2> convex_hull(std::vector<Vec2> points) {
+    std::ranges::sort(points, [](const Vec2& a, const Vec2& b) { return a.x() != b.x() ? a.x() < b.x() : a.y() < b.y(); });
+    const auto left_turn = [](const Vec2& a, const Vec2& b, const Vec2& c) {
+        return (b.x() - a.x()) * (c.y() - a.y()) - (b.y() - a.y()) * (c.x() - a.x()) > 0;
+    };
+    std::vector<Vec2> hull;
+    const auto walk = [&](const auto& range) {
+        const std::size_t base = hull.size();
+        for (const Vec2& p : range) {
+            while (hull.size() >= base + 2 && !left_turn(hull[hull.size() - 2], hull.back(), p)) hull.pop_back();
+            hull.push_back(p);
+        }
+        hull.pop_back();
+    };
+    walk(points);
+    std::ranges::reverse(points);
+    walk(points);
+    return hull;
+}
+
+// Outline of the receiver's field, along its edges.
+std::vector<Vec2> receiver_outline(const Receiver& receiver) {
+    std::vector<Vec2> outline;
+    constexpr int steps = 16;
+    const int right = receiver.pixels.columns - 1, bottom = receiver.pixels.rows - 1;
+    const auto edge = [&](Vec2 from, Vec2 to) {
+        for (int i = 0; i < steps; ++i) {
+            const Vec2 at = from + (to - from) * i / steps;
+            const int column = std::min(static_cast<int>(at.x()), right), row = std::min(static_cast<int>(at.y()), bottom);
+            outline.push_back(field_angles(pixel_ray(receiver, column, row, at - Vec2(column, row)).direction));
+        }
+    };
+    const double w = right + 1.0, h = bottom + 1.0;
+    edge({0, 0}, {w, 0}), edge({w, 0}, {w, h}), edge({w, h}, {0, h}), edge({0, h}, {0, 0});
+    return outline;
+}
+
+}  // namespace
+
+std::span<const View> views() {
+    static const std::array list{View{"points", "the points of one frame in space, coloured by range", points_picture},
+                                     View{"zones", "the zones over the field, coloured by when they fire", zones_picture}};
+    return list;
+}
+
+Canvas points_picture(const Design& design, const Assessment& assessment) {
+    PointView view;
+    view.heading = {.title = title_of(design, "Points of one frame"),
+                    .subtitle = fmt::format("{} points of {} pixels; detection probability at least {}", assessment.points.size(),
+                                            design.receiver.pixels.columns * design.receiver.pixels.rows, show_quantity(design.sampling.point_probability, Kind::ratio)),
+                    .note = picture_note};
+    for (const Point& point : assessment.points) view.marks.push_back({point.position, point.range});
+    view.colours = {.label = "Range", .unit = "m", .range = {}};
+    view.sensor = Vec3(design.placement.x, design.placement.y, design.placement.z);
+    return draw(view);
+}
+
+Canvas zones_picture(const Design& design, const Assessment& assessment) {
+    ZoneMap map;
+    const FiringPlan& plan = assessment.plan;
+    map.heading = {.title = title_of(design, "Zones over the field"),
+                   .subtitle = fmt::format("{} zones, {} at once; outlines at half of the peak; numbers count from the upper left", assessment.array.zones, plan.zones_at_once),
+                   .note = picture_note};
+    map.zones.resize(static_cast<std::size_t>(assessment.array.zones));
+    for (int dwell = 0; dwell < plan.dwells(); ++dwell)
+        for (const int zone : plan.zones_of(dwell)) map.zones[zone].value = plan.start[dwell] * 1e3;
+    // Emitters of an interleaved or listed zone lie apart: show each. Neighbours form one shape.
+    const AddressingScheme scheme = design.emitters.addressing.scheme;
+    const bool apart = scheme == AddressingScheme::interleaved || scheme == AddressingScheme::list;
+    std::vector<std::vector<Vec2>> corners(map.zones.size());
+    for (const Beam& beam : assessment.beams.beams) {
+        if (beam.power <= 0) continue;
+        const std::vector<Vec2> outline = half_power_outline(beam);
+        if (apart) map.zones[beam.zone].polygons.push_back(outline);
+        else corners[beam.zone].insert(corners[beam.zone].end(), outline.begin(), outline.end());
+    }
+    for (std::size_t zone = 0; zone < map.zones.size(); ++zone) {
+        if (!apart && !corners[zone].empty()) {
+            map.zones[zone].polygons.push_back(convex_hull(std::move(corners[zone])));
+            map.zones[zone].number = std::to_string(zone);
+        }
+    }
+    map.outlines.push_back({receiver_outline(design.receiver), "receiver field"});
+    map.colours = {.label = "First shot in the frame", .unit = "ms", .range = {}};
+    map.opacity = 0.85;
+    return draw(map);
+}
+
+}  // namespace glint

@@ -1,0 +1,126 @@
+// summary.json.
+#include <glint/core/version.h>
+#include <glint/optics/receiver.h>
+#include <glint/report/tables.h>
+#include <glint/safety/caution.h>
+
+#include <cmath>
+#include <fmt/format.h>
+#include <nlohmann/json.hpp>
+
+namespace glint {
+namespace {
+
+using Json = nlohmann::ordered_json;
+
+// JSON has no infinity: what is not finite is null.
+Json number(double value) { return std::isfinite(value) ? Json(value) : Json(nullptr); }
+
+std::string with_unit(const std::string& key, const std::string& unit) { return unit.empty() ? key : key + "_" + unit; }
+
+Json requirements(const Assessment& assessment) {
+    Json list = Json::array();
+    for (const RequirementResult& each : assessment.requirements) {
+        Json entry;
+        entry["name"] = each.name;
+        entry["path"] = each.path;
+        entry["met"] = each.met;
+        entry[with_unit("needed", each.unit)] = number(each.needed);
+        entry[with_unit("got", each.unit)] = number(each.got);
+        entry["limited_by"] = each.limited_by;
+        list.push_back(std::move(entry));
+    }
+    return list;
+}
+
+Json chip(const Design& design, const Assessment& assessment) {
+    return {{"wavelength_m", design.emitters.wavelength},
+            {"emitters", assessment.array.size()},
+            {"zones", assessment.array.zones},
+            {"area_m2", assessment.packing.area},
+            {"density_per_m2", assessment.packing.density},
+            {"fill", assessment.packing.fill},
+            {"nearest_m", assessment.packing.nearest},
+            {"average_optical_power_W", assessment.average_power}};
+}
+
+Json firing(const Assessment& assessment) {
+    const FiringPlan& plan = assessment.plan;
+    return {{"dwells", plan.dwells()},     {"zones_at_once", plan.zones_at_once},    {"shots", plan.shots},
+            {"pulse_width_s", plan.pulse_width}, {"shot_period_s", plan.shot_period}, {"frame_period_s", plan.frame_period},
+            {"frame_rate_Hz", 1 / plan.frame_period}};
+}
+
+Json light(const Assessment& assessment) {
+    Json losses = Json::array();
+    double lost = 0, landed = 0, escaped = 0;
+    for (const Loss& loss : assessment.beams.losses) {
+        losses.push_back({{"name", loss.name}, {"power_W", loss.power}});
+        lost += loss.power;
+    }
+    for (const ZoneReport& zone : assessment.zones) landed += zone.landing.landed, escaped += zone.landing.escaped;
+    return {{"emitted_peak_W", assessment.beams.emitted}, {"in_beams_W", assessment.beams.emitted - lost}, {"losses", losses},
+            {"landed_on_scene_W", landed},  {"escaped_W", escaped}};
+}
+
+Json safety(const Assessment& assessment) {
+    const SafetyVerdict& verdict = assessment.safety;
+    Json criteria = Json::array();
+    for (const ExposureCase& each : verdict.criteria)
+        criteria.push_back({{"criterion", name_of(each.criterion)},
+                            {"condition", each.condition == Condition::telescope ? 1 : 3},
+                            {"duration_s", each.duration},
+                            {"pulses", each.pulses},
+                            {"C5", each.C5},
+                            {"C6", 1},
+                            {"ae_J", each.ae},
+                            {"ael_J", each.ael},
+                            {"ratio", each.ratio()},
+                            {"zones", each.zones},
+                            {"eye_m", {each.eye.x(), each.eye.y(), each.eye.z()}}});
+    return {{"caution", caution_paragraph},
+            {"evaluation", "simplified: every source taken as a point (C6 = 1)"},
+            {"class", std::string(name_of(verdict.laser_class)).substr(6)},
+            {"worst_ratio", verdict.worst_ratio},
+            {"margin", verdict.margin},
+            {"criteria", criteria}};
+}
+
+Json ranging(const Design& design, const Assessment& assessment) {
+    Json reaches = Json::array();
+    for (const ReachSummary& reach : assessment.reaches)
+        reaches.push_back({{"reflectance", reach.reflectance}, {"probability", reach.probability}, {"shortest_m", reach.shortest}, {"median_m", reach.median}, {"longest_m", reach.longest}});
+    Json objects = Json::array();
+    for (std::size_t i = 0; i < assessment.object_names.size(); ++i)
+        objects.push_back({{"name", assessment.object_names[i]}, {"points", assessment.points_on_object[i]}});
+    const Vec2 view = field_of_view(design.receiver);
+    return {{"method", "photon counting"},
+            {"field_of_view_rad", {view.x(), view.y()}},
+            {"rays", assessment.returns.rays},
+            {"rays_on_scene", assessment.returns.rays_hit},
+            {"returns", assessment.returns.list.size()},
+            {"points", assessment.points.size()},
+            {"reach", reaches},
+            {"objects", objects}};
+}
+
+}  // namespace
+
+std::string summary_json(const Design& design, const Assessment& assessment) {
+    Json summary;
+    summary["caution"] = caution_paragraph;
+    summary["format"] = 1;
+    summary["program"] = fmt::format("glintplan {}", version());
+    summary["design"] = design.name;
+    summary["all_requirements_met"] = assessment.all_met();
+    summary["requirements"] = requirements(assessment);
+    summary["chip"] = chip(design, assessment);
+    summary["firing"] = firing(assessment);
+    summary["light"] = light(assessment);
+    summary["eye_safety"] = safety(assessment);
+    summary["ranging"] = ranging(design, assessment);
+    summary["findings"] = assessment.findings;
+    return summary.dump(2) + "\n";
+}
+
+}  // namespace glint
