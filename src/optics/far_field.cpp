@@ -1,7 +1,8 @@
 // The far field: beams indexed over direction.
 //
-// The index is a square raster over (y, z) of the unit direction: two directions an angle apart are never farther
-// apart than that angle in (y, z), so a beam that reaches a direction is found within its angular reach.
+// The index is a square raster over (y, z) of the unit direction: two directions an angle apart are never
+// farther apart than that angle in (y, z), so a beam that reaches a direction is found within its angular
+// reach.
 #include <glint/optics/far_field.h>
 
 #include <algorithm>
@@ -12,8 +13,8 @@ namespace {
 
 bool same_pattern(const Beam& a, const Beam& b) {
     const Kernel &k = a.kernel, &l = b.kernel;
-    return a.zone == b.zone && a.axis == b.axis && a.right == b.right && k.shape == l.shape && k.a == l.a && k.b == l.b &&
-           k.edge == l.edge && k.exponent == l.exponent;
+    return a.zone == b.zone && a.axis == b.axis && a.right == b.right && k.shape == l.shape && k.a == l.a &&
+           k.b == l.b && k.edge == l.edge && k.exponent == l.exponent;
 }
 
 // Beams arrive zone by zone or emitter by emitter; equal patterns of a zone share the first one met.
@@ -51,11 +52,13 @@ FarField far_field(const Beams& beams) {
     for (const Beam& beam : field.beams) {
         field.reach = std::max(field.reach, angular_reach(beam.kernel));
         field.spread = std::max(field.spread, beam.origin.norm());
+        field.widest_exit = std::max(field.widest_exit, beam.exit_radius);
     }
     field.reach = std::min(field.reach, 2.0);  // no two points of the raster are farther apart along an axis
     field.cells = std::clamp(static_cast<int>(2 / std::max(field.reach, 1e-9)), 1, 1024);
     const auto cell = [&](const Beam& beam) {
-        return static_cast<std::size_t>(cell_of(beam.axis.y(), field.cells)) * field.cells + cell_of(beam.axis.z(), field.cells);
+        return static_cast<std::size_t>(cell_of(beam.axis.y(), field.cells)) * field.cells +
+               cell_of(beam.axis.z(), field.cells);
     };
     std::ranges::stable_sort(field.beams, {}, cell);
     field.cell_first.assign(static_cast<std::size_t>(field.cells) * field.cells + 1, 0);
@@ -83,12 +86,15 @@ std::vector<ZoneField> zone_fields(const FarField& field) {
     for (const Beam& beam : field.beams) {
         const Vec3 up = beam.right.cross(beam.axis);
         const bool wide = beam.kernel.shape != KernelShape::gaussian;
-        const double reach_p = wide ? std::min(beam.kernel.reach, beam.kernel.a + beam.kernel.b) : beam.kernel.a;
+        const double reach_p =
+            wide ? std::min(beam.kernel.reach, beam.kernel.a + beam.kernel.b) : beam.kernel.a;
         const double reach_q = wide ? reach_p : beam.kernel.b;
         for (int i = -steps; i <= steps; ++i)
             for (int j = -steps; j <= steps; ++j) {
-                const Vec3 direction = (beam.axis + reach_p * i / steps * beam.right + reach_q * j / steps * up).normalized();
-                zones[beam.zone].peak = std::max(zones[beam.zone].peak, zone_intensity(field, beam.zone, direction));
+                const Vec3 direction =
+                    (beam.axis + reach_p * i / steps * beam.right + reach_q * j / steps * up).normalized();
+                zones[beam.zone].peak =
+                    std::max(zones[beam.zone].peak, zone_intensity(field, beam.zone, direction));
             }
     }
     for (ZoneField& zone : zones) {

@@ -26,17 +26,20 @@ double window(const Kernel& kernel, double p, double q) {
     return soft_step(std::abs(p) - kernel.a, kernel.edge) * soft_step(std::abs(q) - kernel.b, kernel.edge);
 }
 
+// Gauss-Legendre with 5 points on [-1, 1]: the middle one and two on each side.
+constexpr double gauss_node[] = {0, 0.5384693101056831, 0.9061798459386640};
+constexpr double gauss_weight[] = {0.5688888888888889, 0.4786286704993665, 0.2369268850561891};
+
 // Integral of f over [low, high] by Gauss-Legendre, 5 points on each of n pieces.
 template <class F>
 double integral(double low, double high, int pieces, const F& f) {
-    constexpr double node[] = {0, 0.5384693101056831, 0.9061798459386640};
-    constexpr double weight[] = {0.5688888888888889, 0.4786286704993665, 0.2369268850561891};
     const double half = (high - low) / (2 * pieces);
     double sum = 0;
     for (int i = 0; i < pieces; ++i) {
         const double middle = low + (2 * i + 1) * half;
-        sum += weight[0] * f(middle);
-        for (int k = 1; k < 3; ++k) sum += weight[k] * (f(middle - half * node[k]) + f(middle + half * node[k]));
+        sum += gauss_weight[0] * f(middle);
+        for (int k = 1; k < 3; ++k)
+            sum += gauss_weight[k] * (f(middle - half * gauss_node[k]) + f(middle + half * gauss_node[k]));
     }
     return sum * half;
 }
@@ -60,6 +63,21 @@ double field_power(const Kernel& kernel, double end_p, double end_q) {
            });
 }
 
+// Nodes of a Gauss-Legendre rule over half a circle: 5 points on each of 16 pieces.
+struct HalfCircle {
+    static constexpr int nodes = 80;
+    double cosine[nodes], sine[nodes], weight[nodes];
+    HalfCircle() {
+        constexpr int pieces = nodes / 5;
+        constexpr double half = pi / (2 * pieces);
+        for (int i = 0; i < nodes; ++i) {
+            const int k = i % 5 - 2;  // -2 ... 2 from the middle of the piece
+            const double phi = (2 * (i / 5) + 1) * half + (k < 0 ? -1 : 1) * half * gauss_node[std::abs(k)];
+            cosine[i] = std::cos(phi), sine[i] = std::sin(phi), weight[i] = half * gauss_weight[std::abs(k)];
+        }
+    }
+};
+
 // Integral of t exp(-2 ((t - crest) / wall)^2) from 0 to r.
 double ring_moment(double crest, double wall, double r) {
     const double k = std::sqrt(2.0) / wall;
@@ -72,16 +90,25 @@ double ring_moment(double crest, double wall, double r) {
 }  // namespace
 
 Kernel gaussian_kernel(double a, double b) {
-    return {.shape = KernelShape::gaussian, .a = a, .b = b, .scale = 2 / (pi * a * b), .reach = gaussian_reach * std::max(a, b)};
+    return {.shape = KernelShape::gaussian,
+            .a = a,
+            .b = b,
+            .scale = 2 / (pi * a * b),
+            .reach = gaussian_reach * std::max(a, b)};
 }
 
 Kernel ring_kernel(double crest, double wall) {
     const double end = crest + gaussian_reach * wall;
-    return {.shape = KernelShape::ring, .a = crest, .b = wall, .scale = 1 / (2 * pi * ring_moment(crest, wall, end)), .reach = end};
+    return {.shape = KernelShape::ring,
+            .a = crest,
+            .b = wall,
+            .scale = 1 / (2 * pi * ring_moment(crest, wall, end)),
+            .reach = end};
 }
 
 Kernel rectangle_kernel(double half_p, double half_q, double edge, double exponent) {
-    Kernel kernel{.shape = KernelShape::rectangle, .a = half_p, .b = half_q, .edge = edge, .exponent = exponent};
+    Kernel kernel{
+        .shape = KernelShape::rectangle, .a = half_p, .b = half_q, .edge = edge, .exponent = exponent};
     const double end_p = half_p + field_reach * edge, end_q = half_q + field_reach * edge;
     kernel.reach = std::hypot(end_p, end_q);
     kernel.scale = 1 / field_power(kernel, end_p, end_q);
@@ -109,7 +136,9 @@ double intensity(const Kernel& kernel, double p, double q) {
             return kernel.scale * std::exp(-2 * x * x) * secant2 * std::sqrt(secant2);
         }
         case KernelShape::rectangle:
-            if (std::abs(p) > kernel.a + field_reach * kernel.edge || std::abs(q) > kernel.b + field_reach * kernel.edge) return 0;
+            if (std::abs(p) > kernel.a + field_reach * kernel.edge ||
+                std::abs(q) > kernel.b + field_reach * kernel.edge)
+                return 0;
             [[fallthrough]];
         case KernelShape::round:
             return kernel.scale * std::pow(secant2, kernel.exponent / 2) * window(kernel, p, q);
@@ -139,7 +168,8 @@ KernelSample sample(const Kernel& kernel, const Vec2& unit_square) {
         }
         case KernelShape::round: {
             const Vec2 tangent = kernel.reach * square_to_disc(unit_square);
-            const double solid_angle = pi * kernel.reach * kernel.reach * std::pow(1 + tangent.squaredNorm(), -1.5);
+            const double solid_angle =
+                pi * kernel.reach * kernel.reach * std::pow(1 + tangent.squaredNorm(), -1.5);
             return {tangent, intensity(kernel, tangent.x(), tangent.y()) * solid_angle};
         }
     }
@@ -157,9 +187,9 @@ double equivalent_half_width(const Kernel& kernel) {
     if (kernel.shape == KernelShape::gaussian) return std::max(kernel.a, kernel.b);
     // A Gaussian of 1/e2 radius w has a mean square radius of w^2 / 2.
     const double mean_square = 2 * pi * kernel.scale * integral(0, kernel.reach, 64, [&](double t) {
-        const double x = (t - kernel.a) / kernel.b;
-        return t * t * t * std::exp(-2 * x * x);
-    });
+                                   const double x = (t - kernel.a) / kernel.b;
+                                   return t * t * t * std::exp(-2 * x * x);
+                               });
     return std::sqrt(2 * mean_square);
 }
 
@@ -173,22 +203,24 @@ double captured_share(const Kernel& kernel, double distance, double offset, doub
     const double within = offset < radius ? power_within(kernel, (radius - offset) / distance) : 0;
     if (offset <= 0) return within;
     // Circles of light between the two distances lie partly inside. With rho = middle - half cos(phi) the
-    // integrand is smooth at both ends and the midpoint rule converges fast.
+    // integrand is smooth at both ends.
     const double low = std::abs(radius - offset), high = radius + offset;
     const double middle = (low + high) / 2, half = (high - low) / 2;
-    constexpr int nodes = 96;
+    static const HalfCircle circle;
     double sum = 0;
-    for (int i = 0; i < nodes; ++i) {
-        const double phi = pi * (i + 0.5) / nodes;
-        const double rho = middle - half * std::cos(phi), t = rho / distance;
-        if (t > kernel.reach || rho <= 0) continue;
+    for (int i = 0; i < circle.nodes; ++i) {
+        const double rho = middle - half * circle.cosine[i], t = rho / distance;
+        if (t > kernel.reach) break;  // rho rises with i
+        if (rho <= 0) continue;
         const double cosine = (offset * offset + rho * rho - radius * radius) / (2 * offset * rho);
-        const double arc = std::acos(std::clamp(cosine, -1.0, 1.0)) / pi;  // share of the circle inside the lens
-        const double x = kernel.shape == KernelShape::ring ? (t - kernel.a) / kernel.b : t / std::sqrt(kernel.a * kernel.b);
+        const double arc =
+            std::acos(std::clamp(cosine, -1.0, 1.0)) / pi;  // share of the circle inside the lens
+        const double x = kernel.shape == KernelShape::ring ? (t - kernel.a) / kernel.b
+                                                           : t / std::sqrt(kernel.a * kernel.b);
         const double density = 2 * pi * t / distance * kernel.scale * std::exp(-2 * x * x);  // power per rho
-        sum += density * arc * half * std::sin(phi);
+        sum += density * arc * half * circle.sine[i] * circle.weight[i];
     }
-    return std::min(1.0, within + sum * pi / nodes);
+    return std::min(1.0, within + sum);
 }
 
 }  // namespace glint

@@ -11,7 +11,7 @@ namespace glint {
 /// What the nearest neighbours of a point say about the surface it lies on.
 struct LocalSurface {
     double spacing =
-        0;  ///< distance to the 6th nearest neighbour, the median of the point and its 8 nearest, m
+        0;  ///< distance to the 6th nearest neighbour, the median of the point and its 8 nearest, m; 0: alone
     double closest = 0;          ///< distance to the 3rd nearest, m
     Vec3 normal = Vec3::Zero();  ///< unit normal, either way round; of the plane through the 20 nearest, or
                                  ///< at an edge of the neighbour's plane that the point lies in

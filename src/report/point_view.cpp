@@ -95,7 +95,8 @@ Cloud cloud_of(const PointView& view, std::span<const LocalSurface> surfaces, co
                const SettledScale& colours, double middle_depth) {
     const Vec3 light = (0.7 * camera.up - 0.4 * camera.right - 0.6 * camera.forward).normalized();
     Cloud cloud;
-    cloud.dots = typical_spacing(view.marks, surfaces, camera) > 13;
+    const double typical = typical_spacing(view.marks, surfaces, camera);
+    cloud.dots = typical == 0 || typical > 13;
     for (std::size_t i = 0; i < surfaces.size(); ++i) {
         const Vec3& position = view.marks[i].position;
         const double depth = camera.see(position).depth;
@@ -104,9 +105,9 @@ Cloud cloud_of(const PointView& view, std::span<const LocalSurface> surfaces, co
         const double units = camera.focal / depth;
         // Close neighbours close up to a surface; a mark alone stays a dot, larger when near.
         const double dot = std::clamp(3.4 * middle_depth / depth, 2.0, 5.0);
-        const bool alone = cloud.dots || local.spacing * units > 22;
+        const bool alone = cloud.dots || local.spacing == 0 || local.spacing * units > 22;
         const double closing =
-            std::clamp((local.flat ? 0.62 * local.spacing : 0.55 * local.closest) * units, 0.8, 7.0);
+            std::clamp((local.flat ? 0.68 * local.spacing : 0.55 * local.closest) * units, 0.8, 7.0);
         Splat splat{
             .centre = position, .normal = {}, .radius = view.mark_scale * (alone ? dot : closing) / units};
         splat.colour =
@@ -195,7 +196,7 @@ Canvas draw(const PointView& view) {
     const DepthMap depths = draw_splats(canvas, frame.plot, camera, cloud.splats);
     if (view.floor != Floor::none) {
         // Over a closed floor of marks the lines still show; round dots hide them.
-        draw_floor(canvas, depths, camera, floor, view.floor, cloud.dots ? -0.02 : 0.012);
+        draw_floor(canvas, depths, camera, floor, view.floor, cloud.dots ? -0.02 : 0.006);
         label_floor(canvas, camera, floor, view.floor, frame.plot);
     }
     draw_sensor(canvas, camera, floor, view.sensor, frame.plot);

@@ -190,7 +190,8 @@ DepthMap draw_splats(Canvas& canvas, const PageBox& plot, const Camera& camera,
                       layer.green[slot] += static_cast<float>(weight * splats[i].colour.green);
                       layer.blue[slot] += static_cast<float>(weight * splats[i].colour.blue);
                       layer.weight[slot] += static_cast<float>(weight);
-                      layer.cover[slot] = std::max(layer.cover[slot], static_cast<float>(cover));
+                      // Gaps between discs are closed by all that touch them together.
+                      layer.cover[slot] = 1 - (1 - layer.cover[slot]) * static_cast<float>(1 - cover);
                   });
     });
     std::vector<float> log_depth(layer.depth.size()), light(layer.depth.size());

@@ -7,9 +7,10 @@ namespace {
 
 bool holds(const ConditionRatios& ratios) { return ratios.condition_1 <= 1 && ratios.condition_3 <= 1; }
 
-// Too much for the telescope only, and that still below the 3B limit: the M of 1M and 2M.
+// Of ratios that do not hold: too much for the telescope only, and that below the 3B limit; the M of 1M and
+// 2M.
 bool holds_without_telescope(const ConditionRatios& ratios, const ClassRatios& all) {
-    return ratios.condition_1 > 1 && ratios.condition_3 <= 1 && all.class_3B.condition_1 < 1;
+    return ratios.condition_3 <= 1 && all.class_3B.condition_1 < 1;
 }
 
 void check(const ConditionRatios& ratios) {

@@ -18,6 +18,8 @@ double share_of_narrow(const Beam& beam, const Aperture& aperture, double along,
     if (width <= 0) return beside <= aperture.radius ? 1 : 0;
     if (beside > aperture.radius + 3 * width) return 0;
     if (beside + 3 * width < aperture.radius) return 1;
+    // A rim that is nearly straight across the beam: the half plane that holds the disc, a little more than the disc.
+    if (aperture.radius > 2 * width) return 0.5 * std::erfc(std::sqrt(2.0) * (beside - aperture.radius) / width);
     return captured_share(gaussian_kernel(width, width), 1, beside, aperture.radius);
 }
 
@@ -49,10 +51,14 @@ double collected_share(const Beam& beam, const Aperture& aperture) {
 
 std::vector<ZoneEnergy> collected_energies(const FarField& field, const Aperture& aperture, double pulse_width) {
     std::vector<ZoneEnergy> energies;
-    for (const Beam& beam : field.beams) {
+    const double distance = aperture.centre.norm();
+    // Beams start up to `spread` beside the origin, have a width there, and need only touch the rim.
+    const double beside = (aperture.radius + field.spread + 3 * field.widest_exit) / distance;
+    const double reach = beside < 1 ? field.reach + std::asin(beside) : 2;
+    beams_near(field, aperture.centre / distance, reach, [&](const Beam& beam) {
         const double share = collected_share(beam, aperture);
         if (share > 0) energies.push_back({beam.zone, share * beam.power * pulse_width});
-    }
+    });
     std::ranges::stable_sort(energies, {}, &ZoneEnergy::zone);
     std::size_t kept = 0;
     for (std::size_t i = 0; i < energies.size(); ++i) {

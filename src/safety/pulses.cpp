@@ -67,8 +67,6 @@ AverageLimit average_limit(const RegularTrain& train, LaserClass laser_class) {
     };
     // From T2 on the thermal limit grows with time as the train does; the photochemical one may still bite.
     keep(stretch(train.time_base));
-    // From 1400 nm to 1500 nm the printed cells allow 9.67 mW over 0.35 s, where they meet, and 10 mW later.
-    if (touches({1400e-9, 1500e-9}, train.wavelength)) keep(stretch(0.35));
     // repetition * window rounds the number of pulses down by up to one, which tells when they are few.
     for (int pulses = 2; pulses <= whole_pulse_windows; ++pulses) {
         const double window = length_of(train, pulses);

@@ -11,7 +11,7 @@
 namespace glint {
 namespace {
 
-constexpr double tolerance = 0.01;
+constexpr double tolerance = 0.03;
 
 struct Setup {
     const FiringPlan& plan;

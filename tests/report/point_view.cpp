@@ -148,8 +148,9 @@ TEST_CASE("a dense square closes up to a surface of its colour") {
 TEST_CASE("a ceiling seen from above is cut away and shows what is under it") {
     std::vector<Mark> marks;
     add_square(marks, {3, 0, -1}, 1, 60, 0.2);
-    add_square(marks, {3, 0, 1}, 1, 60, 0.8);
+    add_square(marks, {3, 0, -0.8}, 1, 60, 0.8);
     PointView view = plain(marks);
+    view.sensor = {0, 0, -0.9};
     const Canvas cut = draw(view);
     view.cut_away = false;
     const Canvas whole = draw(view);

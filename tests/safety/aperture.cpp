@@ -7,7 +7,6 @@
 
 using namespace glint;
 using namespace glint::test;
-using doctest::Approx;
 
 TEST_CASE("apertures and distances follow the table") {
     // IEC 60825-1:2014 Table 10: 7 mm at 100 mm two secondary sources, 2 m one, the rest from memory.
@@ -24,12 +23,12 @@ TEST_CASE("apertures and distances follow the table") {
         CHECK(telescope(905, duration).distance == 2);
     }
     CHECK(eye(1550, 1e-9).aperture == 1e-3);
-    CHECK(eye(1550, 1).aperture == Approx(1.5e-3).epsilon(1e-12));
-    CHECK(eye(1450, 5).aperture == Approx(2.743e-3).epsilon(1e-4));
+    CHECK(eye(1550, 1).aperture == about(1.5e-3, 1e-12));
+    CHECK(eye(1450, 5).aperture == about(2.743e-3, 1e-4));
     CHECK(eye(1550, 100).aperture == 3.5e-3);
     CHECK(eye(1550, 100).distance == 0.1);
-    CHECK(telescope(1550, 1e-9).aperture == Approx(7e-3).epsilon(1e-12));
-    CHECK(telescope(1550, 100).aperture == Approx(24.5e-3).epsilon(1e-12));
+    CHECK(telescope(1550, 1e-9).aperture == about(7e-3, 1e-12));
+    CHECK(telescope(1550, 100).aperture == about(24.5e-3, 1e-12));
     CHECK(telescope(1550, 100).distance == 2);
 }
 
@@ -40,8 +39,8 @@ TEST_CASE("where cells meet the larger aperture stands") {
     CHECK(eye(1400, 1e-9) == 7e-3);
     CHECK(eye(1401, 1e-9) == 1e-3);
     CHECK(measurement(Condition::telescope, 1400 * nm, 1).aperture == 50e-3);
-    CHECK(eye(1550, 0.35) == Approx(1.0119e-3).epsilon(1e-4));
-    CHECK(eye(1550, 10) == Approx(3.5570e-3).epsilon(1e-4));
+    CHECK(eye(1550, 0.35) == about(1.0119e-3, 1e-4));
+    CHECK(eye(1550, 10) == about(3.5570e-3, 1e-4));
 }
 
 TEST_CASE("conditions outside the tables are refused") {

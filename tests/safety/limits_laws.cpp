@@ -13,7 +13,6 @@
 
 using namespace glint;
 using namespace glint::test;
-using doctest::Approx;
 
 namespace {
 

@@ -3,6 +3,8 @@
 
 #include <glint/core/samples.h>
 #include <glint/safety/limits.h>
+
+#include <doctest/doctest.h>
 #include <cmath>
 
 namespace glint::test {
@@ -11,6 +13,11 @@ inline constexpr double nm = 1e-9, mrad = 1e-3;
 
 /// Whether a and b agree within a relative tolerance.
 inline bool near(double a, double b, double tolerance) { return std::abs(a - b) <= tolerance * std::abs(b); }
+
+/// For CHECK: purely relative. doctest::Approx alone adds 1 to the scale and would pass any nanojoule.
+inline doctest::Approx about(double value, double tolerance) {
+    return doctest::Approx(value).epsilon(tolerance).scale(0);
+}
 
 inline double uniform_between(RandomStream& random, double low, double high) {
     return low + (high - low) * random.uniform();

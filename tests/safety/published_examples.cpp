@@ -9,7 +9,6 @@
 
 using namespace glint;
 using namespace glint::test;
-using doctest::Approx;
 
 // Most examples give exposure limits (J/m2 at the cornea), the tables emission limits (J through 7 mm). The
 // printed emission limits are rounded: 7e-4 t^0.75 and 3.5e-3 t^0.75 lie 1.05 % above exposure times

@@ -9,7 +9,6 @@
 
 using namespace glint;
 using namespace glint::test;
-using doctest::Approx;
 
 TEST_CASE("C5 spot values") {
     // IEC 60825-1:2014, 4.3 f) 3: first block from memory; the second, for t > Ti, after Liu, Yang, Yue, Acta
@@ -17,9 +16,10 @@ TEST_CASE("C5 spot values") {
     const auto short_pulse = [](double N) { return c5({905 * nm, 5e-9, 1.5 * mrad, N, 100}); };
     CHECK(short_pulse(600) == 1);
     CHECK(short_pulse(601) == 1);  // 5 N^-0.25 is 1.0098
-    CHECK(short_pulse(1000) == Approx(0.88914).epsilon(1e-5));
-    CHECK(short_pulse(1e4) == Approx(0.5).epsilon(1e-12));
-    CHECK(short_pulse(24'414) == Approx(0.4).epsilon(1e-5));
+    CHECK(short_pulse(650) == about(0.99024, 1e-5));
+    CHECK(short_pulse(1000) == about(0.88914, 1e-5));
+    CHECK(short_pulse(1e4) == about(0.5, 1e-12));
+    CHECK(short_pulse(24'414) == about(0.4, 1e-5));
     CHECK(short_pulse(24'415) == 0.4);
     CHECK(short_pulse(1e6) == 0.4);
     CHECK(c5({905 * nm, 5e-9, 30 * mrad, 1e6, 100}) == 0.4);
@@ -29,11 +29,11 @@ TEST_CASE("C5 spot values") {
         return c5({905 * nm, 10e-3, milliradians * mrad, N, 100});  // alpha_max 20 mrad
     };
     CHECK(long_pulse(5, 1e4) == 1);
-    CHECK(long_pulse(10, 16) == Approx(0.5).epsilon(1e-12));
-    CHECK(long_pulse(10, 40) == Approx(0.39764).epsilon(1e-5));
+    CHECK(long_pulse(10, 16) == about(0.5, 1e-12));
+    CHECK(long_pulse(10, 40) == about(0.39764, 1.3e-5));
     CHECK(long_pulse(10, 41) == 0.4);
-    CHECK(long_pulse(25, 16) == Approx(0.5).epsilon(1e-12));
-    CHECK(long_pulse(25, 625) == Approx(0.2).epsilon(1e-12));
+    CHECK(long_pulse(25, 16) == about(0.5, 1e-12));
+    CHECK(long_pulse(25, 625) == about(0.2, 1e-12));
     CHECK(long_pulse(25, 1e4) == 0.2);
     CHECK(long_pulse(100, 1e4) == 0.2);
     CHECK(long_pulse(101, 1e4) == 1);
@@ -97,13 +97,13 @@ TEST_CASE("regular trains, Class 1, 100 s") {
         const auto agrees = [](std::optional<double> value, double printed, double tolerance) {
             return printed < 0 ? !value : value && near(*value, printed, tolerance);
         };
-        CHECK(limits.single == Approx(row.single).epsilon(5e-5));
-        CHECK(limits.average == Approx(row.average).epsilon(5e-5));
+        CHECK(limits.single == about(row.single, 5e-5));
+        CHECK(limits.average == about(row.average, 5e-5));
         CHECK(agrees(limits.group, row.group, 5e-5));
         CHECK(agrees(limits.train, row.train, 5e-5));
         CHECK(agrees(limits.C5, row.C5, 3e-5));
         CHECK(agrees(limits.T2, row.T2, 5e-6));
-        if (row.N > 0) CHECK(limits.N == Approx(row.N).epsilon(2e-4));  // four digits in D7 and D9
+        if (row.N > 0) CHECK(limits.N == about(row.N, 2e-4));  // four digits in D7 and D9
         CHECK(name_of(limits.governs) == name_of(row.governs));
         CHECK(limits.energy ==
               std::min({limits.single, limits.average, limits.group.value_or(1), limits.train.value_or(1)}));
@@ -115,22 +115,22 @@ TEST_CASE("a burst of pulses, criterion by criterion") {
     const auto limit = [](double duration, double milliradians) {
         return class_limit(LaserClass::class_1, {940 * nm, duration, milliradians * mrad}).energy;
     };
-    CHECK(limit(2e-9, 5) == Approx(7.7512e-7).epsilon(5e-5));
-    CHECK(limit(5e-6, 5) / 50 == Approx(1.4902e-8).epsilon(5e-5));
+    CHECK(limit(2e-9, 5) == about(7.7512e-7, 5e-5));
+    CHECK(limit(5e-6, 5) / 50 == about(1.4902e-8, 5e-5));
     const double groups = 30 * 100 * t2(5 * mrad);
-    CHECK(groups == Approx(32'558).epsilon(2e-5));
+    CHECK(groups == about(32'558, 2e-5));
     const double reduction = c5({940 * nm, 2e-9, 5 * mrad, groups, 100});
-    CHECK(reduction * limit(5e-6, 5) / 50 == Approx(5.9607e-9).epsilon(5e-5));
-    CHECK(limit(500e-6, 5) / 5000 == Approx(4.7123e-9).epsilon(5e-5));
-    CHECK(limit(t2(5 * mrad), 5) / (150'000 * t2(5 * mrad)) == Approx(2.5882e-8).epsilon(5e-5));
+    CHECK(reduction * limit(5e-6, 5) / 50 == about(5.9607e-9, 5e-5));
+    CHECK(limit(500e-6, 5) / 5000 == about(4.7123e-9, 5e-5));
+    CHECK(limit(t2(5 * mrad), 5) / (150'000 * t2(5 * mrad)) == about(2.5882e-8, 5e-5));
     CHECK(c5({940 * nm, 500e-6, 5 * mrad, 30 * t2(5 * mrad), 100}) == 1);
 
     // The inside of one burst as a train that ends: same group, N its 100 groups, average over its 500 us.
     const TrainLimits burst = train_limits(
         {.wavelength = 940 * nm, .duration = 2e-9, .repetition = 1e7, .subtense = 5 * mrad, .pulses = 5000});
-    CHECK(*burst.group == Approx(1.4902e-8).epsilon(5e-5));
-    CHECK(burst.N == Approx(100).epsilon(1e-3));
-    CHECK(burst.average == Approx(4.7123e-9).epsilon(5e-4));  // its length is 499.902 us
+    CHECK(*burst.group == about(1.4902e-8, 5e-5));
+    CHECK(burst.N == about(100, 1e-3));
+    CHECK(burst.average == about(4.7123e-9, 5e-4));  // its length is 499.902 us
     CHECK(burst.governs == PulseCriterion::average);
 }
 
@@ -144,12 +144,12 @@ TEST_CASE("pulses within Ti count as one") {
     CHECK(count(905, 1e6).pulses_in_group == 5);
     CHECK(count(905, 1.1e6).pulses_in_group == 6);
     CHECK(count(1064, 1e6).pulses_in_group == 13);
-    CHECK(count(905, 1e6).N == Approx(2e6).epsilon(1e-12));
-    CHECK(count(905, 1e8).N == Approx(2e6).epsilon(1e-12));
+    CHECK(count(905, 1e6).N == about(2e6, 1e-12));
+    CHECK(count(905, 1e8).N == about(2e6, 1e-12));
     CHECK(count(905, 1e6, 3).pulses_in_group == 3);
     CHECK(count(905, 1e6, 3).N == 1);
     CHECK(count(905, 1e3, 700).N == 700);
-    CHECK(count(905, 1e3, 1e9).N == Approx(1e4).epsilon(1e-12));
+    CHECK(count(905, 1e3, 1e9).N == about(1e4, 1e-12));
     CHECK(count(905, 0.01).N == 1);
 
     // By hand: the largest number of starts in a stretch [s, s + Ti) that begins at a pulse.
@@ -184,7 +184,10 @@ TEST_CASE("no window of a regular train holds more than its average limit says")
                 class_limit(LaserClass::class_1, {train.wavelength, window, train.subtense}).energy / pulses);
         }
         const double fast = std::min({limits.single, limits.average});
-        if (!(fast <= slow * 1.02)) FAIL_CHECK("average ", fast, " J, windows ", slow, " J, train ", i);
+        // 0.35 s from 1400 nm to 1500 nm is left to the caller: 9.67 mW there, 10 mW later.
+        const bool corneal = touches({1400e-9, 1500e-9}, train.wavelength);
+        if (!(fast <= slow * (corneal ? 1.02 * 10 / 9.67 : 1.02)))
+            FAIL_CHECK("average ", fast, " J, windows ", slow, " J, train ", i);
     }
 }
 
@@ -192,18 +195,18 @@ TEST_CASE("a single pulse is bound by the single criterion only") {
     const TrainLimits one =
         train_limits({.wavelength = 905 * nm, .duration = 5e-9, .repetition = 1e3, .pulses = 1});
     CHECK(one.governs == PulseCriterion::single);
-    CHECK(one.energy == Approx(one.single).epsilon(1e-12));
+    CHECK(one.energy == about(one.single, 1e-12));
     CHECK(one.N == 1);
     // A pulse longer than 0.25 s has no train criterion, and an average that is no stricter than itself.
     const TrainLimits slow = train_limits({.wavelength = 905 * nm, .duration = 50, .repetition = 0.01});
     CHECK(!slow.train);
-    CHECK(slow.average == Approx(slow.single).epsilon(1e-12));
+    CHECK(slow.average == about(slow.single, 1e-12));
 }
 
 TEST_CASE("the photochemical limit acts on the average of visible trains over the whole time base") {
     const TrainLimits blue = train_limits({.wavelength = 440 * nm, .duration = 1e-6, .repetition = 100});
     CHECK(blue.average_window == 100);
-    CHECK(blue.average == Approx(3.9e-3 / 1e4).epsilon(1e-9));
+    CHECK(blue.average == about(3.9e-3 / 1e4, 1e-9));
 }
 
 TEST_CASE("trains out of range are refused") {

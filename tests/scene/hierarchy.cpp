@@ -211,3 +211,18 @@ TEST_CASE("the tree of a ball costs what is known for it") {
     CHECK(nodes < 39);
     CHECK(primitives < 3.6);
 }
+
+TEST_CASE("what lies behind a plane is not searched") {
+    SceneParts parts;
+    parts.materials = {grey()};
+    parts.objects = {{.name = "ball"}, {.name = "wall"}};
+    parts.meshes = {{ball(4), 0}};
+    const Ray ray{.origin = {-5, 0.1, 0.2}};
+    const CastWork open = cast_work(build_scene(parts), ray);
+    parts.planes = {{{.point = {-2, 0, 0}, .normal = Vec3::UnitX()}, 1}};
+    const CastWork walled = cast_work(build_scene(parts), ray);
+    CHECK(open.nodes > 10);
+    CHECK(open.primitives > 0);
+    CHECK(walled.nodes == 1);
+    CHECK(walled.primitives == 0);
+}

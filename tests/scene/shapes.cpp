@@ -159,6 +159,21 @@ TEST_CASE("cylinder: side, caps, and along the axis") {
     CHECK(distance_to(post, from({10.6, 0, 5}, {0, 0, -1})) == no_distance);
 }
 
+TEST_CASE("cylinder: a ray almost along the axis meets the side where it should") {
+    // A slope of 1e-6 towards a side 1e-6 m away: 1 m. Rounding of places and directions moves that by 1e-10;
+    // roots by the plain formula, with the slope squared below, would be off by 1e-4.
+    RandomStream random(33);
+    constexpr double slope = 1e-6;
+    for (int i = 0; i < 200; ++i) {
+        const Mat3 pose = random_rotation(random);
+        const Cylinder mast{
+            .base = Vec3::Zero(), .axis = pose.col(2).normalized(), .length = 100, .radius = 1};
+        const Ray ray =
+            from(pose * Vec3(1 + slope, 0, 10), pose * Vec3(-slope, 0, std::sqrt(1 - slope * slope)));
+        CHECK(std::abs(distance_to(mast, ray) - 1) < 1e-8);
+    }
+}
+
 TEST_CASE("triangle: crossing, rim and back side") {
     const Triangle triangle{.a = {1, 0, 0}, .b = {1, 1, 0}, .c = {1, 0, 1}};
     const auto distance = [&](const Ray& ray) { return distance_to(triangle, sheared(ray), ray); };

@@ -16,6 +16,7 @@ struct FarField {
     int cells = 1;                ///< cells along each axis of the square of direction (y, z)
     double reach = 0;             ///< largest distance in (y, z) at which a beam still counts
     double spread = 0;            ///< radius of the sphere around the origin that holds all beam origins [m]
+    double widest_exit = 0;       ///< largest 1/e2 radius of a beam at its origin [m]
     int zones = 0;
 };
 

@@ -14,7 +14,7 @@ struct Aperture {
 
 /// Share of a beam's power that passes the aperture, 0 to 1. Narrow Gaussian beams: the offset disc of a round
 /// Gaussian whose radius is the smaller one of the beam there, sqrt(exit_radius^2 + (L theta)^2), which gathers
-/// most. Wide kernels: mean intensity over the disc times its solid angle.
+/// most; where the aperture is wide against the beam, the half plane within its rim, which is never less. Wide kernels: mean intensity over the disc times its solid angle.
 [[nodiscard]] double collected_share(const Beam& beam, const Aperture& aperture);
 
 /// Energy of one zone through the aperture, per shot.

@@ -20,7 +20,7 @@ struct SafetyVerdict {
 /// Largest AE/AEL over the whole sphere in front of the module at the distance of each condition (100 mm and 2 m
 /// from the chip, farther when the closest access is), all durations and criteria. Searched by dividing the field
 /// into squares; a square is dropped only when its bound, all that passes an aperture grown by the square's half
-/// diagonal, is not above what was found. Never below the largest value at any place, and at most 1 % above it.
+/// diagonal, is not above what was found. Never below the largest value at any place, and at most 3 % above it.
 /// Default (simplified) evaluation of IEC 60825-1:2014, 4.3 with C6 = 1.
 [[nodiscard]] SafetyVerdict judge_small_source(const Design& design, const FiringPlan& plan, const FarField& field,
                                                const Progress& progress = {});
