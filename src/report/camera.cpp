@@ -59,14 +59,12 @@ Viewpoint viewpoint_around(std::span<const Vec3> points, const Vec3& direction, 
             nearest = std::min(nearest, sight.depth);
             first = first.cwiseMin(sight.at), last = last.cwiseMax(sight.at);
         }
-        if (nearest < 0.1 * size) {
-            distance *= 1.5;
-            continue;
-        }
+
         const Vec2 middle = (first + last) / 2, half = (last - first) / 2;
         const double used = std::max(half.x() / width_over_height, half.y());
         viewpoint.target += (middle.x() * camera.right - middle.y() * camera.up) * (distance / camera.focal);
-        distance *= std::clamp(used / filling, 0.7, 1.5);
+        // Never so close that a point comes near the eye, however slim the points look from there.
+        distance = std::max(distance * std::clamp(used / filling, 0.7, 1.5), distance - nearest + 0.1 * size);
     }
     viewpoint.eye = viewpoint.target + distance * away;
     return viewpoint;

@@ -43,19 +43,20 @@ double first_within(const Chord& chord, const Ray& ray) {
 }
 
 // Where |origin + t direction| <= radius, in as many dimensions as the vectors have. The discriminant is
-// taken from the point of the line closest to the centre, and the two roots from their product, so that
-// neither a far nor a nearly touching start cancels (Haines et al. 2019, Ray Tracing Gems, chapter 7).
+// taken from the point of the line closest to the centre, so that a far start does not cancel it (Haines et
+// al. 2019, Ray Tracing Gems, chapter 7).
 Chord within_radius(const Vec3& origin, const Vec3& direction, double radius) {
     const double a = direction.squaredNorm();
-    const double c = origin.squaredNorm() - radius * radius;
-    if (a == 0) return c <= 0 ? Chord{.enter = -no_distance, .leave = no_distance} : missed;
+    if (a == 0) {
+        const bool inside = origin.squaredNorm() <= radius * radius;
+        return inside ? Chord{.enter = -no_distance, .leave = no_distance} : missed;
+    }
     const double b = origin.dot(direction);
     const Vec3 closest = origin - (b / a) * direction;
     const double rest = radius * radius - closest.squaredNorm();
     if (!(rest >= 0)) return missed;
-    const double q = -(b + std::copysign(std::sqrt(a * rest), b));
-    const double one = q / a, other = q == 0 ? 0 : c / q;
-    return {.enter = std::min(one, other), .leave = std::max(one, other)};
+    const double root = std::sqrt(a * rest);
+    return {.enter = (-b - root) / a, .leave = (-b + root) / a};
 }
 
 Ray in_frame_of(const Box& box, const Ray& ray) {

@@ -1,4 +1,6 @@
 // Quantities: text to SI and back.
+#include "about.h"
+
 #include <glint/core/constants.h>
 #include <glint/core/quantity.h>
 #include <glint/core/samples.h>
@@ -16,8 +18,8 @@ TEST_CASE("quantities read exactly as written in SI") {
     CHECK(parse_quantity("35 %", Kind::ratio).value == 0.35);
     CHECK(parse_quantity("0.35", Kind::ratio).value == 0.35);
     CHECK(parse_quantity("1.5e3 nm", Kind::length).value == 1.5e-6);
-    CHECK(parse_quantity("-40 degC", Kind::temperature).value == doctest::Approx(233.15));
-    CHECK(parse_quantity("180 deg", Kind::angle).value == doctest::Approx(pi));
+    CHECK(parse_quantity("-40 degC", Kind::temperature).value == about(233.15));
+    CHECK(parse_quantity("180 deg", Kind::angle).value == about(pi));
     CHECK(parse_quantity("7", Kind::number).value == 7);
 }
 

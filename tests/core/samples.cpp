@@ -1,4 +1,6 @@
 // Samples: even, seeded, and measure preserving.
+#include "about.h"
+
 #include <glint/core/parallel.h>
 #include <glint/core/samples.h>
 
@@ -32,7 +34,7 @@ TEST_CASE("square to disc keeps areas") {
     for (int i = 0; i < n; ++i)
         within += square_to_disc(r2_point(static_cast<std::uint32_t>(i), Vec2::Zero())).norm() < 0.5;
     CHECK(static_cast<double>(within) / n ==
-          doctest::Approx(0.25).epsilon(0.01));  // low-discrepancy error ~ 1/sqrt(n)
+          about(0.25).epsilon(0.01));  // low-discrepancy error ~ 1/sqrt(n)
 }
 
 TEST_CASE("square to Gaussian puts 86.47 % within the 1/e2 radius") {
@@ -40,7 +42,7 @@ TEST_CASE("square to Gaussian puts 86.47 % within the 1/e2 radius") {
     int within = 0;
     for (int i = 0; i < n; ++i)
         within += square_to_gaussian(r2_point(static_cast<std::uint32_t>(i), Vec2::Zero())).norm() < 1;
-    CHECK(static_cast<double>(within) / n == doctest::Approx(1 - std::exp(-2.0)).epsilon(0.005));
+    CHECK(static_cast<double>(within) / n == about(1 - std::exp(-2.0)).epsilon(0.005));
 }
 
 TEST_CASE("a seeded stream repeats and differs by seed") {

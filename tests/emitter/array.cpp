@@ -1,4 +1,6 @@
 // Layouts, packing, zones.
+#include "about.h"
+
 #include <glint/core/constants.h>
 #include <glint/core/error.h>
 #include <glint/core/files.h>
@@ -46,28 +48,28 @@ TEST_CASE("packing: 2 um apertures at 3 um centres, square grid") {
     // Common practice, no source: such chips are made; 1 / (3 um)^2 = 111 111 per mm2, pi/4 (2/3)^2 = 34.9 %.
     const Emitters emitters = grid(50, 40, 3e-6, 2e-6);
     const Packing packed = packing(emitters, upright(emitters));
-    CHECK(packed.density * 1e-6 == doctest::Approx(111111.1).epsilon(1e-6));
-    CHECK(packed.fill == doctest::Approx(0.349066).epsilon(1e-5));
-    CHECK(packed.nearest == doctest::Approx(3e-6).epsilon(1e-9));
+    CHECK(packed.density * 1e-6 == about(111111.1).epsilon(1e-6));
+    CHECK(packed.fill == about(0.349066).epsilon(1e-5));
+    CHECK(packed.nearest == about(3e-6).epsilon(1e-9));
 }
 
 TEST_CASE("packing: square and hexagonal lattices, textbook") {
     // Lattice geometry: n = 1/p^2 and 2/(sqrt3 p^2); p = 40 um, d = 10 um: 625 and 721.69 per mm2.
     Emitters emitters = grid(20, 20, 40e-6, 10e-6);
-    CHECK(packing(emitters, upright(emitters)).density * 1e-6 == doctest::Approx(625));
-    CHECK(packing(emitters, upright(emitters)).fill == doctest::Approx(0.049087).epsilon(1e-4));
+    CHECK(packing(emitters, upright(emitters)).density * 1e-6 == about(625));
+    CHECK(packing(emitters, upright(emitters)).fill == about(0.049087).epsilon(1e-4));
     emitters.layout.kind = LayoutKind::hexagonal;
     const EmitterArray hexagonal = upright(emitters);
-    CHECK(packing(emitters, hexagonal).density * 1e-6 == doctest::Approx(721.69).epsilon(1e-5));
-    CHECK(packing(emitters, hexagonal).fill == doctest::Approx(0.056681).epsilon(1e-4));
-    CHECK(slow_nearest(hexagonal.positions) == doctest::Approx(40e-6).epsilon(1e-9));
+    CHECK(packing(emitters, hexagonal).density * 1e-6 == about(721.69).epsilon(1e-5));
+    CHECK(packing(emitters, hexagonal).fill == about(0.056681).epsilon(1e-4));
+    CHECK(slow_nearest(hexagonal.positions) == about(40e-6).epsilon(1e-9));
 }
 
 TEST_CASE("a touching lattice fills pi/4 square and pi/(2 sqrt3) hexagonal") {
     Emitters emitters = grid(8, 8, 10e-6, 10e-6);
-    CHECK(packing(emitters, upright(emitters)).fill == doctest::Approx(pi / 4));
+    CHECK(packing(emitters, upright(emitters)).fill == about(pi / 4));
     emitters.layout.kind = LayoutKind::hexagonal;
-    CHECK(packing(emitters, upright(emitters)).fill == doctest::Approx(pi / (2 * std::sqrt(3.0))));
+    CHECK(packing(emitters, upright(emitters)).fill == about(pi / (2 * std::sqrt(3.0))));
 }
 
 TEST_CASE("every raster is centred on the chip") {
@@ -87,7 +89,7 @@ TEST_CASE(
         .kind = LayoutKind::scattered, .width = 1.2e-3, .height = 1e-3, .spacing = 20e-6, .seed = 4};
     const EmitterArray array = upright(emitters);
     CHECK(slow_nearest(array.positions) >= 20e-6);
-    CHECK(packing(emitters, array).nearest == doctest::Approx(slow_nearest(array.positions)));
+    CHECK(packing(emitters, array).nearest == about(slow_nearest(array.positions)));
     for (const Vec2& p : array.positions) CHECK((std::abs(p.x()) <= 0.6e-3 && std::abs(p.y()) <= 0.5e-3));
     // Interior density of 0.615 / r^2 for 30 tries (own simulation of Bridson 2007); the border adds a few
     // percent.
@@ -107,7 +109,7 @@ TEST_CASE("the fast nearest distance equals the slow one on random sets") {
         const auto count = 2 + random.below(60);
         for (std::uint64_t i = 0; i < count; ++i)
             positions.emplace_back(random.uniform(), stretch * random.uniform());
-        CHECK(nearest_distance(positions) == doctest::Approx(slow_nearest(positions)).epsilon(1e-12));
+        CHECK(nearest_distance(positions) == about(slow_nearest(positions)).epsilon(1e-12));
     }
 }
 
@@ -150,9 +152,9 @@ TEST_CASE("interleaved zones are spread over the chip, blocks are not") {
                 low = std::min(low, array.positions[i].x()), high = std::max(high, array.positions[i].x());
         return high - low;
     };
-    CHECK(width(upright(emitters)) == doctest::Approx(60e-6));
+    CHECK(width(upright(emitters)) == about(60e-6));
     emitters.addressing.scheme = AddressingScheme::blocks;
-    CHECK(width(upright(emitters)) == doctest::Approx(30e-6));
+    CHECK(width(upright(emitters)) == about(30e-6));
 }
 
 TEST_CASE("a list gives places and zones") {

@@ -1,4 +1,6 @@
 // The firing plan over one frame.
+#include "about.h"
+
 #include <glint/core/error.h>
 #include <glint/emitter/firing.h>
 
@@ -29,8 +31,8 @@ TEST_CASE("a frame fires every zone once, in raster order, dwell after dwell") {
     const FiringPlan plan = plan_of(small_design());
     REQUIRE(plan.dwells() == 16);
     for (int d = 0; d < 16; ++d) CHECK(plan.zones_of(d)[0] == d);
-    CHECK(plan.start[1] == doctest::Approx(15e-6));  // 10 shots at 1 us and a gap of 5 us
-    CHECK(plan.frame_period == doctest::Approx(16 * 15e-6));
+    CHECK(plan.start[1] == about(15e-6));  // 10 shots at 1 us and a gap of 5 us
+    CHECK(plan.frame_period == about(16 * 15e-6));
 }
 
 TEST_CASE("several zones at once share dwells, the last may hold fewer") {
@@ -50,7 +52,7 @@ TEST_CASE("average power is energy a frame over the frame period") {
     const Design design = small_design();
     const EmitterArray array = build_array(design.emitters, FieldSense::upright, "");
     const FiringPlan plan = plan_firing(design, array);
-    CHECK(average_power(plan, array, 0.1) == doctest::Approx(16 * 10 * 0.1 * 3e-9 / (16 * 15e-6)));
+    CHECK(average_power(plan, array, 0.1) == about(16 * 10 * 0.1 * 3e-9 / (16 * 15e-6)));
 }
 
 TEST_CASE("plans that cannot be are refused") {

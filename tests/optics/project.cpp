@@ -1,4 +1,6 @@
 // Beams behind lenses and diffusers, and the far field they make.
+#include "about.h"
+
 #include <glint/core/constants.h>
 #include <glint/core/error.h>
 #include <glint/core/samples.h>
@@ -50,35 +52,35 @@ TEST_CASE("lens mapping, textbook: pointing and pitch of an f-tan and an f-theta
     for (const auto& [x, tangent, f_theta] : expected) {
         Design design = line_of_emitters(2 * x, 2);
         design.optics.elements = {Lens{.focal_length = 2.5e-3, .clear_aperture = 6e-3}};
-        CHECK(degrees(angle_of(beams_of(design).beams[1])) == doctest::Approx(tangent).epsilon(1e-5));
+        CHECK(degrees(angle_of(beams_of(design).beams[1])) == about(tangent).epsilon(1e-5));
         std::get<Lens>(design.optics.elements[0]).mapping = LensMapping::f_theta;
-        CHECK(degrees(angle_of(beams_of(design).beams[1])) == doctest::Approx(f_theta).epsilon(1e-5));
+        CHECK(degrees(angle_of(beams_of(design).beams[1])) == about(f_theta).epsilon(1e-5));
     }
     // Pitch 40 um on axis: 16.0 mrad; local pitch at 0.3 / 0.6 / 1.0 mm: 15.773 / 15.129 / 13.793 mrad.
     Design design = line_of_emitters(40e-6, 51);
     design.optics.elements = {Lens{.focal_length = 2.5e-3, .clear_aperture = 6e-3}};
     const Beams beams = beams_of(design);
-    CHECK(angle_of(beams.beams[26]) - angle_of(beams.beams[25]) == doctest::Approx(16.0e-3).epsilon(1e-3));
+    CHECK(angle_of(beams.beams[26]) - angle_of(beams.beams[25]) == about(16.0e-3).epsilon(1e-3));
     const double local[][2] = {{0.3e-3, 15.773e-3}, {0.6e-3, 15.129e-3}, {1.0e-3, 13.793e-3}};
     for (const auto& [x, pitch] : local)
         CHECK(40e-6 * std::pow(std::cos(std::atan(x / 2.5e-3)), 2) / 2.5e-3 ==
-              doctest::Approx(pitch).epsilon(1e-4));
+              about(pitch).epsilon(1e-4));
 }
 
 TEST_CASE("residual divergence, textbook: size over focal length, with defocus in quadrature") {
     // w0 = 3.5 um over f = 2.5 mm: 1.4 mrad; w0 = 5 um, defocus 20 um, 10 deg: 2.439 mrad (tan form 2.449).
     Design design = line_of_emitters(40e-6, 1);
     design.optics.elements = {Lens{.focal_length = 2.5e-3, .clear_aperture = 6e-3}};
-    CHECK(beams_of(design).beams[0].kernel.a == doctest::Approx(1.4e-3).epsilon(1e-9));
+    CHECK(beams_of(design).beams[0].kernel.a == about(1.4e-3).epsilon(1e-9));
     design.emitters.near_field_radius = 5e-6;
     std::get<Lens>(design.optics.elements[0]).defocus = 20e-6;
     // sqrt(5^2 + (20 tan 10 deg)^2) / 2500; the published 2.439 takes the angle for its tangent, 0.4 % less.
-    CHECK(beams_of(design).beams[0].kernel.a == doctest::Approx(2.439e-3).epsilon(5e-3));
+    CHECK(beams_of(design).beams[0].kernel.a == about(2.439e-3).epsilon(5e-3));
     CHECK(beams_of(design).beams[0].kernel.a ==
-          doctest::Approx(std::hypot(5e-6, 20e-6 * std::tan(radians(10))) / 2.5e-3));
+          about(std::hypot(5e-6, 20e-6 * std::tan(radians(10))) / 2.5e-3));
     std::get<Lens>(design.optics.elements[0]).blur = 3e-3;
     CHECK(beams_of(design).beams[0].kernel.a ==
-          doctest::Approx(std::hypot(3e-3, std::hypot(5e-6, 20e-6 * std::tan(radians(10))) / 2.5e-3)));
+          about(std::hypot(3e-3, std::hypot(5e-6, 20e-6 * std::tan(radians(10))) / 2.5e-3)));
 }
 
 TEST_CASE("beams off the axis are narrower, radially cos^2, across cos") {
@@ -86,8 +88,8 @@ TEST_CASE("beams off the axis are narrower, radially cos^2, across cos") {
     design.optics.elements = {Lens{.focal_length = 2.5e-3, .clear_aperture = 8e-3}};
     const Beam beam = beams_of(design).beams[1];
     const double cosine = std::cos(std::atan(1 / 2.5));
-    CHECK(beam.kernel.a == doctest::Approx(1.4e-3 * cosine * cosine));
-    CHECK(beam.kernel.b == doctest::Approx(1.4e-3 * cosine));
+    CHECK(beam.kernel.a == about(1.4e-3 * cosine * cosine));
+    CHECK(beam.kernel.b == about(1.4e-3 * cosine));
     CHECK(std::abs(beam.right.dot(beam.axis)) < 1e-15);
     CHECK(std::abs(beam.right.z()) < 1e-15);  // radial is horizontal here
 }
@@ -125,7 +127,7 @@ TEST_CASE("emitted power is in the beams or in a named loss") {
                                                       .roll_off = radians(3),
                                                       .transmission = 0.9});
         const Beams beams = beams_of(design);
-        CHECK(in_beams(beams) + lost(beams) == doctest::Approx(beams.emitted).epsilon(1e-12));
+        CHECK(in_beams(beams) + lost(beams) == about(beams.emitted).epsilon(1e-12));
     }
 }
 
@@ -171,7 +173,7 @@ TEST_CASE("the far field of each zone integrates to the power of its beams") {
     const FarField field = far_field(beams);
     const std::vector<double> powers = zone_powers(beams);
     for (int zone = 0; zone < 2; ++zone)
-        CHECK(integral(field, zone) == doctest::Approx(powers[zone]).epsilon(1e-3));
+        CHECK(integral(field, zone) == about(powers[zone]).epsilon(1e-3));
 }
 
 TEST_CASE("the index finds what a loop over all beams finds") {
@@ -191,7 +193,7 @@ TEST_CASE("the index finds what a loop over all beams finds") {
             slow += intensity(beam, path.normalized()) / path.squaredNorm();
         }
         light_at(field, point, [&](const Beam&, double irradiance) { fast += irradiance; });
-        CHECK(fast == doctest::Approx(slow).epsilon(1e-12));
+        CHECK(fast == about(slow).epsilon(1e-12));
     }
 }
 
@@ -214,7 +216,7 @@ TEST_CASE("an f-tan array lights a flat wall evenly") {
         return sum;
     };
     for (const double angle : {4.0, 8.0, 12.0})
-        CHECK(on_wall(radians(angle)) / on_wall(0) == doctest::Approx(1).epsilon(0.01));
+        CHECK(on_wall(radians(angle)) / on_wall(0) == about(1).epsilon(0.01));
 }
 
 TEST_CASE("impossible optics are refused") {

@@ -1,4 +1,6 @@
 // Receiver optics and the module's pose.
+#include "about.h"
+
 #include <glint/core/constants.h>
 #include <glint/core/samples.h>
 #include <glint/optics/pose.h>
@@ -33,9 +35,9 @@ TEST_CASE("light falls off as cos^4 behind a tangent lens, and more slowly behin
         return off.solid_angle * off.cosine / (axis.solid_angle * axis.cosine);
     };
     for (const auto& [angle, expected] : tangent)
-        CHECK(falloff(LensMapping::tangent, radians(angle)) == doctest::Approx(expected).epsilon(1e-4));
+        CHECK(falloff(LensMapping::tangent, radians(angle)) == about(expected).epsilon(1e-4));
     for (const auto& [angle, expected] : f_theta)
-        CHECK(falloff(LensMapping::f_theta, radians(angle)) == doctest::Approx(expected).epsilon(1e-4));
+        CHECK(falloff(LensMapping::f_theta, radians(angle)) == about(expected).epsilon(1e-4));
 }
 
 TEST_CASE("pixel solid angles add up to the solid angle of the field") {
@@ -47,7 +49,7 @@ TEST_CASE("pixel solid angles add up to the solid angle of the field") {
                 sum += pixel_ray(receiver, column, row, {0.5, 0.5}).solid_angle;
         const Vec2 view = field_of_view(receiver);
         if (mapping == LensMapping::tangent)
-            CHECK(sum == doctest::Approx(4 * std::asin(std::sin(view.x() / 2) * std::sin(view.y() / 2)))
+            CHECK(sum == about(4 * std::asin(std::sin(view.x() / 2) * std::sin(view.y() / 2)))
                              .epsilon(1e-4));
         else
             CHECK(sum < view.x() * view.y());
@@ -61,10 +63,10 @@ TEST_CASE("pixel (0, 0) is the upper left of the field, rays are unit vectors") 
         CHECK(first.y() > 0);
         CHECK(first.z() > 0);
         CHECK(pixel_ray(receiver, 199, 159, {0.5, 0.5}).direction.y() < 0);
-        CHECK(first.norm() == doctest::Approx(1).epsilon(1e-14));
+        CHECK(first.norm() == about(1).epsilon(1e-14));
     }
     CHECK(degrees(field_of_view(receiver_of(LensMapping::tangent)).x()) ==
-          doctest::Approx(67.3801).epsilon(1e-5));
+          about(67.3801).epsilon(1e-5));
 }
 
 TEST_CASE("the pose turns right, lifts, and tips clockwise") {
@@ -72,7 +74,7 @@ TEST_CASE("the pose turns right, lifts, and tips clockwise") {
     CHECK((right.to_scene(Vec3(1, 0, 0)) - Vec3(1, 1, 3)).norm() <
           1e-12);  // forward becomes -y, which is right
     const Pose up = module_pose({.elevation = radians(30)});
-    CHECK(up.to_scene(Vec3(1, 0, 0)).z() == doctest::Approx(0.5));
+    CHECK(up.to_scene(Vec3(1, 0, 0)).z() == about(0.5));
     const Pose tipped = module_pose({.roll = radians(90)});
     CHECK((tipped.to_scene(Vec3(0, 1, 0)) - Vec3(0, 0, 1)).norm() < 1e-12);  // left goes up
     RandomStream random(1);

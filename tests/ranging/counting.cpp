@@ -1,4 +1,6 @@
 // Poisson statistics, detection and the precision bound.
+#include "about.h"
+
 #include <glint/core/constants.h>
 #include <glint/core/samples.h>
 #include <glint/ranging/photon_counting.h>
@@ -61,15 +63,15 @@ TEST_CASE("Poisson tails equal the sum of terms") {
 TEST_CASE("thresholds and required signals for 1000 bins and 1 % false alarms") {
     // Derived table, exact Poisson: p = 1.005e-5; mean background, k*, signal for 90 % and for 99 %.
     const double p = -std::expm1(std::log1p(-0.01) / 1000);
-    CHECK(p == doctest::Approx(1.005e-5).epsilon(1e-3));
+    CHECK(p == about(1.005e-5).epsilon(1e-3));
     const double table[][4] = {
         {0.1, 4, 6.58, 9.95},     {1, 9, 11.99, 16.40},       {5, 18, 18.61, 24.31},
         {10, 27, 23.84, 30.53},   {20, 43, 31.59, 39.71},     {50, 84, 45.94, 56.78},
         {100, 146, 61.68, 75.57}, {300, 378, 103.12, 124.69}, {1000, 1139, 182.46, 218.98}};
     for (const auto& [mean, k, ninety, ninety_nine] : table) {
         CHECK(poisson_threshold(mean, p) == static_cast<int>(k));
-        CHECK(required_signal(static_cast<int>(k), mean, 0.90) == doctest::Approx(ninety).epsilon(1e-3));
-        CHECK(required_signal(static_cast<int>(k), mean, 0.99) == doctest::Approx(ninety_nine).epsilon(1e-3));
+        CHECK(required_signal(static_cast<int>(k), mean, 0.90) == about(ninety).epsilon(1e-3));
+        CHECK(required_signal(static_cast<int>(k), mean, 0.99) == about(ninety_nine).epsilon(1e-3));
     }
 }
 
@@ -91,8 +93,8 @@ TEST_CASE("growth of the variance by background, against its integral") {
                                {0.1, .671432},  {0.3, .46168},   {1, .234853},   {3, .10022},
                                {10, .033548},   {30, .011576},   {100, .003516}};
     for (const auto& [rho, k] : table) {
-        CHECK(slow_information(rho) == doctest::Approx(k).epsilon(2e-4));
-        CHECK(std::sqrt(variance_growth(rho)) == doctest::Approx(1 / std::sqrt(k)).epsilon(0.0064));
+        CHECK(slow_information(rho) == about(k).epsilon(2e-4));
+        CHECK(std::sqrt(variance_growth(rho)) == about(1 / std::sqrt(k)).epsilon(0.0064));
     }
 }
 
@@ -100,17 +102,17 @@ TEST_CASE("timing response") {
     // Incoronato et al. (2021) form; 1 ns pulse, 150 ps jitter, 250 ps bin: 435.43 ps. A 60 m gate holds 1601
     // bins.
     const CountingModel model = counting_model(counting_design(1e-9, 150e-12, 250e-12, 60));
-    CHECK(model.timing == doctest::Approx(435.43e-12).epsilon(1e-4));
+    CHECK(model.timing == about(435.43e-12).epsilon(1e-4));
     CHECK(std::abs(model.bins - 1601) <= 1);  // the published count is for vacuum
-    CHECK(model.captured == doctest::Approx(0.8385).epsilon(1e-3));
+    CHECK(model.captured == about(0.8385).epsilon(1e-3));
     // 1 cm single shot needs 66.7 ps (the paper: below 70 ps): range = c t / 2.
-    CHECK(0.01 / model.range_per_time == doctest::Approx(66.71e-12).epsilon(5e-4));
+    CHECK(0.01 / model.range_per_time == about(66.71e-12).epsilon(5e-4));
 }
 
 TEST_CASE("precision without background is the photon noise of the pulse") {
     // Derived: 100 photons, 1 ns FWHM, no background: 6.3655 mm in vacuum.
     CountingModel model = counting_model(counting_design(1e-9, 0, 1e-12, 60));
-    CHECK(precision_bound(model, 100, 0) == doctest::Approx(6.3655e-3).epsilon(4e-4));
+    CHECK(precision_bound(model, 100, 0) == about(6.3655e-3).epsilon(4e-4));
     CHECK(std::isinf(precision_bound(model, 0, 1)));
 }
 
@@ -121,17 +123,17 @@ TEST_CASE("a worked photon-counting budget, without blocking") {
     const CountingModel model = counting_model(counting_design(1e-9, 150e-12, 250e-12, 60));
     const double pupil = pi / 4 * std::pow(5e-3 / 1.2, 2), solid_angle = std::pow(2e-3, 2);
     const double sun = 0.30343 * 20 * 0.10 / pi * pupil * solid_angle * 0.7;
-    CHECK(background_rate(model, sun) == doctest::Approx(6.981e6).epsilon(1e-3));
+    CHECK(background_rate(model, sun) == about(6.981e6).epsilon(1e-3));
     const double ranges[][2] = {{10, 2.5879}, {20, .64696}, {30, .28754}, {50, .10351}};
     for (const auto& [range, expected] : ranges)
         CHECK(0.9e-9 * 0.10 / pi * pupil / (range * range) * 0.7 * model.counts_per_joule ==
-              doctest::Approx(expected).epsilon(1e-3));
+              about(expected).epsilon(1e-3));
     // With dead time 0 nothing blocks: 1000 shots, mu = b N w = 8.51, and 22.95 counts in the window give 90
     // %.
-    CHECK(window_background(model, 6.981e6) == doctest::Approx(8.51).epsilon(1e-3));
+    CHECK(window_background(model, 6.981e6) == about(8.51).epsilon(1e-3));
     const int k = poisson_threshold(window_background(model, 6.981e6), model.false_alarm);
     CHECK(required_signal(k, window_background(model, 6.981e6), 0.9) ==
-          doctest::Approx(22.95).epsilon(0.02));  // published by closed form
+          about(22.95).epsilon(0.02));  // published by closed form
 }
 
 TEST_CASE("dead time: counts saturate and the detector is armed for part of the time") {
@@ -143,9 +145,9 @@ TEST_CASE("dead time: counts saturate and the detector is armed for part of the 
     const double counted[][2] = {{1e6, 9.901e5}, {1e7, 9.091e6}, {1e8, 5.000e7}, {1e9, 9.091e7}};
     for (const auto& [rate, expected] : counted)
         CHECK(window_background(model, rate) / (model.window * model.shots) ==
-              doctest::Approx(expected).epsilon(1e-3));
-    CHECK(echo_counts(model, 1e6, 0) == doctest::Approx(1000));  // one count a shot at most
-    CHECK(echo_counts(model, 0.01, 0) == doctest::Approx(1000 * -std::expm1(-0.01)));
+              about(expected).epsilon(1e-3));
+    CHECK(echo_counts(model, 1e6, 0) == about(1000));  // one count a shot at most
+    CHECK(echo_counts(model, 0.01, 0) == about(1000 * -std::expm1(-0.01)));
     CHECK(echo_counts(model, 0.01, 1e8) < echo_counts(model, 0.01, 0));
 }
 

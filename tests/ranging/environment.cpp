@@ -1,4 +1,6 @@
 // Sunlight, lamps, air and the link budget against published and derived values.
+#include "about.h"
+
 #include <glint/core/constants.h>
 #include <glint/core/files.h>
 #include <glint/core/text.h>
@@ -21,7 +23,7 @@ double sun_mean(double centre, double half) {
 TEST_CASE("sunlight, ASTM G173-03 global: integral and band means") {
     // Trapezoid integrals of the published table (two public copies agree): 400-1700 nm 899.516 W/m2; means
     // W/m2/nm.
-    CHECK(sun_band_irradiance(400e-9, 1700e-9) == doctest::Approx(899.516).epsilon(1e-5));
+    CHECK(sun_band_irradiance(400e-9, 1700e-9) == about(899.516).epsilon(1e-5));
     const double means[][3] = {{850, 5, 0.9607},  {850, 10, 0.9761}, {850, 20, 0.9689},  {905, 5, 0.7072},
                                {905, 10, 0.6904}, {905, 20, 0.7467}, {940, 5, 0.3047},   {940, 10, 0.3041},
                                {940, 20, 0.4135}, {1550, 5, 0.2709}, {1550, 10, 0.2700}, {1550, 20, 0.2685},
@@ -47,11 +49,11 @@ TEST_CASE("sunlight at 100 klx in a filter band") {
     const Environment sun{.source = AmbientSource::sun, .illuminance = 100e3};
     for (const auto& [centre, five, ten, twenty] : bands) {
         CHECK(ambient_band_irradiance(sun, {.center = centre * 1e-9, .width = 10e-9}) ==
-              doctest::Approx(five).epsilon(3e-4));
+              about(five).epsilon(3e-4));
         CHECK(ambient_band_irradiance(sun, {.center = centre * 1e-9, .width = 20e-9}) ==
-              doctest::Approx(ten).epsilon(3e-4));
+              about(ten).epsilon(3e-4));
         CHECK(ambient_band_irradiance(sun, {.center = centre * 1e-9, .width = 40e-9}) ==
-              doctest::Approx(twenty).epsilon(3e-4));
+              about(twenty).epsilon(3e-4));
     }
     CHECK(ambient_band_irradiance({.source = AmbientSource::none, .illuminance = 1e5},
                                   {.center = 940e-9, .width = 20e-9}) == 0);
@@ -65,7 +67,7 @@ TEST_CASE("filament lamps, Planck's law and V(lambda)") {
         for (int i = 0; i < 4; ++i) {
             const double per_klx =
                 lamp_band_irradiance(lamp[0], (at[i] - 0.5) * 1e-9, (at[i] + 0.5) * 1e-9) * 1e6;
-            CHECK(per_klx == doctest::Approx(lamp[i + 1]).epsilon(2e-3));  // published to three digits
+            CHECK(per_klx == about(lamp[i + 1]).epsilon(2e-3));  // published to three digits
         }
 }
 
@@ -76,11 +78,11 @@ TEST_CASE("extinction by haze and fog, Kim 2001") {
         {5, 905, 0.4435},   {5, 940, 0.4247},   {5, 1550, 0.2401},  {1, 850, 3.1468},    {1, 905, 3.0497},
         {1, 940, 2.9924},   {1, 1550, 2.3303},  {0.2, 850, 19.56},  {0.2, 1550, 19.56}};
     for (const auto& [visibility, wavelength, sigma] : cases)
-        CHECK(extinction(visibility * 1e3, wavelength * 1e-9) * 1e3 == doctest::Approx(sigma).epsilon(1e-3));
+        CHECK(extinction(visibility * 1e3, wavelength * 1e-9) * 1e3 == about(sigma).epsilon(1e-3));
     // Two-way transmission over 100 m at 905 nm.
     const double two_way[][2] = {{23, 0.98235}, {5, 0.91513}, {1, 0.54338}, {0.2, 0.02000}};
     for (const auto& [visibility, t] : two_way)
-        CHECK(std::exp(-200 * extinction(visibility * 1e3, 905e-9)) == doctest::Approx(t).epsilon(1e-3));
+        CHECK(std::exp(-200 * extinction(visibility * 1e3, 905e-9)) == about(t).epsilon(1e-3));
 }
 
 TEST_CASE("group index of air, Ciddor 1996") {
@@ -100,8 +102,8 @@ TEST_CASE("link budget: background on a pixel") {
                                                     {.center = wavelength * 1e-9, .width = 20e-9});
         const double f = 5e-3, pupil = pi / 4 * std::pow(f / 1.4, 2), solid_angle = std::pow(10e-6 / f, 2);
         const double power = extended_energy(band, lambertian(0.5, 1), solid_angle, pupil, 0.8);
-        CHECK(power / 1e-10 == doctest::Approx(on_pixel).epsilon(1e-3));
-        CHECK(power / photon_energy(wavelength * 1e-9) == doctest::Approx(photons).epsilon(1e-3));
+        CHECK(power / 1e-10 == about(on_pixel).epsilon(1e-3));
+        CHECK(power / photon_energy(wavelength * 1e-9) == about(photons).epsilon(1e-3));
     }
 }
 
@@ -111,26 +113,26 @@ TEST_CASE("link budget: a spot on a target, a zone over a target, sheeting") {
     // Standard lidar equation (Richmond and Cain), derived numbers: 1 uJ, 905 nm, D 25 mm, rho 0.1, 100 m,
     // eta 0.7, V 23 km.
     CHECK(returned_energy(1e-6, lambertian(0.1, 1), area, 100, 0.7 * t2) / photon_energy(905e-9) ==
-          doctest::Approx(4895).epsilon(1e-3));
+          about(4895).epsilon(1e-3));
     CHECK(returned_energy(1e-6, lambertian(0.1, 1), area, 100, 0.7) / photon_energy(905e-9) ==
-          doctest::Approx(4983).epsilon(1e-3));
+          about(4983).epsilon(1e-3));
     // Sheeting of R_A cd/lx/m2, a per-steradian ratio: 70 / 250 / 330.
     const double sheeting[][2] = {{70, 1.0765e7}, {250, 3.8446e7}, {330, 5.0748e7}};
     for (const auto& [coefficient, photons] : sheeting)
         CHECK(returned_energy(1e-6, coefficient, area, 100, 0.7 * t2) / photon_energy(905e-9) ==
-              doctest::Approx(photons).epsilon(1e-3));
+              about(photons).epsilon(1e-3));
     // 100 W over 60 x 45 deg (0.77012 sr) for 2 ns at 5 m, rho 0.1, N 1.4, tau 0.8, 10 um pixel, 940 nm:
     // 0.05016 photons.
     const double exposure = 100 / 0.77012 / 25 * 2e-9, f = 5e-3;
     CHECK(extended_energy(exposure, lambertian(0.1, 1), std::pow(10e-6 / f, 2), pi / 4 * std::pow(f / 1.4, 2),
                           0.8) /
               photon_energy(940e-9) ==
-          doctest::Approx(0.05016).epsilon(1e-3));
+          about(0.05016).epsilon(1e-3));
 }
 
 TEST_CASE("photons per joule") {
     // h and c exact (SI): 850 / 905 / 940 / 1550 nm.
     const double expected[][2] = {{850, 4.2790e18}, {905, 4.5559e18}, {940, 4.7321e18}, {1550, 7.8029e18}};
     for (const auto& [wavelength, count] : expected)
-        CHECK(1 / photon_energy(wavelength * 1e-9) == doctest::Approx(count).epsilon(2e-5));
+        CHECK(1 / photon_energy(wavelength * 1e-9) == about(count).epsilon(2e-5));
 }

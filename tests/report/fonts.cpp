@@ -122,6 +122,11 @@ TEST_CASE("alignment and anchor put the box where they say") {
     // Half the height of a capital on the point, to a pixel.
     CHECK(std::abs(ink_box(canvas).centre().y() - 60) < 0.6);
     CHECK(std::abs(ink_box(canvas).centre().x() - 50) < 0.6);
+    // H has the same air on both sides.
+    Canvas first(100, 100), last(100, 100);
+    first.text({50, 60}, "H", left);
+    last.text({50, 60}, "H", right);
+    CHECK(std::abs((ink_box(first).left - 50) - (50 - ink_box(last).right)) < 0.6);
 }
 
 TEST_CASE("upward text is the same text turned") {

@@ -117,7 +117,7 @@ TEST_CASE("texts of line plots stand on the page and clear of each other") {
         LinePlot plot{.heading = heading(random), .horizontal = axis(random), .vertical = axis(random)};
         const std::uint64_t curves = 1 + random.below(12);
         for (std::uint64_t k = 0; k < curves; ++k) {
-            Curve curve{.name = words(random, 3), .points = {}};
+            Curve curve{.name = "curve" + std::to_string(k) + " " + words(random, 3), .points = {}};
             for (int n = 0; n <= 20; ++n)
                 curve.points.push_back({1e-3 * std::pow(10, 0.2 * n), std::pow(10, 2 * random.uniform())});
             plot.curves.push_back(curve);
@@ -126,7 +126,7 @@ TEST_CASE("texts of line plots stand on the page and clear of each other") {
             plot.references.push_back({.across = random.below(2) == 0 ? ReferenceLine::Across::horizontal
                                                                       : ReferenceLine::Across::vertical,
                                        .value = 1 + 10 * random.uniform(),
-                                       .name = words(random, 6)});
+                                       .name = "line" + std::to_string(k) + " " + words(random, 6)});
         plot.naming = static_cast<LinePlot::Naming>(random.below(3));
         plot.size = size(random);
         const Canvas canvas = draw(plot);
@@ -188,6 +188,19 @@ TEST_CASE("a frame places data where its ticks say") {
     CHECK(decades.place({10, 0.5}).x() == doctest::Approx((decades.plot.left + decades.plot.right) / 2));
     CHECK(decades.place({10, 0.25}).y() < decades.place({10, 0.1}).y() + 300);
     CHECK(decades.place({10, 1}).y() == doctest::Approx(decades.plot.bottom));
+}
+
+TEST_CASE("the numbers at the ends of an axis that stands alone stay on the page") {
+    for (const AxisRange& range : {AxisRange{0, 100000}, AxisRange{100000, 0}, AxisRange{-90000, 90000}}) {
+        const Frame frame = lay_out({0, 0, 900, 640}, {.horizontal = Axis{.label = "x", .range = range}});
+        double left = 1e9, right = 0;
+        for (const Frame::Text& text : frame.texts) {
+            const PageBox box = text_box(text.at, text.text, text.style);
+            left = std::min(left, box.left), right = std::max(right, box.right);
+        }
+        CHECK(left > 15);
+        CHECK(right < 885);
+    }
 }
 
 TEST_CASE("equal units are equal on the page, and no page is left empty") {

@@ -1,4 +1,6 @@
 // The tree itself: sound, and as good as its cost says; hits alone would not show a poor one.
+#include "about.h"
+
 #include "scene/support.h"
 
 #include <glint/scene/descend.h>
@@ -167,7 +169,7 @@ TEST_CASE("the stated cost is the work of random lines") {
         // Every inner node met has two children tested, and the root counts itself.
         const double found = (work.nodes - 1) / 2 + work.items;
         // The mean over 20,000 lines has a standard error of about 1 %.
-        CHECK(found == doctest::Approx(statistics(tree).cost).epsilon(0.05));
+        CHECK(found == about(statistics(tree).cost).epsilon(0.05));
     }
 }
 

@@ -1,4 +1,6 @@
 // Reflectance over wavelength.
+#include "about.h"
+
 #include <glint/scene/material.h>
 
 #include <doctest/doctest.h>
@@ -15,8 +17,8 @@ TEST_CASE("several entries: linear between, met exactly at them, held outside") 
     CHECK(reflectance(cloth, 800e-9) == 0.2);
     CHECK(reflectance(cloth, 900e-9) == 0.6);
     CHECK(reflectance(cloth, 1000e-9) == 0.1);
-    CHECK(reflectance(cloth, 825e-9) == doctest::Approx(0.3).epsilon(1e-12));
-    CHECK(reflectance(cloth, 950e-9) == doctest::Approx(0.35).epsilon(1e-12));
+    CHECK(reflectance(cloth, 825e-9) == about(0.3).epsilon(1e-12));
+    CHECK(reflectance(cloth, 950e-9) == about(0.35).epsilon(1e-12));
     CHECK(reflectance(cloth, 1e-9) == 0.2);
     CHECK(reflectance(cloth, 1) == 0.1);
 }

@@ -1,4 +1,6 @@
 // Reading OBJ files, good and bad; moving meshes; cutting polygons.
+#include "about.h"
+
 #include "scene/support.h"
 
 #include <glint/core/error.h>
@@ -89,17 +91,17 @@ TEST_CASE("OBJ: every way to write a corner, groups, line ends and what is passe
 
 TEST_CASE("OBJ: polygons are cut, also when they are not convex or lie far out") {
     CHECK(read(square + "f 1 2 3 4\n").triangles.size() == 2);
-    CHECK(area_of(read(square + "f 1 2 3 4\n")) == doctest::Approx(1).epsilon(1e-15));
+    CHECK(area_of(read(square + "f 1 2 3 4\n")) == about(1).epsilon(1e-15));
     // An arrow head: the shorter diagonal lies outside it.
     const std::string arrow = "v 0 0 0\nv 1 -1 0\nv 0.5 0 0\nv 1 1 0\n";
-    CHECK(area_of(read(arrow + "f 1 2 3 4\n")) == doctest::Approx(0.5).epsilon(1e-15));
-    CHECK(area_of(read(arrow + "f 4 3 2 1\n")) == doctest::Approx(0.5).epsilon(1e-15));
+    CHECK(area_of(read(arrow + "f 1 2 3 4\n")) == about(0.5).epsilon(1e-15));
+    CHECK(area_of(read(arrow + "f 4 3 2 1\n")) == about(0.5).epsilon(1e-15));
     // An L of six corners, standing up, 1 km away, both ways round.
     const std::string el =
         "v 7 1000 1000\nv 7 1002 1000\nv 7 1002 1001\nv 7 1001 1001\nv 7 1001 1002\nv 7 1000 1002\n";
-    CHECK(area_of(read(el + "f 1 2 3 4 5 6\n")) == doctest::Approx(3).epsilon(1e-12));
-    CHECK(area_of(read(el + "f 6 5 4 3 2 1\n")) == doctest::Approx(3).epsilon(1e-12));
-    CHECK(area_of(read(el + "f 3 4 5 6 1 2\n")) == doctest::Approx(3).epsilon(1e-12));
+    CHECK(area_of(read(el + "f 1 2 3 4 5 6\n")) == about(3).epsilon(1e-12));
+    CHECK(area_of(read(el + "f 6 5 4 3 2 1\n")) == about(3).epsilon(1e-12));
+    CHECK(area_of(read(el + "f 3 4 5 6 1 2\n")) == about(3).epsilon(1e-12));
 }
 
 TEST_CASE("OBJ: what is wrong is said with file and line") {
@@ -196,7 +198,7 @@ TEST_CASE("transformed meshes: volume scales with the determinant, triangles sta
     linear << 2, 1, 0, 0, 3, 0, 0, 0, -0.5;
     const Mesh moved = transformed(unit, linear, {10, 20, 30});
     CHECK(moved.triangles == unit.triangles);
-    CHECK(volume(moved) == doctest::Approx(-3 * volume(unit)).epsilon(1e-12));
+    CHECK(volume(moved) == about(-3 * volume(unit)).epsilon(1e-12));
     CHECK((moved.vertices[7] - (linear * unit.vertices[7] + Vec3(10, 20, 30))).norm() < 1e-14);
 }
 
@@ -225,7 +227,7 @@ TEST_CASE("cut polygons keep their area, whatever their outline and pose") {
         Mesh mesh{.vertices = outline, .triangles = cut_polygon(outline)};
         const double scale = pose.col(0).squaredNorm();
         REQUIRE(mesh.triangles.size() == outline.size() - 2);
-        CHECK(area_of(mesh) == doctest::Approx(area * scale).epsilon(1e-9));
+        CHECK(area_of(mesh) == about(area * scale).epsilon(1e-9));
         for (Vec3& corner : outline) corner += offset;
         CHECK(cut_polygon(outline).size() == outline.size() - 2);
         std::reverse(outline.begin(), outline.end());
@@ -245,7 +247,7 @@ TEST_CASE("corners on straight edges, doubled corners and slits are kept") {
                                     {1, 1, 0}, {1, 2, 0}, {2, 2, 0}, {2, 1, 0}, {1, 1, 0}};
     const Mesh mesh{.vertices = ring, .triangles = cut_polygon(ring)};
     CHECK(mesh.triangles.size() == 8);
-    CHECK(area_of(mesh) == doctest::Approx(8).epsilon(1e-12));
+    CHECK(area_of(mesh) == about(8).epsilon(1e-12));
     CHECK(cut_polygon(std::vector<Vec3>{{0, 0, 0}, {1, 0, 0}}).empty());
     CHECK(cut_polygon(std::vector<Vec3>{{0, 0, 0}, {1, 0, 0}, {2, 0, 0}, {3, 0, 0}}).empty());
     CHECK(cut_polygon(std::vector<Vec3>{{0, 0, 0}, {1, 1, 0}, {1, 0, 0}, {0, 1, 0}}).empty());
