@@ -1,11 +1,11 @@
 // Progress on the terminal and a clean stop on Ctrl-C.
 #include "cli/terminal.h"
 
+#include <fmt/format.h>
+#include <unistd.h>
 #include <atomic>
 #include <csignal>
-#include <fmt/format.h>
 #include <string>
-#include <unistd.h>
 
 namespace glint::cli {
 namespace {
@@ -30,7 +30,8 @@ struct TerminalProgress::Line {
         if (time - shown < std::chrono::milliseconds(100)) return;
         shown = time;
         const double spent = std::chrono::duration<double>(time - stage_start).count();
-        const std::string left = share > 0.02 && spent > 0.5 ? fmt::format(", {:.0f} s left", spent * (1 - share) / share) : "";
+        const std::string left =
+            share > 0.02 && spent > 0.5 ? fmt::format(", {:.0f} s left", spent * (1 - share) / share) : "";
         fmt::print(stderr, "\r\033[K{} {:.0f} %{}", stage, 100 * share, left);
         std::fflush(stderr);
         on_screen = true;
@@ -44,11 +45,17 @@ struct TerminalProgress::Line {
 TerminalProgress::TerminalProgress(bool show) : line_(std::make_unique<Line>()) {
     stop_asked = false;
     std::signal(SIGINT, ask_to_stop);
+    std::signal(SIGTERM, ask_to_stop);
     progress_.stop = &stop_asked;
     if (show && ::isatty(STDERR_FILENO) == 1)
-        progress_.report = [line = line_.get()](std::string_view stage, double share) { line->show(stage, share); };
+        progress_.report = [line = line_.get()](std::string_view stage, double share) {
+            line->show(stage, share);
+        };
 }
 
-TerminalProgress::~TerminalProgress() { std::signal(SIGINT, SIG_DFL); }
+TerminalProgress::~TerminalProgress() {
+    std::signal(SIGINT, SIG_DFL);
+    std::signal(SIGTERM, SIG_DFL);
+}
 
 }  // namespace glint::cli

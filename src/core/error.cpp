@@ -25,4 +25,10 @@ Error::Error(std::vector<Problem> problems, Blame blame) : problems_(std::move(p
     }
 }
 
+Error named_by(const Error& error, std::string what, std::string path) {
+    std::vector<Problem> problems{{.what = std::move(what), .path = std::move(path)}};
+    problems.insert(problems.end(), error.problems().begin(), error.problems().end());
+    return Error(std::move(problems), error.blame());
+}
+
 }  // namespace glint

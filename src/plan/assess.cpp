@@ -3,8 +3,8 @@
 #include <glint/plan/requirements.h>
 #include <glint/scene/scene_file.h>
 
-#include <algorithm>
 #include <fmt/format.h>
+#include <algorithm>
 
 namespace glint {
 namespace {
@@ -17,17 +17,25 @@ std::vector<Point> form_points(const Returns& returns, int columns, double least
         const Return* best = &returns.list[first];
         std::size_t next = first;
         for (; next < returns.list.size() && pixel(returns.list[next]) == pixel(returns.list[first]); ++next)
-            if (returns.list[next].detection.probability > best->detection.probability) best = &returns.list[next];
+            if (returns.list[next].detection.probability > best->detection.probability)
+                best = &returns.list[next];
         first = next;
         if (best->detection.probability < least_probability) continue;
-        points.push_back({.position = best->point, .zone = best->zone, .column = best->column, .row = best->row, .object = best->object,
-                          .range = best->range, .signal = best->detection.signal, .precision = best->detection.precision,
+        points.push_back({.position = best->point,
+                          .zone = best->zone,
+                          .column = best->column,
+                          .row = best->row,
+                          .object = best->object,
+                          .range = best->range,
+                          .signal = best->detection.signal,
+                          .precision = best->detection.precision,
                           .probability = best->detection.probability});
     }
     return points;
 }
 
-std::vector<ZoneReport> report_zones(const Assessment& assessment, std::vector<ZoneField> fields, std::vector<ZoneLanding> landings) {
+std::vector<ZoneReport> report_zones(const Assessment& assessment, std::vector<ZoneField> fields,
+                                     std::vector<ZoneLanding> landings) {
     std::vector<ZoneReport> zones(fields.size());
     for (const int zone : assessment.array.zone_of) ++zones[zone].emitters;
     for (std::size_t z = 0; z < zones.size(); ++z) {
@@ -38,7 +46,8 @@ std::vector<ZoneReport> report_zones(const Assessment& assessment, std::vector<Z
     for (const Return& entry : assessment.returns.list) {
         ZoneReport& zone = zones[entry.zone];
         ++zone.returns;
-        zone.nearest_return = zone.nearest_return == 0 ? entry.range : std::min(zone.nearest_return, entry.range);
+        zone.nearest_return =
+            zone.nearest_return == 0 ? entry.range : std::min(zone.nearest_return, entry.range);
         zone.farthest_return = std::max(zone.farthest_return, entry.range);
     }
     for (const Point& point : assessment.points) ++zones[point.zone].points;
@@ -51,15 +60,17 @@ void refuse_blind_receiver(const Returns& returns, std::span<const PixelLight> l
                             .accepted = "a receiver field and a lit field that overlap",
                             .path = "receiver/lens/focal_length"});
     if (returns.pixels_seeing == 0)
-        throw Error(Problem{.what = "the receiver sees nothing: no surface of the scene is in its field within the gate",
-                            .accepted = "a placement that looks at the scene, or a longer gate",
-                            .path = "placement"});
+        throw Error(Problem{
+            .what = "the receiver sees nothing: no surface of the scene is in its field within the gate",
+            .accepted = "a placement that looks at the scene, or a longer gate",
+            .path = "placement"});
 }
 
 std::vector<std::string> collect_findings(const Design& design, const Assessment& assessment) {
     std::vector<std::string> findings;
-    findings.push_back("Eye safety is the simplified evaluation: every source is taken as a point (C6 = 1), at the fixed "
-                       "distances of conditions 1 and 3. It is stricter than the evaluation of the extended source.");
+    findings.push_back(
+        "Eye safety is the simplified evaluation: every source is taken as a point (C6 = 1), at the fixed "
+        "distances of conditions 1 and 3. It is stricter than the evaluation of the extended source.");
     const double escaped = [&] {
         double sum = 0;
         for (const ZoneReport& zone : assessment.zones) sum += zone.landing.escaped;
@@ -68,17 +79,31 @@ std::vector<std::string> collect_findings(const Design& design, const Assessment
     double sent = 0;
     for (const ZoneReport& zone : assessment.zones) sent += zone.field.power;
     if (escaped > 0.005 * sent)
-        findings.push_back(fmt::format("{:.1f} % of the light meets no surface of the scene.", 100 * escaped / sent));
+        findings.push_back(
+            fmt::format("{:.1f} % of the light meets no surface of the scene.", 100 * escaped / sent));
     for (const Loss& loss : assessment.beams.losses)
         if (loss.power > 0.2 * assessment.beams.emitted)
-            findings.push_back(fmt::format("{:.0f} % of the emitted light is lost {}.", 100 * loss.power / assessment.beams.emitted, loss.name));
+            findings.push_back(fmt::format("{:.0f} % of the emitted light is lost {}.",
+                                           100 * loss.power / assessment.beams.emitted, loss.name));
     std::size_t crowded = 0;
     for (const Return& entry : assessment.returns.list)
         crowded += entry.detection.background_rate * design.receiver.photon_counting.dead_time > 0.5;
     if (crowded * 10 > assessment.returns.list.size())
-        findings.push_back(fmt::format("Background light keeps the detector blind for more than a third of the time in {:.0f} % of the returns.",
-                                       100.0 * static_cast<double>(crowded) / static_cast<double>(assessment.returns.list.size())));
+        findings.push_back(fmt::format(
+            "Background light keeps the detector blind for more than a third of the time in {:.0f} % of the "
+            "returns.",
+            100.0 * static_cast<double>(crowded) / static_cast<double>(assessment.returns.list.size())));
     return findings;
+}
+
+// The scene, or the place in the design that names it together with what is wrong in it.
+Scene load_scene_of(const LoadedDesign& loaded) {
+    try {
+        return load_scene(loaded.folder / loaded.design.placement.scene);
+    } catch (const Error& error) {
+        throw named_by(error, "the scene " + loaded.design.placement.scene + " cannot be used",
+                       "placement/scene");
+    }
 }
 
 Assessment work_through(const LoadedDesign& loaded, const Progress& progress) {
@@ -91,21 +116,24 @@ Assessment work_through(const LoadedDesign& loaded, const Progress& progress) {
     result.beams = project(result.array, design);
     const FarField field = far_field(result.beams);
 
-    const Scene scene = load_scene(loaded.folder / design.placement.scene);
+    const Scene scene = load_scene_of(loaded);
     const Link link = make_link(design, result.plan, field);
     const std::vector<PixelLight> lights = pixel_lights(link, progress);
     result.returns = cast_returns(link, scene, progress);
     refuse_blind_receiver(result.returns, lights);
-    result.points = form_points(result.returns, design.receiver.pixels.columns, design.sampling.point_probability);
-    result.zones = report_zones(result, zone_fields(field),
-                                land_zones(field, link.pose, scene, design.sampling.rays_per_beam, design.sampling.seed, progress));
+    result.points =
+        form_points(result.returns, design.receiver.pixels.columns, design.sampling.point_probability);
+    result.zones = report_zones(
+        result, zone_fields(field),
+        land_zones(field, link.pose, scene, design.sampling.rays_per_beam, design.sampling.seed, progress));
     for (const Object& object : scene.objects) result.object_names.push_back(object.name);
     result.points_on_object.assign(scene.objects.size(), 0);
     for (const Point& point : result.points) ++result.points_on_object[point.object];
 
     result.safety = judge_small_source(design, result.plan, field, progress);
     for (const Requirement& requirement : design.requirements.list)
-        if (const auto* range = std::get_if<RangeRequirement>(&requirement)) result.reaches.push_back(summarize_reach(link, lights, *range));
+        if (const auto* range = std::get_if<RangeRequirement>(&requirement))
+            result.reaches.push_back(summarize_reach(link, lights, *range));
     result.requirements = judge_requirements(design, result, link, lights);
     result.findings = collect_findings(design, result);
     return result;

@@ -3,9 +3,9 @@
 #include <glint/core/text.h>
 #include <glint/plan/requirements.h>
 
+#include <fmt/format.h>
 #include <algorithm>
 #include <cmath>
-#include <fmt/format.h>
 #include <limits>
 #include <map>
 
@@ -19,15 +19,20 @@ struct Context {
     std::span<const PixelLight> lights;
 };
 
-std::string percent(double share) { return fmt::format("{:+.0f} %", 100 * share); }
+// Beyond ten times the bound the figure says no more than that there is plenty.
+std::string percent(double share) { return share > 9.99 ? "> 999 %" : fmt::format("{:+.0f} %", 100 * share); }
 
 // Room above a lower bound, or below an upper one, relative to the bound.
 std::string room_above(double got, double needed) { return percent(got / needed - 1); }
-std::string room_below(double got, double needed) { return std::isfinite(got) ? percent(1 - got / needed) : "-"; }
+std::string room_below(double got, double needed) {
+    return std::isfinite(got) ? percent(1 - got / needed) : "-";
+}
 
 std::vector<PixelReach> reaches(const Context& context, const RangeRequirement& range) {
     std::vector<PixelReach> list(context.lights.size());
-    parallel_for(list.size(), [&](std::size_t i) { list[i] = reach(context.link, context.lights[i], range.reflectance, range.probability); });
+    parallel_for(list.size(), [&](std::size_t i) {
+        list[i] = reach(context.link, context.lights[i], range.reflectance, range.probability);
+    });
     return list;
 }
 
@@ -53,7 +58,8 @@ RequirementResult judge(const Context& context, const RangeRequirement& range) {
             .unit = "m",
             .needed = range.distance,
             .got = got,
-            .needed_text = fmt::format("{} in {} of pixels", show_quantity(range.distance, Kind::length), show_quantity(range.share, Kind::ratio)),
+            .needed_text = fmt::format("{}, {} of pixels", show_quantity(range.distance, Kind::length),
+                                       show_quantity(range.share, Kind::ratio)),
             .got_text = show_quantity(got, Kind::length),
             .margin_text = room_above(got, range.distance),
             .limited_by = common_limit(list, got),
@@ -65,21 +71,25 @@ RequirementResult judge(const Context& context, const PrecisionRequirement& prec
     bool background = false;
     parallel_for(spreads.size(), [&](std::size_t i) {
         const PixelLight& light = context.lights[i];
-        const Detection detection = detect_target(context.link, light, {precision.reflectance, precision.distance});
+        const Detection detection =
+            detect_target(context.link, light, {precision.reflectance, precision.distance});
         // A precision without a detection is worth nothing.
-        spreads[i] = detection.probability >= 0.5 ? -detection.precision : -std::numeric_limits<double>::infinity();
+        spreads[i] =
+            detection.probability >= 0.5 ? -detection.precision : -std::numeric_limits<double>::infinity();
     });
     const double got = -reached_by_share(spreads, precision.share);
     if (std::isfinite(got)) {
         const auto middle = std::ranges::max_element(context.lights, {}, &PixelLight::intensity);
-        const Detection detection = detect_target(context.link, *middle, {precision.reflectance, precision.distance});
+        const Detection detection =
+            detect_target(context.link, *middle, {precision.reflectance, precision.distance});
         background = detection.background > detection.signal;
     }
     return {.name = fmt::format("Precision at {}", show_quantity(precision.distance, Kind::length)),
             .unit = "m",
             .needed = precision.limit,
             .got = got,
-            .needed_text = fmt::format("{} in {} of pixels", show_quantity(precision.limit, Kind::length), show_quantity(precision.share, Kind::ratio)),
+            .needed_text = fmt::format("{}, {} of pixels", show_quantity(precision.limit, Kind::length),
+                                       show_quantity(precision.share, Kind::ratio)),
             .got_text = std::isfinite(got) ? show_quantity(got, Kind::length) : "not detected",
             .margin_text = room_below(got, precision.limit),
             .limited_by = std::isfinite(got) ? (background ? "background light" : "signal") : "detection",
@@ -97,26 +107,33 @@ RequirementResult judge(const Context& context, const FrameRateRequirement& rate
             .needed_text = show_quantity(rate.minimum, Kind::frequency),
             .got_text = show_quantity(got, Kind::frequency),
             .margin_text = room_above(got, rate.minimum),
-            .limited_by = busy > 0.999 ? fmt::format("{} dwells of {}", plan.dwells(), show_quantity(plan.dwell_length(), Kind::time)) : "frame period",
+            .limited_by = busy > 0.999 ? fmt::format("{} dwells of {}", plan.dwells(),
+                                                     show_quantity(plan.dwell_length(), Kind::time))
+                                       : "frame period",
             .met = got >= rate.minimum * (1 - 1e-12)};
 }
 
 RequirementResult judge(const Context& context, const EyeSafetyRequirement& safety) {
-    constexpr LaserClass asked[] = {LaserClass::class_1, LaserClass::class_1M, LaserClass::class_3R, LaserClass::class_3B};
+    constexpr LaserClass asked[] = {LaserClass::class_1, LaserClass::class_1M, LaserClass::class_3R,
+                                    LaserClass::class_3B};
     const LaserClass wanted = asked[static_cast<int>(safety.laser_class)];
     const SafetyVerdict& verdict = context.assessment.safety;
     const bool class_held = static_cast<int>(verdict.laser_class) <= static_cast<int>(wanted);
     // The margin is that to the limit of Class 1; a higher class has no margin to it left.
     const bool margin_held = wanted != LaserClass::class_1 || verdict.margin >= safety.margin;
     const ExposureCase* governing = verdict.criteria.empty() ? nullptr : &verdict.criteria.front();
-    return {.name = "Eye safety",
+    return {.name = "Eye safety, AE/AEL",
             .unit = "",
             .needed = wanted == LaserClass::class_1 ? 1 - safety.margin : 1,
             .got = verdict.worst_ratio,
-            .needed_text = wanted == LaserClass::class_1 ? fmt::format("{}, AE/AEL up to {:.2f}", name_of(wanted), 1 - safety.margin) : std::string(name_of(wanted)),
-            .got_text = fmt::format("{}, AE/AEL {:.3g}", name_of(verdict.laser_class), verdict.worst_ratio),
+            .needed_text = wanted == LaserClass::class_1
+                               ? fmt::format("{}, up to {:.2f}", name_of(wanted), 1 - safety.margin)
+                               : std::string(name_of(wanted)),
+            .got_text = fmt::format("{}, {:.3g}", name_of(verdict.laser_class), verdict.worst_ratio),
             .margin_text = percent(verdict.margin),
-            .limited_by = governing == nullptr ? "" : fmt::format("{}, {}", name_of(governing->criterion), name_of(governing->condition)),
+            .limited_by = governing == nullptr ? ""
+                                               : fmt::format("{}, {}", name_of(governing->criterion),
+                                                             name_of(governing->condition)),
             .met = class_held && margin_held};
 }
 
@@ -150,14 +167,15 @@ RequirementResult judge(const Context& context, const AveragePowerRequirement& p
 }
 
 const char* element_of(const Requirement& requirement) {
-    constexpr const char* names[] = {"range", "precision", "frame_rate", "eye_safety", "points", "average_power"};
+    constexpr const char* names[] = {"range",      "precision", "frame_rate",
+                                     "eye_safety", "points",    "average_power"};
     return names[requirement.index()];
 }
 
 }  // namespace
 
-std::vector<RequirementResult> judge_requirements(const Design& design, const Assessment& assessment, const Link& link,
-                                                  std::span<const PixelLight> lights) {
+std::vector<RequirementResult> judge_requirements(const Design& design, const Assessment& assessment,
+                                                  const Link& link, std::span<const PixelLight> lights) {
     const Context context{design, assessment, link, lights};
     std::vector<RequirementResult> results;
     std::map<std::string, int> seen;
@@ -176,11 +194,17 @@ std::vector<RequirementResult> judge_requirements(const Design& design, const As
     return results;
 }
 
-ReachSummary summarize_reach(const Link& link, std::span<const PixelLight> lights, const RangeRequirement& range) {
+ReachSummary summarize_reach(const Link& link, std::span<const PixelLight> lights,
+                             const RangeRequirement& range) {
     std::vector<double> list(lights.size());
-    parallel_for(list.size(), [&](std::size_t i) { list[i] = reach(link, lights[i], range.reflectance, range.probability).distance; });
-    return {.reflectance = range.reflectance, .probability = range.probability, .shortest = reached_by_share(list, 1),
-            .median = reached_by_share(list, 0.5), .longest = reached_by_share(list, 0)};
+    parallel_for(list.size(), [&](std::size_t i) {
+        list[i] = reach(link, lights[i], range.reflectance, range.probability).distance;
+    });
+    return {.reflectance = range.reflectance,
+            .probability = range.probability,
+            .shortest = reached_by_share(list, 1),
+            .median = reached_by_share(list, 0.5),
+            .longest = reached_by_share(list, 0)};
 }
 
 }  // namespace glint

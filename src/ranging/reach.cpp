@@ -11,7 +11,8 @@
 namespace glint {
 namespace {
 
-PixelLight light_of(const Link& link, int column, int row, std::vector<double>& dwell_intensity, std::vector<int>& lit) {
+PixelLight light_of(const Link& link, int column, int row, std::vector<double>& dwell_intensity,
+                    std::vector<int>& lit) {
     const Receiver& receiver = link.design.receiver;
     const int rays = link.design.sampling.rays_per_pixel;
     const std::uint64_t pixel = static_cast<std::uint64_t>(row) * receiver.pixels.columns + column;
@@ -30,20 +31,23 @@ PixelLight light_of(const Link& link, int column, int row, std::vector<double>& 
         });
     }
     for (const int dwell : lit) {
-        if (dwell_intensity[dwell] > light.intensity) light.intensity = dwell_intensity[dwell], light.dwell = dwell;
+        if (dwell_intensity[dwell] > light.intensity)
+            light.intensity = dwell_intensity[dwell], light.dwell = dwell;
         dwell_intensity[dwell] = 0;
     }
     return light;
 }
 
 double target_background(const Link& link, const PixelLight& light, double reflectance) {
-    return background_rate(link.model, extended_energy(link.ambient, lambertian(reflectance, 1), light.collected, 1, link.transmission));
+    return background_rate(link.model, extended_energy(link.ambient, lambertian(reflectance, 1),
+                                                       light.collected, 1, link.transmission));
 }
 
 double target_signal(const Link& link, const PixelLight& light, const FlatTarget& target) {
     const double exposure = light.intensity * link.model.pulse_width / (target.distance * target.distance);
     const double way = link.transmission * std::exp(-2 * link.extinction * target.distance);
-    return extended_energy(exposure, lambertian(target.reflectance, 1), light.collected, 1, way) * link.model.counts_per_joule;
+    return extended_energy(exposure, lambertian(target.reflectance, 1), light.collected, 1, way) *
+           link.model.counts_per_joule;
 }
 
 }  // namespace
@@ -54,22 +58,28 @@ std::vector<PixelLight> pixel_lights(const Link& link, const Progress& progress)
     parallel_for(static_cast<std::size_t>(pixels.rows), "lighting pixels", progress, [&](std::size_t row) {
         std::vector<double> dwell_intensity(static_cast<std::size_t>(link.plan.dwells()), 0.0);
         std::vector<int> lit;
-        for (int column = 0; column < pixels.columns; ++column)
-            lights[row * pixels.columns + column] = light_of(link, column, static_cast<int>(row), dwell_intensity, lit);
+        for (int column = 0; column < pixels.columns && !progress.stopping(); ++column)
+            lights[row * pixels.columns + column] =
+                light_of(link, column, static_cast<int>(row), dwell_intensity, lit);
     });
     return lights;
 }
 
 Detection detect_target(const Link& link, const PixelLight& light, const FlatTarget& target) {
-    return detect(link.model, target_signal(link, light, target), target_background(link, light, target.reflectance));
+    return detect(link.model, target_signal(link, light, target),
+                  target_background(link, light, target.reflectance));
 }
 
 const char* name_of(RangeLimit limit) {
     switch (limit) {
-        case RangeLimit::no_light: return "no light";
-        case RangeLimit::signal: return "signal";
-        case RangeLimit::background: return "background light";
-        case RangeLimit::gate: return "gate";
+        case RangeLimit::no_light:
+            return "no light";
+        case RangeLimit::signal:
+            return "signal";
+        case RangeLimit::background:
+            return "background light";
+        case RangeLimit::gate:
+            return "gate";
     }
     return "";
 }
@@ -98,7 +108,8 @@ PixelReach reach(const Link& link, const PixelLight& light, double reflectance, 
 
 double reached_by_share(std::vector<double> values, double share) {
     if (values.empty()) return 0;
-    const auto needed = static_cast<std::size_t>(std::ceil(share * static_cast<double>(values.size()) - 1e-9));
+    const auto needed =
+        static_cast<std::size_t>(std::ceil(share * static_cast<double>(values.size()) - 1e-9));
     const std::size_t index = values.size() - std::clamp<std::size_t>(needed, 1, values.size());
     std::ranges::nth_element(values, values.begin() + static_cast<std::ptrdiff_t>(index));
     return values[index];

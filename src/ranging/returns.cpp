@@ -36,7 +36,8 @@ struct Row {
 };
 
 // Adds what one hit sends back from every zone that lights it.
-void add_glimpses(const Link& link, const Scene& scene, const Hit& hit, const PixelRay& ray, double share, Scratch& scratch) {
+void add_glimpses(const Link& link, const Scene& scene, const Hit& hit, const PixelRay& ray, double share,
+                  Scratch& scratch) {
     const Vec3 point = link.pose.to_module(hit.point);
     double strongest = 0;
     Vec3 source = Vec3::Zero();
@@ -58,9 +59,11 @@ void add_glimpses(const Link& link, const Scene& scene, const Hit& hit, const Pi
         const double exposure = scratch.zone_irradiance[zone] * cosine * link.model.pulse_width;
         scratch.zone_irradiance[zone] = 0;
         if (!lit) continue;
-        const double energy = extended_energy(exposure, lambertian(rho, 1), ray.solid_angle * share * ray.cosine, link.pupil, way);
+        const double energy = extended_energy(exposure, lambertian(rho, 1),
+                                              ray.solid_angle * share * ray.cosine, link.pupil, way);
         if (energy > 0)
-            scratch.glimpses.push_back({link.dwell_of_zone[zone], zone, hit.object, (out + hit.distance) / 2, energy, hit.point});
+            scratch.glimpses.push_back(
+                {link.dwell_of_zone[zone], zone, hit.object, (out + hit.distance) / 2, energy, hit.point});
     }
 }
 
@@ -115,13 +118,14 @@ void form_returns(const Link& link, int column, int row, double rate, Scratch& s
     }
 }
 
-Row cast_row(const Link& link, const Scene& scene, int row) {
+Row cast_row(const Link& link, const Scene& scene, int row, const Progress& progress) {
     const Receiver& receiver = link.design.receiver;
     const int rays = link.design.sampling.rays_per_pixel;
     const Vec3 origin = link.pose.to_scene(receiver_position(receiver));
     Scratch scratch{.zone_irradiance = std::vector<double>(static_cast<std::size_t>(link.field.zones), 0.0)};
     Row out;
     for (int column = 0; column < receiver.pixels.columns; ++column) {
+        if (progress.stopping()) throw Stopped{};
         const std::uint64_t pixel = static_cast<std::uint64_t>(row) * receiver.pixels.columns + column;
         const Vec2 shift = shift_of(link.design.sampling.seed, pixel);
         scratch.glimpses.clear();
@@ -133,7 +137,9 @@ Row cast_row(const Link& link, const Scene& scene, int row) {
             const auto hit = closest_hit(scene, {.origin = origin, .direction = direction});
             if (!hit) continue;
             const double rho = reflectance(scene.materials[hit->material], link.design.emitters.wavelength);
-            ambient_power += extended_energy(link.ambient, lambertian(rho, 1), ray.solid_angle / rays * ray.cosine, link.pupil, link.transmission);
+            ambient_power +=
+                extended_energy(link.ambient, lambertian(rho, 1), ray.solid_angle / rays * ray.cosine,
+                                link.pupil, link.transmission);
             if (hit->distance > link.design.receiver.photon_counting.gate) continue;
             ++out.hits;
             seeing = true;
@@ -148,22 +154,30 @@ Row cast_row(const Link& link, const Scene& scene, int row) {
 }  // namespace
 
 Link make_link(const Design& design, const FiringPlan& plan, const FarField& field) {
-    Link link{.design = design, .plan = plan, .field = field, .dwell_of_zone = std::vector<int>(static_cast<std::size_t>(field.zones), 0),
-              .model = counting_model(design), .pose = module_pose(design.placement)};
+    Link link{.design = design,
+              .plan = plan,
+              .field = field,
+              .dwell_of_zone = std::vector<int>(static_cast<std::size_t>(field.zones), 0),
+              .model = counting_model(design),
+              .pose = module_pose(design.placement)};
     for (int dwell = 0; dwell < plan.dwells(); ++dwell)
         for (const int zone : plan.zones_of(dwell)) link.dwell_of_zone[zone] = dwell;
     link.ambient = ambient_band_irradiance(design.environment, design.receiver.filter);
     link.pupil = pupil_area(design.receiver.lens);
     link.transmission = design.receiver.lens.transmission * design.receiver.filter.transmission;
-    if (design.environment.visibility) link.extinction = extinction(*design.environment.visibility, design.emitters.wavelength);
+    if (design.environment.visibility)
+        link.extinction = extinction(*design.environment.visibility, design.emitters.wavelength);
     return link;
 }
 
 Returns cast_returns(const Link& link, const Scene& scene, const Progress& progress) {
     const Pixels& pixels = link.design.receiver.pixels;
     std::vector<Row> rows(static_cast<std::size_t>(pixels.rows));
-    parallel_for(rows.size(), "casting pixels", progress, [&](std::size_t row) { rows[row] = cast_row(link, scene, static_cast<int>(row)); });
-    Returns returns{.rays = static_cast<std::size_t>(pixels.rows) * pixels.columns * link.design.sampling.rays_per_pixel};
+    parallel_for(rows.size(), "casting pixels", progress, [&](std::size_t row) {
+        rows[row] = cast_row(link, scene, static_cast<int>(row), progress);
+    });
+    Returns returns{.rays = static_cast<std::size_t>(pixels.rows) * pixels.columns *
+                            link.design.sampling.rays_per_pixel};
     for (const Row& row : rows) {
         returns.list.insert(returns.list.end(), row.returns.begin(), row.returns.end());
         returns.rays_hit += row.hits;

@@ -32,11 +32,11 @@ std::string shortened(std::string text, std::size_t width) {
 }
 
 std::string requirement_table(const Assessment& assessment) {
-    std::string text = fmt::format("{:<4} {:<23} {:<24} {:<19} {:>7}\n", "", "requirement", "needed", "got", "margin");
+    std::string text = fmt::format("{:<4} {:<23} {:<22} {:<20} {:>7}\n", "", "requirement", "needed", "got", "margin");
     text += std::string(page_width, '-') + "\n";
     for (const RequirementResult& each : assessment.requirements) {
-        text += fmt::format("{:<4} {:<23} {:<24} {:<19} {:>7}\n", each.met ? "met" : "NOT", shortened(each.name, 23), shortened(each.needed_text, 24),
-                            shortened(each.got_text, 19), each.margin_text);
+        text += fmt::format("{:<4} {:<23} {:<22} {:<20} {:>7}\n", each.met ? "met" : "NOT", shortened(each.name, 23), shortened(each.needed_text, 22),
+                            shortened(each.got_text, 20), each.margin_text);
         if (!each.limited_by.empty()) text += wrapped("limited by " + each.limited_by, 5);
     }
     return text;

@@ -14,29 +14,35 @@ constexpr double narrow = 0.15;
 constexpr int disc_points = 64;
 
 double share_of_narrow(const Beam& beam, const Aperture& aperture, double along, double beside) {
+    const double radius = aperture.radius + aperture.play;
     const double width = std::hypot(beam.exit_radius, along * std::min(beam.kernel.a, beam.kernel.b));
-    if (width <= 0) return beside <= aperture.radius ? 1 : 0;
-    if (beside > aperture.radius + 3 * width) return 0;
-    if (beside + 3 * width < aperture.radius) return 1;
-    // A rim that is nearly straight across the beam: the half plane that holds the disc, a little more than the disc.
-    if (aperture.radius > 2 * width) return 0.5 * std::erfc(std::sqrt(2.0) * (beside - aperture.radius) / width);
-    return captured_share(gaussian_kernel(width, width), 1, beside, aperture.radius);
+    if (width <= 0) return beside <= radius ? 1 : 0;
+    if (beside > radius + 3 * width) return 0;
+    if (beside + 3 * width < radius) return 1;
+    // A rim that is nearly straight across the beam: the half plane that holds the disc, a little more than
+    // the disc.
+    if (radius > 2 * width) return 0.5 * std::erfc(std::sqrt(2.0) * (beside - radius) / width);
+    return captured_share(gaussian_kernel(width, width), 1, beside, radius);
 }
 
 double share_of_wide(const Beam& beam, const Aperture& aperture) {
     const Vec3 forward = aperture.centre.normalized();
-    const Vec3 right = forward.cross(std::abs(forward.z()) < 0.9 ? Vec3::UnitZ() : Vec3::UnitY()).normalized();
+    const Vec3 right =
+        forward.cross(std::abs(forward.z()) < 0.9 ? Vec3::UnitZ() : Vec3::UnitY()).normalized();
     const Vec3 up = right.cross(forward);
-    double sum = 0;
+    double sum = 0, most = 0;
     for (int i = 0; i < disc_points; ++i) {
-        const Vec2 at = aperture.radius * square_to_disc(r2_point(static_cast<std::uint32_t>(i), Vec2(0.5, 0.5)));
+        const Vec2 at = (aperture.radius + aperture.play) *
+                        square_to_disc(r2_point(static_cast<std::uint32_t>(i), Vec2(0.5, 0.5)));
         const Vec3 path = aperture.centre + at.x() * right + at.y() * up - beam.origin;
         const double squared = path.squaredNorm();
         const Vec3 direction = path / std::sqrt(squared);
-        sum += intensity(beam, direction) * std::max(0.0, direction.dot(forward)) / squared;
+        const double passing = intensity(beam, direction) * std::max(0.0, direction.dot(forward)) / squared;
+        sum += passing;
+        most = std::max(most, passing);
     }
     const double area = pi * aperture.radius * aperture.radius;
-    return std::min(1.0, sum / disc_points * area / beam.power);
+    return std::min(1.0, (aperture.play > 0 ? most : sum / disc_points) * area / beam.power);
 }
 
 }  // namespace
@@ -44,16 +50,18 @@ double share_of_wide(const Beam& beam, const Aperture& aperture) {
 double collected_share(const Beam& beam, const Aperture& aperture) {
     const Vec3 path = aperture.centre - beam.origin;
     const double along = path.dot(beam.axis);
-    if (beam.kernel.shape != KernelShape::gaussian || beam.kernel.reach > narrow) return share_of_wide(beam, aperture);
+    if (beam.kernel.shape != KernelShape::gaussian || beam.kernel.reach > narrow)
+        return share_of_wide(beam, aperture);
     if (along <= 0) return 0;
     return share_of_narrow(beam, aperture, along, (path - along * beam.axis).norm());
 }
 
-std::vector<ZoneEnergy> collected_energies(const FarField& field, const Aperture& aperture, double pulse_width) {
+std::vector<ZoneEnergy> collected_energies(const FarField& field, const Aperture& aperture,
+                                           double pulse_width) {
     std::vector<ZoneEnergy> energies;
     const double distance = aperture.centre.norm();
     // Beams start up to `spread` beside the origin, have a width there, and need only touch the rim.
-    const double beside = (aperture.radius + field.spread + 3 * field.widest_exit) / distance;
+    const double beside = (aperture.radius + aperture.play + field.spread + 3 * field.widest_exit) / distance;
     const double reach = beside < 1 ? field.reach + std::asin(beside) : 2;
     beams_near(field, aperture.centre / distance, reach, [&](const Beam& beam) {
         const double share = collected_share(beam, aperture);

@@ -41,4 +41,7 @@ private:
     std::string text_;  // every problem on its own line
 };
 
+/// The same error with a first problem put before the others: which field named the file that they are in.
+[[nodiscard]] Error named_by(const Error& error, std::string what, std::string path);
+
 }  // namespace glint

@@ -23,8 +23,8 @@ struct Triangle {
 /// x and y are sheared so that the ray runs along z (Woop, Benthin, Wald 2013, J. Comput. Graph. Tech. 2(1)).
 struct ShearedRay {
     int x = 0, y = 1, z = 2;                          ///< which axis of space plays x, y and z
-    double origin_x = 0, origin_y = 0, origin_z = 0;  /// origin in the permuted axes, m
-    double shear_x = 0, shear_y = 0, scale_z = 1;     /// d_x / d_z, d_y / d_z, 1 / d_z
+    double origin_x = 0, origin_y = 0, origin_z = 0;  ///< origin in the permuted axes, m
+    double shear_x = 0, shear_y = 0, scale_z = 1;     ///< d_x / d_z, d_y / d_z, 1 / d_z
 };
 
 [[nodiscard]] inline ShearedRay sheared(const Ray& ray) {
