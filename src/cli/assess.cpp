@@ -25,7 +25,8 @@ int run(const Options& options) {
         std::vector<OutputFile> files{{"summary.json", summary_json(design, assessment)},
                                       {"zones.csv", zones_csv(assessment)},
                                       {"points.ply", points_ply(assessment.points, assessment.object_names)}};
-        for (const View& view : views()) files.push_back({"preview-" + view.name + ".png", png(view.draw(design, assessment))});
+        for (const View& view : views())
+            files.push_back({"preview-" + view.name + ".png", png(view.draw(design, assessment))});
         write_files(options.out, files);
     }
     if (!options.quiet) fmt::print("{}", verdict_text(design, assessment));
@@ -39,7 +40,9 @@ Command add_assess(CLI::App& app) {
     const auto options = std::make_shared<Options>();
     CLI::App* command = app.add_subcommand("assess", "Work a design through and say what it reaches");
     add_design_options(*command, *options);
-    command->add_option("--out", options->out, "Folder for summary.json, zones.csv, points.ply and the pictures")->type_name("DIR");
+    command
+        ->add_option("--out", options->out, "Folder for summary.json, zones.csv, points.ply and the pictures")
+        ->type_name("DIR");
     command->footer("Example: glintplan assess examples/aisle-cart.xml --out out/aisle");
     return {command, [options] { return run(*options); }};
 }

@@ -8,11 +8,11 @@ namespace glint::cli {
 
 /// Exit status of the program.
 enum Exit : int {
-    done = 0,         ///< and every requirement met
-    unmet = 1,        ///< done, a requirement not met
-    bad_input = 2,    ///< bad input or usage
-    machine = 3,      ///< the machine failed
-    stopped = 130,    ///< Ctrl-C
+    done = 0,       ///< and every requirement met
+    unmet = 1,      ///< done, a requirement not met
+    bad_input = 2,  ///< bad input or usage
+    machine = 3,    ///< the machine failed
+    stopped = 130,  ///< Ctrl-C
 };
 
 /// A command added to the app; `run` is called when it was chosen.

@@ -9,10 +9,15 @@ namespace glint::cli {
 
 void add_design_options(CLI::App& command, DesignOptions& options) {
     command.add_option("design", options.design, "Design file")->required()->type_name("DESIGN.xml");
-    command.add_option("--set", options.settings, "Set a field for this run, e.g. drive/pulse_width=\"3 ns\"; may be given again")
+    command
+        .add_option("--set", options.settings,
+                    "Set a field for this run, e.g. drive/pulse_width=\"3 ns\"; may be given again; an empty "
+                    "value takes a field back")
         ->type_name("PATH=VALUE")
         ->allow_extra_args(false);
-    command.add_option("--threads", options.threads, "Threads to use; all when not given")->check(CLI::Range(1, 1024))->type_name("N");
+    command.add_option("--threads", options.threads, "Threads to use; all when not given")
+        ->check(CLI::Range(1, 1024))
+        ->type_name("N");
     command.add_flag("--quiet", options.quiet, "No progress and no verdict on the terminal");
 }
 

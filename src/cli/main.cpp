@@ -1,4 +1,5 @@
-// glintplan: parses the command line, runs one command, and turns what goes wrong into a message and an exit status.
+// glintplan: parses the command line, runs one command, and turns what goes wrong into a message and an exit
+// status.
 #include "cli/commands.h"
 
 #include <glint/core/error.h>
@@ -6,8 +7,8 @@
 #include <glint/core/version.h>
 #include <glint/safety/caution.h>
 
-#include <array>
 #include <fmt/format.h>
+#include <array>
 #include <new>
 #include <string>
 
@@ -16,17 +17,23 @@ namespace {
 using namespace glint;
 
 int explain(const Error& error) {
-    for (const Problem& problem : error.problems()) fmt::print(stderr, "glintplan: error: {}\n", to_text(problem));
+    for (const Problem& problem : error.problems())
+        fmt::print(stderr, "glintplan: error: {}\n", to_text(problem));
     return error.blame() == Blame::input ? cli::Exit::bad_input : cli::Exit::machine;
 }
 
 int parse_and_run(int argc, char** argv) {
-    CLI::App app{"Planner for addressable emitter arrays and flash illumination in lidar and 3D sensing.\n\n" + std::string(caution_paragraph)};
+    CLI::App app{
+        "Planner for addressable emitter arrays and flash illumination in lidar and 3D sensing.\n\n" +
+        std::string(caution_paragraph)};
     app.name("glintplan");
     app.set_version_flag("--version", fmt::format("glintplan {}", version()));
     app.require_subcommand(1);
-    app.footer("glintplan COMMAND --help says more. Exit status: 0 every requirement met, 1 one not met, 2 bad input, 3 the machine failed, 130 stopped.");
-    const std::array commands{cli::add_assess(app), cli::add_preview(app), cli::add_limits(app), cli::add_fields(app)};
+    app.footer(
+        "glintplan COMMAND --help says more. Exit status: 0 every requirement met, 1 one not met, 2 bad "
+        "input, 3 the machine failed, 130 stopped.");
+    const std::array commands{cli::add_assess(app), cli::add_preview(app), cli::add_limits(app),
+                              cli::add_fields(app)};
     try {
         app.parse(argc, argv);
     } catch (const CLI::ParseError& error) {

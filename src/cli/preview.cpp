@@ -22,7 +22,9 @@ int run(const Options& options) {
         names.push_back(view.name);
         if (view.name == options.view) chosen = &view;
     }
-    if (chosen == nullptr) throw Error(Problem{.what = "there is no view '" + options.view + "'", .accepted = join_or(names), .path = "--view"});
+    if (chosen == nullptr)
+        throw Error(Problem{
+            .what = "there is no view '" + options.view + "'", .accepted = join_or(names), .path = "--view"});
     const AssessedDesign done_with = assess_design(options);
     write_file(options.out, png(chosen->draw(done_with.loaded.design, done_with.assessment)));
     return Exit::done;

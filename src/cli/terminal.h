@@ -8,8 +8,8 @@
 
 namespace glint::cli {
 
-/// While it lives, Ctrl-C asks the work to stop, and, when wanted and standard error is a terminal, one line there
-/// shows the stage, the share done and the time left.
+/// While it lives, Ctrl-C asks the work to stop, and, when wanted and standard error is a terminal, one line
+/// there shows the stage, the share done and the time left.
 class TerminalProgress {
 public:
     explicit TerminalProgress(bool show);

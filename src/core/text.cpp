@@ -46,6 +46,10 @@ std::string join_or(std::span<const std::string> words) {
     return text;
 }
 
+std::string counted(long count, std::string_view noun) {
+    return std::to_string(count) + " " + std::string(noun) + (count == 1 ? "" : "s");
+}
+
 std::string_view trim(std::string_view text) {
     constexpr std::string_view blank = " \t\r\n";
     const auto first = text.find_first_not_of(blank);

@@ -12,10 +12,11 @@ std::string show(double value, Kind kind) { return show_quantity(value, kind); }
 void check_timing(const Design& design, std::vector<Problem>& problems) {
     const double period = 1 / design.firing.repetition;
     if (design.drive.pulse_width > period)
-        problems.push_back({.what = fmt::format("a pulse of {} is longer than the {} from shot to shot",
-                                                show(design.drive.pulse_width, Kind::time), show(period, Kind::time)),
-                            .accepted = "a pulse_width up to 1 / firing/repetition",
-                            .path = "drive/pulse_width"});
+        problems.push_back(
+            {.what = fmt::format("a pulse of {} is longer than the {} from shot to shot",
+                                 show(design.drive.pulse_width, Kind::time), show(period, Kind::time)),
+             .accepted = "a pulse_width up to 1 / firing/repetition",
+             .path = "drive/pulse_width"});
     // The histogram of one shot must end before the next shot, else echoes could not be told apart.
     const PhotonCounting& counting = design.receiver.photon_counting;
     const double flight = 2 * counting.gate / speed_of_light;
@@ -38,11 +39,12 @@ void check_band(const Design& design, std::vector<Problem>& problems) {
     const double low = filter.center - filter.width / 2, high = filter.center + filter.width / 2;
     const double wavelength = design.emitters.wavelength;
     if (wavelength < low || wavelength > high)
-        problems.push_back({.what = fmt::format("the filter passes {} to {}, the emitters send {}",
-                                                show_quantity(low, Kind::length, 4), show_quantity(high, Kind::length, 4),
-                                                show_quantity(wavelength, Kind::length, 4)),
-                            .accepted = "a pass band that holds emitters/wavelength",
-                            .path = "receiver/filter/center"});
+        problems.push_back(
+            {.what = fmt::format("the filter passes {} to {}, the emitters send {}",
+                                 show_quantity(low, Kind::length, 4), show_quantity(high, Kind::length, 4),
+                                 show_quantity(wavelength, Kind::length, 4)),
+             .accepted = "a pass band that holds emitters/wavelength",
+             .path = "receiver/filter/center"});
     if (low < 400e-9 || high > 1700e-9)
         problems.push_back({.what = "the pass band leaves the range of the solar spectrum known here",
                             .accepted = "a band within 400 nm to 1700 nm",
@@ -67,8 +69,8 @@ void check_addressing(const Design& design, std::vector<Problem>& problems) {
     if (!raster) return;
     const auto divide = [&](std::optional<int> zones, int emitters, const char* which) {
         if (zones && emitters % *zones != 0)
-            problems.push_back({.what = fmt::format("{} {} of zones do not divide the {} {} of emitters", *zones, which,
-                                                    emitters, which),
+            problems.push_back({.what = fmt::format("{} {} of zones do not divide the {} {} of emitters",
+                                                    *zones, which, emitters, which),
                                 .accepted = fmt::format("a divisor of {}", emitters),
                                 .path = fmt::format("emitters/addressing/{}", which)});
     };
@@ -82,16 +84,19 @@ void check_optics(const Design& design, std::vector<Problem>& problems) {
     for (const OpticalElement& element : design.optics.elements) {
         if (std::holds_alternative<Diffuser>(element)) {
             if (diffused)
-                problems.push_back({.what = "a second diffuser", .accepted = "one", .path = "optics/diffuser[2]"});
+                problems.push_back(
+                    {.what = "a second diffuser", .accepted = "one", .path = "optics/diffuser[2]"});
             diffused = true;
             continue;
         }
         ++lenses;
         if (lenses > 1)
-            problems.push_back({.what = "a second lens", .accepted = "one, with the focal length of the whole",
+            problems.push_back({.what = "a second lens",
+                                .accepted = "one, with the focal length of the whole",
                                 .path = "optics/lens[2]"});
         if (diffused)
-            problems.push_back({.what = "a lens behind a diffuser", .accepted = "the lens before the diffuser",
+            problems.push_back({.what = "a lens behind a diffuser",
+                                .accepted = "the lens before the diffuser",
                                 .path = "optics/lens"});
     }
 }

@@ -12,24 +12,33 @@ Record layout() {
     return Describe<Layout>("layout", "Where the emitters sit on the chip")
         .choice("kind", &Layout::kind, {"grid", "hexagonal", "scattered", "list"}, "Pattern of the emitters")
         .integer("rows", &Layout::rows, from_to(1, 4096), "Rows of emitters")
-        .required().when("kind", {"grid", "hexagonal"})
+        .required()
+        .when("kind", {"grid", "hexagonal"})
         .integer("columns", &Layout::columns, from_to(1, 4096), "Emitters in a row")
-        .required().when("kind", {"grid", "hexagonal"})
-        .quantity("pitch", &Layout::pitch, K::length, from_to(100e-9, 10e-3), "Distance of neighbours in a row")
-        .required().when("kind", {"grid", "hexagonal"})
+        .required()
+        .when("kind", {"grid", "hexagonal"})
+        .quantity("pitch", &Layout::pitch, K::length, from_to(100e-9, 10e-3),
+                  "Distance of neighbours in a row")
+        .required()
+        .when("kind", {"grid", "hexagonal"})
         .quantity("row_pitch", &Layout::row_pitch, K::length, from_to(100e-9, 10e-3),
                   "Distance of rows; the pitch when not given")
         .when("kind", {"grid"})
         .quantity("width", &Layout::width, K::length, above_to(0, 0.1), "Width of the area that is filled")
-        .required().when("kind", {"scattered"})
+        .required()
+        .when("kind", {"scattered"})
         .quantity("height", &Layout::height, K::length, above_to(0, 0.1), "Height of the area that is filled")
-        .required().when("kind", {"scattered"})
-        .quantity("spacing", &Layout::spacing, K::length, from_to(100e-9, 10e-3), "Least distance of two emitters")
-        .required().when("kind", {"scattered"})
+        .required()
+        .when("kind", {"scattered"})
+        .quantity("spacing", &Layout::spacing, K::length, from_to(100e-9, 10e-3),
+                  "Least distance of two emitters")
+        .required()
+        .when("kind", {"scattered"})
         .integer("seed", &Layout::seed, from_to(0, 1e9), "Seed of the random places")
         .when("kind", {"scattered"})
         .file("file", &Layout::file, "CSV file with columns x_um, y_um (or _mm, _m) and, if wanted, zone")
-        .required().when("kind", {"list"})
+        .required()
+        .when("kind", {"list"})
         .done();
 }
 
@@ -37,7 +46,8 @@ Record addressing() {
     return Describe<Addressing>("addressing", "Which emitters are wired to fire together as a zone")
         .choice("scheme", &Addressing::scheme,
                 {"individual", "rows", "columns", "blocks", "interleaved", "matrix", "list"},
-                "individual: each emitter; rows, columns: whole lines; blocks: a raster of neighbours; interleaved: "
+                "individual: each emitter; rows, columns: whole lines; blocks: a raster of neighbours; "
+                "interleaved: "
                 "every k-th; matrix: crossings of row and column lines; list: from the emitter list")
         .integer("rows", &Addressing::rows, from_to(1, 4096),
                  "Zones one above the other (interleaved: phases; matrix: row lines)")
@@ -50,13 +60,16 @@ Record addressing() {
 
 Record lobe() {
     return Describe<Lobe>("lobe", "What one emitter sends out before any optics")
-        .choice("shape", &Lobe::shape, {"gaussian", "ring"}, "Gaussian over a flat screen, or a ring of Gaussian wall")
+        .choice("shape", &Lobe::shape, {"gaussian", "ring"},
+                "Gaussian over a flat screen, or a ring of Gaussian wall")
         .choice("width", &Lobe::width, {"full 1/e2", "half 1/e2", "fwhm"}, "Which width the divergence is")
         .quantity("divergence", &Lobe::divergence, K::angle, above_to(0, radians(120)),
                   "Divergence of the lobe, or of the wall of the ring")
         .required()
-        .quantity("ring", &Lobe::ring, K::angle, above_to(0, radians(120)), "Full angle across the crest of the ring")
-        .required().when("shape", {"ring"})
+        .quantity("ring", &Lobe::ring, K::angle, above_to(0, radians(120)),
+                  "Full angle across the crest of the ring")
+        .required()
+        .when("shape", {"ring"})
         .done();
 }
 
@@ -64,7 +77,8 @@ Record emitters() {
     return Describe<Emitters>("emitters", "The emitter chip")
         .quantity("wavelength", &Emitters::wavelength, K::length, from_to(400e-9, 1800e-9), "Wavelength")
         .required()
-        .quantity("aperture", &Emitters::aperture, K::length, from_to(100e-9, 1e-3), "Diameter of one emitter")
+        .quantity("aperture", &Emitters::aperture, K::length, from_to(100e-9, 1e-3),
+                  "Diameter of one emitter")
         .required()
         .quantity("near_field_radius", &Emitters::near_field_radius, K::length, above_to(0, 1e-3),
                   "1/e2 radius of the light at the emitter; half the aperture when not given")
@@ -76,9 +90,11 @@ Record emitters() {
 
 Record drive() {
     return Describe<DriveSettings>("drive", "What one emitter is driven to")
-        .quantity("peak_power", &DriveSettings::peak_power, K::power, above_to(0, 1e3), "Peak optical power of one emitter")
+        .quantity("peak_power", &DriveSettings::peak_power, K::power, above_to(0, 1e3),
+                  "Peak optical power of one emitter")
         .required()
-        .quantity("pulse_width", &DriveSettings::pulse_width, K::time, from_to(10e-12, 1), "Length of the rectangular pulse")
+        .quantity("pulse_width", &DriveSettings::pulse_width, K::time, from_to(10e-12, 1),
+                  "Length of the rectangular pulse")
         .required()
         .done();
 }
@@ -88,7 +104,8 @@ Record firing() {
         .choice("order", &Firing::order, {"raster"}, "Order of the zones in a frame")
         .integer("zones_at_once", &Firing::zones_at_once, from_to(1, 1e6), "Zones that fire together")
         .integer("shots", &Firing::shots, from_to(1, 1e8), "Shots of a dwell")
-        .quantity("repetition", &Firing::repetition, K::frequency, from_to(0.01, 1e9), "Shots a second within a dwell")
+        .quantity("repetition", &Firing::repetition, K::frequency, from_to(0.01, 1e9),
+                  "Shots a second within a dwell")
         .required()
         .quantity("gap", &Firing::gap, K::time, from_to(0, 10), "Pause after each dwell")
         .quantity("frame_period", &Firing::frame_period, K::time, above_to(0, 100),
@@ -100,32 +117,47 @@ Record lens() {
     return Describe<Lens>("lens", "A lens with the chip near its focal plane")
         .quantity("focal_length", &Lens::focal_length, K::length, from_to(50e-6, 1), "Focal length")
         .required()
-        .quantity("clear_aperture", &Lens::clear_aperture, K::length, from_to(10e-6, 1), "Diameter that light can pass")
+        .quantity("clear_aperture", &Lens::clear_aperture, K::length, from_to(10e-6, 1),
+                  "Diameter that light can pass")
         .required()
-        .choice("mapping", &Lens::mapping, {"tan", "f-theta"}, "Place on the chip to direction: x = f tan(angle) or f angle")
-        .quantity("defocus", &Lens::defocus, K::length, from_to(-0.1, 0.1), "Chip moved out of the focal plane")
-        .quantity("blur", &Lens::blur, K::angle, from_to(0, 0.5), "1/e2 half angle that aberrations add to each beam")
-        .quantity("transmission", &Lens::transmission, K::ratio, above_to(0, 1), "Share of the captured light that passes the glass")
+        .choice("mapping", &Lens::mapping, {"tan", "f-theta"},
+                "Place on the chip to direction: x = f tan(angle) or f angle")
+        .quantity("defocus", &Lens::defocus, K::length, from_to(-0.1, 0.1),
+                  "Chip moved out of the focal plane")
+        .quantity("blur", &Lens::blur, K::angle, from_to(0, 0.5),
+                  "1/e2 half angle that aberrations add to each beam")
+        .quantity("transmission", &Lens::transmission, K::ratio, above_to(0, 1),
+                  "Share of the captured light that passes the glass")
         .done();
 }
 
 Record diffuser() {
     return Describe<Diffuser>("diffuser", "A diffuser with a set field")
         .choice("shape", &Diffuser::shape, {"rectangle", "round"}, "Shape of the lit field on a flat wall")
-        .quantity("horizontal", &Diffuser::horizontal, K::angle, from_to(radians(0.1), radians(150)), "Full field, horizontal")
-        .required().when("shape", {"rectangle"})
-        .quantity("vertical", &Diffuser::vertical, K::angle, from_to(radians(0.1), radians(150)), "Full field, vertical")
-        .required().when("shape", {"rectangle"})
-        .quantity("diameter", &Diffuser::diameter, K::angle, from_to(radians(0.1), radians(150)), "Full field, round")
-        .required().when("shape", {"round"})
-        .quantity("roll_off", &Diffuser::roll_off, K::angle, from_to(0, radians(30)), "Width of the edge from 10 % to 90 %")
-        .quantity("exponent", &Diffuser::exponent, K::number, from_to(-20, 10), "n of the profile I ~ cos^-n inside the field")
-        .quantity("transmission", &Diffuser::transmission, K::ratio, above_to(0, 1), "Share of the light that leaves within the field")
+        .quantity("horizontal", &Diffuser::horizontal, K::angle, from_to(radians(0.1), radians(150)),
+                  "Full field, horizontal")
+        .required()
+        .when("shape", {"rectangle"})
+        .quantity("vertical", &Diffuser::vertical, K::angle, from_to(radians(0.1), radians(150)),
+                  "Full field, vertical")
+        .required()
+        .when("shape", {"rectangle"})
+        .quantity("diameter", &Diffuser::diameter, K::angle, from_to(radians(0.1), radians(150)),
+                  "Full field, round")
+        .required()
+        .when("shape", {"round"})
+        .quantity("roll_off", &Diffuser::roll_off, K::angle, from_to(0, radians(30)),
+                  "Width of the edge from 10 % to 90 %")
+        .quantity("exponent", &Diffuser::exponent, K::number, from_to(-20, 10),
+                  "n of the profile I ~ cos^-n inside the field")
+        .quantity("transmission", &Diffuser::transmission, K::ratio, above_to(0, 1),
+                  "Share of the light that leaves within the field")
         .done();
 }
 
 Record optics() {
-    return Describe<Optics>("optics", "The projection optics, in the order light meets them; none: the bare chip")
+    return Describe<Optics>("optics",
+                            "The projection optics, in the order light meets them; none: the bare chip")
         .sequence(&Optics::elements, {lens(), diffuser()})
         .done();
 }
@@ -134,10 +166,13 @@ Record receiver_lens() {
     return Describe<ReceiverLens>("lens", "The receiver lens, focused at infinity")
         .quantity("focal_length", &ReceiverLens::focal_length, K::length, from_to(50e-6, 1), "Focal length")
         .required()
-        .quantity("f_number", &ReceiverLens::f_number, K::number, from_to(0.5, 64), "Focal length over entrance pupil diameter")
+        .quantity("f_number", &ReceiverLens::f_number, K::number, from_to(0.5, 64),
+                  "Focal length over entrance pupil diameter")
         .required()
-        .choice("mapping", &ReceiverLens::mapping, {"tan", "f-theta"}, "Direction to place on the sensor: f tan(angle) or f angle")
-        .quantity("transmission", &ReceiverLens::transmission, K::ratio, above_to(0, 1), "Share of the light that passes, without the filter")
+        .choice("mapping", &ReceiverLens::mapping, {"tan", "f-theta"},
+                "Direction to place on the sensor: f tan(angle) or f angle")
+        .quantity("transmission", &ReceiverLens::transmission, K::ratio, above_to(0, 1),
+                  "Share of the light that passes, without the filter")
         .done();
 }
 
@@ -149,7 +184,8 @@ Record pixels() {
         .required()
         .quantity("pitch", &Pixels::pitch, K::length, from_to(100e-9, 10e-3), "Side of a pixel")
         .required()
-        .quantity("fill_factor", &Pixels::fill_factor, K::ratio, above_to(0, 1), "Share of the pixel that collects light")
+        .quantity("fill_factor", &Pixels::fill_factor, K::ratio, above_to(0, 1),
+                  "Share of the pixel that collects light")
         .done();
 }
 
@@ -159,28 +195,37 @@ Record filter() {
         .required()
         .quantity("width", &Filter::width, K::length, from_to(0.1e-9, 500e-9), "Full width of the pass band")
         .required()
-        .quantity("transmission", &Filter::transmission, K::ratio, above_to(0, 1), "Transmission inside the band")
+        .quantity("transmission", &Filter::transmission, K::ratio, above_to(0, 1),
+                  "Transmission inside the band")
         .done();
 }
 
 Record photon_counting() {
-    return Describe<PhotonCounting>("photon_counting", "Single-photon detection with a histogram of arrival times")
-        .quantity("efficiency", &PhotonCounting::efficiency, K::ratio, above_to(0, 1), "Photon detection efficiency of the active area")
+    return Describe<PhotonCounting>("photon_counting",
+                                    "Single-photon detection with a histogram of arrival times")
+        .quantity("efficiency", &PhotonCounting::efficiency, K::ratio, above_to(0, 1),
+                  "Photon detection efficiency of the active area")
         .required()
-        .quantity("dark_count_rate", &PhotonCounting::dark_count_rate, K::frequency, from_to(0, 1e9), "Dark counts of one pixel")
-        .quantity("dead_time", &PhotonCounting::dead_time, K::time, from_to(0, 1e-3), "Time blind after each count")
-        .quantity("jitter", &PhotonCounting::jitter, K::time, from_to(0, 1e-6), "Timing jitter, full width at half maximum")
+        .quantity("dark_count_rate", &PhotonCounting::dark_count_rate, K::frequency, from_to(0, 1e9),
+                  "Dark counts of one pixel")
+        .quantity("dead_time", &PhotonCounting::dead_time, K::time, from_to(0, 1e-3),
+                  "Time blind after each count")
+        .quantity("jitter", &PhotonCounting::jitter, K::time, from_to(0, 1e-6),
+                  "Timing jitter, full width at half maximum")
         .quantity("bin", &PhotonCounting::bin, K::time, from_to(1e-12, 1e-6), "Width of a histogram bin")
         .required()
-        .quantity("gate", &PhotonCounting::gate, K::length, from_to(0.01, 1e5), "Length of the histogram, as range")
+        .quantity("gate", &PhotonCounting::gate, K::length, from_to(0.01, 1e5),
+                  "Length of the histogram, as range")
         .required()
-        .quantity("false_alarm", &PhotonCounting::false_alarm, K::ratio, above_to(0, 0.5), "Probability of a false detection in a pixel and dwell")
+        .quantity("false_alarm", &PhotonCounting::false_alarm, K::ratio, above_to(0, 0.5),
+                  "Probability of a false detection in a pixel and dwell")
         .done();
 }
 
 Record receiver() {
     return Describe<Receiver>("receiver", "The receiver, looking the same way as the emitter")
-        .quantity("right", &Receiver::right, K::length, from_to(-10, 10), "Receiver lens to the right of the emitter")
+        .quantity("right", &Receiver::right, K::length, from_to(-10, 10),
+                  "Receiver lens to the right of the emitter")
         .quantity("up", &Receiver::up, K::length, from_to(-10, 10), "Receiver lens above the emitter")
         .part(&Receiver::lens, receiver_lens())
         .part(&Receiver::pixels, pixels())
@@ -196,66 +241,91 @@ Record placement() {
         .quantity("x", &Placement::x, K::length, from_to(-1e5, 1e5), "Place in the scene: forward")
         .quantity("y", &Placement::y, K::length, from_to(-1e5, 1e5), "Place in the scene: left")
         .quantity("z", &Placement::z, K::length, from_to(-1e5, 1e5), "Place in the scene: up")
-        .quantity("heading", &Placement::heading, K::angle, from_to(-2 * pi, 2 * pi), "Turned to the right of +x")
+        .quantity("heading", &Placement::heading, K::angle, from_to(-2 * pi, 2 * pi),
+                  "Turned to the right of +x")
         .quantity("elevation", &Placement::elevation, K::angle, from_to(-pi / 2, pi / 2), "Looking up")
-        .quantity("roll", &Placement::roll, K::angle, from_to(-2 * pi, 2 * pi), "Tipped clockwise, seen from behind")
+        .quantity("roll", &Placement::roll, K::angle, from_to(-2 * pi, 2 * pi),
+                  "Tipped clockwise, seen from behind")
         .done();
 }
 
 Record environment() {
     return Describe<Environment>("environment", "Background light and air")
-        .choice("source", &Environment::source, {"none", "sun", "lamp"}, "What lights the scene: nothing, the sun (ASTM G173-03 global), a filament lamp")
-        .quantity("illuminance", &Environment::illuminance, K::illuminance, from_to(0, 200e3), "Illuminance on every surface seen")
-        .required().when("source", {"sun", "lamp"})
-        .quantity("colour_temperature", &Environment::colour_temperature, K::temperature, from_to(1500, 6000), "Colour temperature of the lamp")
+        .choice("source", &Environment::source, {"none", "sun", "lamp"},
+                "What lights the scene: nothing, the sun (ASTM G173-03 global), a filament lamp")
+        .quantity("illuminance", &Environment::illuminance, K::illuminance, from_to(0, 200e3),
+                  "Illuminance on every surface seen")
+        .required()
+        .when("source", {"sun", "lamp"})
+        .quantity("colour_temperature", &Environment::colour_temperature, K::temperature, from_to(1500, 6000),
+                  "Colour temperature of the lamp")
         .when("source", {"lamp"})
-        .quantity("visibility", &Environment::visibility, K::length, from_to(10, 200e3), "Meteorological visibility; clear air when not given")
+        .quantity("visibility", &Environment::visibility, K::length, from_to(10, 200e3),
+                  "Meteorological visibility; clear air when not given")
         .done();
 }
 
 Record eye_safety() {
     return Describe<EyeSafetySettings>("eye_safety", "Set-up of the eye-safety evaluation")
-        .quantity("closest_access", &EyeSafetySettings::closest_access, K::length, from_to(0, 100), "From the chip to the closest place a person can reach")
-        .quantity("time_base", &EyeSafetySettings::time_base, K::time, from_to(0.25, 30000), "Time base of the classification")
+        .quantity("closest_access", &EyeSafetySettings::closest_access, K::length, from_to(0, 100),
+                  "From the chip to the closest place a person can reach")
+        .quantity("time_base", &EyeSafetySettings::time_base, K::time, from_to(0.25, 30000),
+                  "Time base of the classification")
         .done();
 }
 
 Record requirements() {
-    Record range = Describe<RangeRequirement>("range", "Distance at which a flat target facing the module is still detected")
-        .quantity("distance", &RangeRequirement::distance, K::length, above_to(0, 1e5), "Distance to reach")
-        .required()
-        .quantity("reflectance", &RangeRequirement::reflectance, K::ratio, above_to(0, 1), "Reflectance of the target")
-        .required()
-        .quantity("probability", &RangeRequirement::probability, K::ratio, from_to(0.01, 0.9999), "Detection probability")
-        .quantity("share", &RangeRequirement::share, K::ratio, above_to(0, 1), "Share of the receiver's pixels that must reach it")
-        .done();
-    Record precision = Describe<PrecisionRequirement>("precision", "Standard deviation of the range on a flat target facing the module")
-        .quantity("limit", &PrecisionRequirement::limit, K::length, above_to(0, 1e3), "Largest standard deviation")
-        .required()
-        .quantity("distance", &PrecisionRequirement::distance, K::length, above_to(0, 1e5), "Distance of the target")
-        .required()
-        .quantity("reflectance", &PrecisionRequirement::reflectance, K::ratio, above_to(0, 1), "Reflectance of the target")
-        .required()
-        .quantity("share", &PrecisionRequirement::share, K::ratio, above_to(0, 1), "Share of the receiver's pixels that must hold it")
-        .done();
+    Record range = Describe<RangeRequirement>(
+                       "range", "Distance at which a flat target facing the module is still detected")
+                       .quantity("distance", &RangeRequirement::distance, K::length, above_to(0, 1e5),
+                                 "Distance to reach")
+                       .required()
+                       .quantity("reflectance", &RangeRequirement::reflectance, K::ratio, above_to(0, 1),
+                                 "Reflectance of the target")
+                       .required()
+                       .quantity("probability", &RangeRequirement::probability, K::ratio,
+                                 from_to(0.01, 0.9999), "Detection probability")
+                       .quantity("share", &RangeRequirement::share, K::ratio, above_to(0, 1),
+                                 "Share of the receiver's pixels that must reach it")
+                       .done();
+    Record precision = Describe<PrecisionRequirement>(
+                           "precision", "Standard deviation of the range on a flat target facing the module")
+                           .quantity("limit", &PrecisionRequirement::limit, K::length, above_to(0, 1e3),
+                                     "Largest standard deviation")
+                           .required()
+                           .quantity("distance", &PrecisionRequirement::distance, K::length, above_to(0, 1e5),
+                                     "Distance of the target")
+                           .required()
+                           .quantity("reflectance", &PrecisionRequirement::reflectance, K::ratio,
+                                     above_to(0, 1), "Reflectance of the target")
+                           .required()
+                           .quantity("share", &PrecisionRequirement::share, K::ratio, above_to(0, 1),
+                                     "Share of the receiver's pixels that must hold it")
+                           .done();
     Record frame_rate = Describe<FrameRateRequirement>("frame_rate", "Frames a second")
-        .quantity("minimum", &FrameRateRequirement::minimum, K::frequency, above_to(0, 1e6), "Least frame rate")
-        .required()
-        .done();
-    Record safety = Describe<EyeSafetyRequirement>("eye_safety", "Laser class by IEC 60825-1 and margin to its limit")
-        .choice("class", &EyeSafetyRequirement::laser_class, {"1", "1M", "3R", "3B"}, "Highest class that is acceptable")
-        .quantity("margin", &EyeSafetyRequirement::margin, K::ratio, from_to(0, 0.99), "Share of the limit that must stay unused")
-        .done();
-    Record points = Describe<PointsRequirement>("points", "Points of one frame on a named object")
-        .text("object", &PointsRequirement::object, "Name of an object of the scene")
-        .required()
-        .integer("minimum", &PointsRequirement::minimum, from_to(1, 1e9), "Least number of points")
-        .required()
-        .done();
+                            .quantity("minimum", &FrameRateRequirement::minimum, K::frequency,
+                                      above_to(0, 1e6), "Least frame rate")
+                            .required()
+                            .done();
+    Record safety =
+        Describe<EyeSafetyRequirement>("eye_safety", "Laser class by IEC 60825-1 and margin to its limit")
+            .choice("class", &EyeSafetyRequirement::laser_class, {"1", "1M", "3R", "3B"},
+                    "Highest class that is acceptable")
+            .quantity("margin", &EyeSafetyRequirement::margin, K::ratio, from_to(0, 0.99),
+                      "Share of the limit that must stay unused")
+            .done();
+    Record points =
+        Describe<PointsRequirement>("points", "Points of one frame on a named object")
+            .text("object", &PointsRequirement::object, "Name of an object of the scene")
+            .required()
+            .integer("minimum", &PointsRequirement::minimum, from_to(1, 1e9), "Least number of points")
+            .required()
+            .done();
     Record power = Describe<AveragePowerRequirement>("average_power", "Average optical power of the chip")
-        .quantity("maximum", &AveragePowerRequirement::maximum, K::power, above_to(0, 1e4), "Largest average optical power")
-        .required()
-        .done();
+                       .quantity("maximum", &AveragePowerRequirement::maximum, K::power, above_to(0, 1e4),
+                                 "Largest average optical power")
+                       .required()
+                       .done();
     return Describe<Requirements>("requirements", "What the module must reach")
         .sequence(&Requirements::list, {range, precision, frame_rate, safety, points, power})
         .done();
@@ -265,7 +335,8 @@ Record sampling() {
     return Describe<Sampling>("sampling", "How finely the models sample")
         .integer("rays_per_pixel", &Sampling::rays_per_pixel, from_to(1, 1024), "Rays cast from each pixel")
         .integer("rays_per_beam", &Sampling::rays_per_beam, from_to(1, 65536), "Rays cast from each beam")
-        .quantity("point_probability", &Sampling::point_probability, K::ratio, above_to(0, 1), "Least detection probability of a return that becomes a point")
+        .quantity("point_probability", &Sampling::point_probability, K::ratio, above_to(0, 1),
+                  "Least detection probability of a return that becomes a point")
         .integer("seed", &Sampling::seed, from_to(0, 1e9), "Seed of the samples")
         .done();
 }
@@ -273,20 +344,21 @@ Record sampling() {
 }  // namespace
 
 const Record& design_record() {
-    static const Record record = Describe<Design>("design", "One module: emitter, optics, receiver, its place, and what it must reach")
-        .text("name", &Design::name, "Name of the design")
-        .text("note", &Design::note, "Remark")
-        .part(&Design::emitters, emitters())
-        .part(&Design::drive, drive())
-        .part(&Design::firing, firing())
-        .part(&Design::optics, optics())
-        .part(&Design::receiver, receiver())
-        .part(&Design::placement, placement())
-        .part(&Design::environment, environment())
-        .part(&Design::eye_safety, eye_safety())
-        .part(&Design::requirements, requirements())
-        .part(&Design::sampling, sampling())
-        .done();
+    static const Record record =
+        Describe<Design>("design", "One module: emitter, optics, receiver, its place, and what it must reach")
+            .text("name", &Design::name, "Name of the design")
+            .text("note", &Design::note, "Remark")
+            .part(&Design::emitters, emitters())
+            .part(&Design::drive, drive())
+            .part(&Design::firing, firing())
+            .part(&Design::optics, optics())
+            .part(&Design::receiver, receiver())
+            .part(&Design::placement, placement())
+            .part(&Design::environment, environment())
+            .part(&Design::eye_safety, eye_safety())
+            .part(&Design::requirements, requirements())
+            .part(&Design::sampling, sampling())
+            .done();
     return record;
 }
 

@@ -10,7 +10,8 @@ namespace glint {
 Setting parse_setting(const std::string& text) {
     const auto equals = text.find('=');
     if (equals == std::string::npos || equals == 0)
-        throw Error(Problem{.what = "'" + text + "' sets nothing", .accepted = "PATH=VALUE, e.g. drive/pulse_width=\"3 ns\""});
+        throw Error(Problem{.what = "'" + text + "' sets nothing",
+                            .accepted = "PATH=VALUE, e.g. drive/pulse_width=\"3 ns\""});
     return {text.substr(0, equals), text.substr(equals + 1)};
 }
 
@@ -38,7 +39,8 @@ LoadedDesign load_design(const std::filesystem::path& file, std::span<const Sett
         }
     }
     if (problems.empty())
-        for (Problem& problem : contradictions(loaded.design)) problems.push_back(loaded.places.at(std::move(problem)));
+        for (Problem& problem : contradictions(loaded.design))
+            problems.push_back(loaded.places.at(std::move(problem)));
     if (!problems.empty()) throw Error(std::move(problems));
     loaded.folder = file.parent_path();
     return loaded;

@@ -2,11 +2,11 @@
 #include <glint/core/text.h>
 #include <glint/design/record_file.h>
 
-#include <algorithm>
-#include <charconv>
 #include <fmt/format.h>
 #include <fmt/ranges.h>
 #include <tinyxml2.h>
+#include <algorithm>
+#include <charconv>
 
 namespace glint {
 namespace {
@@ -53,9 +53,11 @@ class Reader {
 public:
     ReadReport report;
 
-    void read(const Record& record, void* owner, const tinyxml2::XMLElement& element, const std::string& path) {
+    void read(const Record& record, void* owner, const tinyxml2::XMLElement& element,
+              const std::string& path) {
         report.places.lines[path] = element.GetLineNum();
-        for (const auto* a = element.FirstAttribute(); a != nullptr; a = a->Next()) read_field(record, owner, *a, path);
+        for (const auto* a = element.FirstAttribute(); a != nullptr; a = a->Next())
+            read_field(record, owner, *a, path);
         std::map<std::string, int> seen;
         for (const auto* node = element.FirstChild(); node != nullptr; node = node->NextSibling()) {
             if (node->ToComment() != nullptr) continue;
@@ -92,8 +94,8 @@ private:
             complain(field_path, line, parsed.problem, accepted_by(*field));
     }
 
-    void read_element(const Record& record, void* owner, const tinyxml2::XMLElement& child, const std::string& path,
-                      int occurrence) {
+    void read_element(const Record& record, void* owner, const tinyxml2::XMLElement& child,
+                      const std::string& path, int occurrence) {
         const std::string name = child.Name();
         const std::string child_path =
             joined(path, occurrence > 1 ? fmt::format("{}[{}]", name, occurrence) : name);
@@ -130,7 +132,8 @@ Step parse_step(std::string_view text) {
     if (!text.ends_with(']')) return step;
     const std::string_view digits = text.substr(bracket + 1, text.size() - bracket - 2);
     const auto [end, error] = std::from_chars(digits.data(), digits.data() + digits.size(), step.occurrence);
-    if (error != std::errc{} || end != digits.data() + digits.size() || step.occurrence < 1) step.occurrence = 0;
+    if (error != std::errc{} || end != digits.data() + digits.size() || step.occurrence < 1)
+        step.occurrence = 0;
     return step;
 }
 
@@ -142,12 +145,14 @@ struct Owner {
 // The element one step below; an empty Owner when there is none.
 Owner step_into(const Owner& owner, const Step& step) {
     for (const Part& part : owner.record->parts)
-        if (part.of().name == step.name && step.occurrence == 1) return {&part.of(), part.inside(owner.object)};
+        if (part.of().name == step.name && step.occurrence == 1)
+            return {&part.of(), part.inside(owner.object)};
     for (const Sequence& sequence : owner.record->sequence) {
         int seen = 0;
         for (std::size_t i = 0; i < sequence.size(owner.object); ++i) {
             const Record& kind = sequence.kinds[sequence.kind_of(owner.object, i)];
-            if (kind.name == step.name && ++seen == step.occurrence) return {&kind, sequence.item(owner.object, i)};
+            if (kind.name == step.name && ++seen == step.occurrence)
+                return {&kind, sequence.item(owner.object, i)};
         }
     }
     return {};
@@ -159,13 +164,16 @@ void check_given(const Record& record, const void* owner, const Places& places, 
         const std::string field_path = joined(path, field.name);
         const bool given = places.given(field_path), fits = applies(record, field, owner);
         if (field.required && fits && !given)
-            problems.push_back(places.at({fmt::format("missing field '{}'", field.name), accepted_by(field), field_path, {}, 0}));
+            problems.push_back(places.at(
+                {fmt::format("missing field '{}'", field.name), accepted_by(field), field_path, {}, 0}));
         if (given && !fits) {
             const std::string chosen = std::get<std::string>(*record.field(field.when.field)->get(owner));
-            problems.push_back(places.at({fmt::format("'{}' contradicts {}=\"{}\"", field.name, field.when.field, chosen),
-                                          fmt::format("{} only with {} {}", field.name, field.when.field,
-                                                      join_or(field.when.values)),
-                                          field_path, {}, 0}));
+            problems.push_back(places.at(
+                {fmt::format("'{}' contradicts {}=\"{}\"", field.name, field.when.field, chosen),
+                 fmt::format("{} only with {} {}", field.name, field.when.field, join_or(field.when.values)),
+                 field_path,
+                 {},
+                 0}));
         }
     }
     // Reading never changes the object; the walkers share one untyped access.
@@ -177,9 +185,12 @@ void check_given(const Record& record, const void* owner, const Places& places, 
         if (!inner.empty() && !places.given(part_path)) {  // one message for the element, not one a field
             std::vector<std::string> missing;
             for (const Problem& problem : inner) missing.push_back(problem.path.substr(part_path.size() + 1));
-            inner = {places.at({fmt::format("missing element <{}>", part.of().name),
-                                fmt::format("<{}> with at least {}", part.of().name, fmt::join(missing, ", ")),
-                                part_path, {}, 0})};
+            inner = {
+                places.at({fmt::format("missing element <{}>", part.of().name),
+                           fmt::format("<{}> with at least {}", part.of().name, fmt::join(missing, ", ")),
+                           part_path,
+                           {},
+                           0})};
         }
         problems.insert(problems.end(), inner.begin(), inner.end());
     }
@@ -188,8 +199,10 @@ void check_given(const Record& record, const void* owner, const Places& places, 
         for (std::size_t i = 0; i < sequence.size(object); ++i) {
             const Record& kind = sequence.kinds[sequence.kind_of(object, i)];
             const int occurrence = ++seen[kind.name];
-            check_given(kind, sequence.item(object, i), places,
-                        joined(path, occurrence > 1 ? fmt::format("{}[{}]", kind.name, occurrence) : kind.name), problems);
+            check_given(
+                kind, sequence.item(object, i), places,
+                joined(path, occurrence > 1 ? fmt::format("{}[{}]", kind.name, occurrence) : kind.name),
+                problems);
         }
     }
 }
@@ -217,15 +230,18 @@ ReadReport read_record(const Record& record, void* target, const std::string& xm
     if (document.Parse(xml.data(), xml.size()) != tinyxml2::XML_SUCCESS) {
         std::string what = tinyxml2::XMLDocument::ErrorIDToName(document.ErrorID());
         if (what.starts_with("XML_ERROR_")) what = what.substr(10);
-        std::ranges::transform(what, what.begin(), [](char c) { return c == '_' ? ' ' : static_cast<char>(std::tolower(c)); });
-        reader.complain("", document.ErrorLineNum(), "not well-formed XML: " + what, "an XML file with root <" + record.name + ">");
+        std::ranges::transform(what, what.begin(),
+                               [](char c) { return c == '_' ? ' ' : static_cast<char>(std::tolower(c)); });
+        reader.complain("", document.ErrorLineNum(), "not well-formed XML: " + what,
+                        "an XML file with root <" + record.name + ">");
         return std::move(reader.report);
     }
     const tinyxml2::XMLElement* root = document.RootElement();
     if (root == nullptr || root->Name() != record.name) {
-        reader.complain("", root == nullptr ? 1 : root->GetLineNum(),
-                        root == nullptr ? "no root element" : fmt::format("the root element is <{}>", root->Name()),
-                        "<" + record.name + ">");
+        reader.complain(
+            "", root == nullptr ? 1 : root->GetLineNum(),
+            root == nullptr ? "no root element" : fmt::format("the root element is <{}>", root->Name()),
+            "<" + record.name + ">");
         return std::move(reader.report);
     }
     reader.read(record, target, *root, "");
@@ -251,7 +267,13 @@ std::optional<Problem> set_field(const Record& record, void* target, Places& pla
     }
     const Field* field = owner.record->field(rest);
     if (field == nullptr)
-        return fail(fmt::format("unknown field '{}'", rest), suggest(*owner.record, rest, field_names(*owner.record)));
+        return fail(fmt::format("unknown field '{}'", rest),
+                    suggest(*owner.record, rest, field_names(*owner.record)));
+    if (trim(text).empty()) {
+        field->clear(owner.object);
+        places.lines.erase(whole);
+        return std::nullopt;
+    }
     const ParsedValue parsed = parse_value(*field, text);
     if (!parsed.problem.empty()) return fail(parsed.problem, accepted_by(*field));
     field->set(owner.object, parsed.value);

@@ -2,9 +2,9 @@
 #include <glint/core/text.h>
 #include <glint/design/record.h>
 
+#include <fmt/format.h>
 #include <charconv>
 #include <cmath>
-#include <fmt/format.h>
 
 namespace glint {
 namespace {
@@ -45,10 +45,14 @@ std::string accepted_by(const Field& field) {
             const std::string units = field.kind == Kind::number ? "" : " (" + unit_list(field.kind) + ")";
             return article(name_of(field.kind)) + show_range(field) + units;
         }
-        case FieldType::integer: return "a whole number" + show_range(field);
-        case FieldType::choice: return join_or(field.choices);
-        case FieldType::text: return "text";
-        case FieldType::file: return "the name of a file";
+        case FieldType::integer:
+            return "a whole number" + show_range(field);
+        case FieldType::choice:
+            return join_or(field.choices);
+        case FieldType::text:
+            return "text";
+        case FieldType::file:
+            return "the name of a file";
     }
     return {};
 }
@@ -59,7 +63,8 @@ ParsedValue parse_value(const Field& field, std::string_view text) {
         case FieldType::quantity: {
             const ParsedQuantity parsed = parse_quantity(text, field.kind);
             if (!parsed.problem.empty()) return fail(parsed.problem);
-            if (!field.range.holds(parsed.value)) return fail(fmt::format("'{}' is out of range", trim(text)));
+            if (!field.range.holds(parsed.value))
+                return fail(fmt::format("'{}' is out of range", trim(text)));
             return {parsed.value, {}};
         }
         case FieldType::integer: {
@@ -78,7 +83,8 @@ ParsedValue parse_value(const Field& field, std::string_view text) {
                 if (choice == name) return {name, {}};
             return fail(fmt::format("unknown {} '{}'", field.name, name));
         }
-        case FieldType::text: return {std::string(text), {}};
+        case FieldType::text:
+            return {std::string(text), {}};
         case FieldType::file: {
             const std::string name(trim(text));
             if (name.empty()) return fail("an empty file name");

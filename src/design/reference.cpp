@@ -8,7 +8,9 @@
 namespace glint {
 namespace {
 
-std::string joined(const std::string& path, const std::string& name) { return path.empty() ? name : path + "/" + name; }
+std::string joined(const std::string& path, const std::string& name) {
+    return path.empty() ? name : path + "/" + name;
+}
 
 std::string initial_text(const Record& record, const Field& field) {
     if (field.required) return "required";
@@ -18,7 +20,9 @@ std::string initial_text(const Record& record, const Field& field) {
 }
 
 std::string condition(const Field& field) {
-    return field.when.field.empty() ? "" : fmt::format("only with {} {}", field.when.field, join_or(field.when.values));
+    return field.when.field.empty()
+               ? ""
+               : fmt::format("only with {} {}", field.when.field, join_or(field.when.values));
 }
 
 // Visits every record with its path, depth first, in file order.
@@ -31,8 +35,8 @@ void walk(const Record& record, const std::string& path, const Visit& visit) {
 }
 
 std::string field_lines(const Record& record, const Field& field, const std::string& path) {
-    std::string text = fmt::format("{}\n    {}\n    {}; {}", joined(path, field.name), field.help, accepted_by(field),
-                                   initial_text(record, field));
+    std::string text = fmt::format("{}\n    {}\n    {}; {}", joined(path, field.name), field.help,
+                                   accepted_by(field), initial_text(record, field));
     if (const std::string only = condition(field); !only.empty()) text += "; " + only;
     return text + "\n";
 }
@@ -67,8 +71,8 @@ std::string reference_markdown(const Record& record) {
         text += "\n| field | accepts | default | meaning |\n|---|---|---|---|\n";
         for (const Field& field : at.fields) {
             const std::string only = condition(field);
-            text += fmt::format("| `{}` | {} | {} | {}{} |\n", field.name, accepted_by(field), initial_text(at, field),
-                                field.help, only.empty() ? "" : " (" + only + ")");
+            text += fmt::format("| `{}` | {} | {} | {}{} |\n", field.name, accepted_by(field),
+                                initial_text(at, field), field.help, only.empty() ? "" : " (" + only + ")");
         }
     });
     return text;

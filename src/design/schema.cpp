@@ -9,11 +9,16 @@ namespace {
 std::string escaped(std::string_view text) {
     std::string out;
     for (const char c : text) {
-        if (c == '&') out += "&amp;";
-        else if (c == '<') out += "&lt;";
-        else if (c == '>') out += "&gt;";
-        else if (c == '"') out += "&quot;";
-        else out += c;
+        if (c == '&')
+            out += "&amp;";
+        else if (c == '<')
+            out += "&lt;";
+        else if (c == '>')
+            out += "&gt;";
+        else if (c == '"')
+            out += "&quot;";
+        else
+            out += c;
     }
     return out;
 }
@@ -31,14 +36,16 @@ std::string quantity_type(Kind kind) {
     }
     const std::string number = R"(\s*[+\-]?([0-9]+(\.[0-9]*)?|\.[0-9]+)([eE][+\-]?[0-9]+)?\s*)";
     const std::string suffix = units.empty() ? "" : fmt::format("({}){}", units, optional ? "?" : "");
-    return fmt::format("<xs:restriction base=\"xs:string\"><xs:pattern value=\"{}{}\\s*\"/></xs:restriction>", number,
-                       suffix);
+    return fmt::format("<xs:restriction base=\"xs:string\"><xs:pattern value=\"{}{}\\s*\"/></xs:restriction>",
+                       number, suffix);
 }
 
 std::string type_of(const Field& field) {
     switch (field.type) {
-        case FieldType::quantity: return quantity_type(field.kind);
-        case FieldType::integer: return "<xs:restriction base=\"xs:integer\"/>";
+        case FieldType::quantity:
+            return quantity_type(field.kind);
+        case FieldType::integer:
+            return "<xs:restriction base=\"xs:integer\"/>";
         case FieldType::choice: {
             std::string names;
             for (const std::string& choice : field.choices)
@@ -46,7 +53,8 @@ std::string type_of(const Field& field) {
             return "<xs:restriction base=\"xs:string\">" + names + "</xs:restriction>";
         }
         case FieldType::text:
-        case FieldType::file: return "<xs:restriction base=\"xs:string\"/>";
+        case FieldType::file:
+            return "<xs:restriction base=\"xs:string\"/>";
     }
     return {};
 }
@@ -71,10 +79,11 @@ void element(const Record& record, std::string_view occurs, int depth, std::stri
         const bool always = field.required && field.when.field.empty();
         out += fmt::format("{}    <xs:attribute name=\"{}\" use=\"{}\">\n", indent, field.name,
                            always ? "required" : "optional");
-        out += fmt::format("{}      <xs:annotation><xs:documentation>{}; {}</xs:documentation></xs:annotation>\n", indent,
-                           escaped(field.help), escaped(accepted_by(field)));
-        out += fmt::format("{}      <xs:simpleType>{}</xs:simpleType>\n{}    </xs:attribute>\n", indent, type_of(field),
-                           indent);
+        out += fmt::format(
+            "{}      <xs:annotation><xs:documentation>{}; {}</xs:documentation></xs:annotation>\n", indent,
+            escaped(field.help), escaped(accepted_by(field)));
+        out += fmt::format("{}      <xs:simpleType>{}</xs:simpleType>\n{}    </xs:attribute>\n", indent,
+                           type_of(field), indent);
     }
     out += indent + "  </xs:complexType>\n" + indent + "</xs:element>\n";
 }
@@ -82,7 +91,9 @@ void element(const Record& record, std::string_view occurs, int depth, std::stri
 }  // namespace
 
 std::string xml_schema(const Record& record) {
-    std::string out = "<?xml version=\"1.0\" encoding=\"UTF-8\"?>\n<xs:schema xmlns:xs=\"http://www.w3.org/2001/XMLSchema\">\n";
+    std::string out =
+        "<?xml version=\"1.0\" encoding=\"UTF-8\"?>\n<xs:schema "
+        "xmlns:xs=\"http://www.w3.org/2001/XMLSchema\">\n";
     element(record, "", 1, out);
     return out + "</xs:schema>\n";
 }

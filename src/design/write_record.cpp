@@ -27,7 +27,8 @@ void write(const Record& record, void* owner, tinyxml2::XMLPrinter& printer) {
 
 std::string write_record(const Record& record, const void* source) {
     tinyxml2::XMLPrinter printer;
-    write(record, const_cast<void*>(source), printer);  // the walkers share one untyped access; nothing is changed
+    write(record, const_cast<void*>(source),
+          printer);  // the walkers share one untyped access; nothing is changed
     return printer.CStr();
 }
 

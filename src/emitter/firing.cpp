@@ -3,8 +3,8 @@
 #include <glint/core/quantity.h>
 #include <glint/emitter/firing.h>
 
-#include <algorithm>
 #include <fmt/format.h>
+#include <algorithm>
 #include <numeric>
 
 namespace glint {
@@ -13,13 +13,15 @@ namespace {
 std::vector<int> order_zones(FiringOrder order, int zones) {
     std::vector<int> sequence(static_cast<std::size_t>(zones));
     switch (order) {
-        case FiringOrder::raster: std::iota(sequence.begin(), sequence.end(), 0); break;
+        case FiringOrder::raster:
+            std::iota(sequence.begin(), sequence.end(), 0);
+            break;
     }
     return sequence;
 }
 
-// A matrix drives the crossings of some row lines with some column lines, and nothing else: the zones of a dwell
-// must be exactly such a product.
+// A matrix drives the crossings of some row lines with some column lines, and nothing else: the zones of a
+// dwell must be exactly such a product.
 bool is_product(std::span<const int> zones, int columns) {
     std::vector<int> rows_used, columns_used;
     for (const int zone : zones) rows_used.push_back(zone / columns), columns_used.push_back(zone % columns);
@@ -40,9 +42,10 @@ std::span<const int> FiringPlan::zones_of(int dwell) const {
 FiringPlan plan_firing(const Design& design, const EmitterArray& array) {
     const Firing& firing = design.firing;
     if (firing.zones_at_once > array.zones)
-        throw Error(Problem{.what = fmt::format("{} zones at once, but there are only {}", firing.zones_at_once, array.zones),
-                            .accepted = fmt::format("1 to {}", array.zones),
-                            .path = "firing/zones_at_once"});
+        throw Error(Problem{
+            .what = fmt::format("{} zones at once, but there are only {}", firing.zones_at_once, array.zones),
+            .accepted = fmt::format("1 to {}", array.zones),
+            .path = "firing/zones_at_once"});
     FiringPlan plan{.zones = order_zones(firing.order, array.zones),
                     .start = {},
                     .zones_at_once = firing.zones_at_once,
@@ -56,18 +59,20 @@ FiringPlan plan_firing(const Design& design, const EmitterArray& array) {
     if (design.emitters.addressing.scheme == AddressingScheme::matrix)
         for (int d = 0; d < dwells; ++d)
             if (!is_product(plan.zones_of(d), array.zone_columns))
-                throw Error(Problem{.what = fmt::format("a row-by-column matrix cannot fire the {} zones of dwell {} alone",
-                                                        plan.zones_of(d).size(), d),
-                                    .accepted = fmt::format("a divisor of {0} or a multiple of {0} that divides {1}",
-                                                            array.zone_columns, array.zones),
-                                    .path = "firing/zones_at_once"});
+                throw Error(Problem{
+                    .what = fmt::format("a row-by-column matrix cannot fire the {} zones of dwell {} alone",
+                                        plan.zones_of(d).size(), d),
+                    .accepted = fmt::format("a divisor of {0} or a multiple of {0} that divides {1}",
+                                            array.zone_columns, array.zones),
+                    .path = "firing/zones_at_once"});
     const double needed = dwells * step;
     plan.frame_period = firing.frame_period.value_or(needed);
     if (plan.frame_period < needed * (1 - 1e-12))
         throw Error(Problem{.what = fmt::format("the frame lasts {}, but its {} dwells take {}",
                                                 show_quantity(plan.frame_period, Kind::time, 4), dwells,
                                                 show_quantity(needed, Kind::time, 4)),
-                            .accepted = fmt::format("at least {}, or fewer shots, or more zones at once", show_quantity(needed, Kind::time, 4)),
+                            .accepted = fmt::format("at least {}, or fewer shots, or more zones at once",
+                                                    show_quantity(needed, Kind::time, 4)),
                             .path = "firing/frame_period"});
     return plan;
 }

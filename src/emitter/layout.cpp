@@ -16,7 +16,8 @@ Places2d raster(int rows, int columns, double pitch, double row_pitch, double od
     const double centre_v = (rows - 1) * row_pitch / 2;
     for (int r = 0; r < rows; ++r)
         for (int c = 0; c < columns; ++c)
-            places.positions.emplace_back(c * pitch + (r % 2 == 1 ? odd_shift : 0) - centre_u, centre_v - r * row_pitch);
+            places.positions.emplace_back(c * pitch + (r % 2 == 1 ? odd_shift : 0) - centre_u,
+                                          centre_v - r * row_pitch);
     return places;
 }
 
@@ -27,7 +28,8 @@ Places2d grid_layout(const Layout& layout) {
 }
 
 Places2d hexagonal_layout(const Layout& layout) {
-    return raster(layout.rows, layout.columns, layout.pitch, layout.pitch * std::sqrt(3.0) / 2, layout.pitch / 2);
+    return raster(layout.rows, layout.columns, layout.pitch, layout.pitch * std::sqrt(3.0) / 2,
+                  layout.pitch / 2);
 }
 
 double nearest_distance(const std::vector<Vec2>& positions) {
@@ -40,10 +42,15 @@ double nearest_distance(const std::vector<Vec2>& positions) {
                                   size.maxCoeff() / static_cast<double>(positions.size()), 1e-12});
     const int columns = static_cast<int>(size.x() / cell) + 1, rows = static_cast<int>(size.y() / cell) + 1;
     std::vector<std::vector<int>> cells(static_cast<std::size_t>(columns) * rows);
-    const auto column_of = [&](const Vec2& p) { return std::min(columns - 1, static_cast<int>((p.x() - low.x()) / cell)); };
-    const auto row_of = [&](const Vec2& p) { return std::min(rows - 1, static_cast<int>((p.y() - low.y()) / cell)); };
+    const auto column_of = [&](const Vec2& p) {
+        return std::min(columns - 1, static_cast<int>((p.x() - low.x()) / cell));
+    };
+    const auto row_of = [&](const Vec2& p) {
+        return std::min(rows - 1, static_cast<int>((p.y() - low.y()) / cell));
+    };
     for (std::size_t i = 0; i < positions.size(); ++i)
-        cells[static_cast<std::size_t>(row_of(positions[i])) * columns + column_of(positions[i])].push_back(static_cast<int>(i));
+        cells[static_cast<std::size_t>(row_of(positions[i])) * columns + column_of(positions[i])].push_back(
+            static_cast<int>(i));
     double nearest = std::numeric_limits<double>::infinity();
     for (std::size_t i = 0; i < positions.size(); ++i) {
         const int r = row_of(positions[i]), c = column_of(positions[i]);
@@ -52,7 +59,8 @@ double nearest_distance(const std::vector<Vec2>& positions) {
                 for (int x = std::max(0, c - ring); x <= std::min(columns - 1, c + ring); ++x) {
                     if (std::max(std::abs(y - r), std::abs(x - c)) != ring) continue;
                     for (const int j : cells[static_cast<std::size_t>(y) * columns + x])
-                        if (j != static_cast<int>(i)) nearest = std::min(nearest, (positions[i] - positions[j]).norm());
+                        if (j != static_cast<int>(i))
+                            nearest = std::min(nearest, (positions[i] - positions[j]).norm());
                 }
     }
     return nearest;

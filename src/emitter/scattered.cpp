@@ -5,9 +5,9 @@
 #include <glint/core/samples.h>
 #include <glint/emitter/layout.h>
 
+#include <fmt/format.h>
 #include <algorithm>
 #include <cmath>
-#include <fmt/format.h>
 
 namespace glint {
 namespace {
@@ -26,7 +26,9 @@ struct Cells {
           rows(static_cast<int>(height / side) + 1),
           place(static_cast<std::size_t>(columns) * rows, -1) {}
 
-    [[nodiscard]] int column(const Vec2& p) const { return std::min(columns - 1, static_cast<int>(p.x() / side)); }
+    [[nodiscard]] int column(const Vec2& p) const {
+        return std::min(columns - 1, static_cast<int>(p.x() / side));
+    }
     [[nodiscard]] int row(const Vec2& p) const { return std::min(rows - 1, static_cast<int>(p.y() / side)); }
     [[nodiscard]] int& at(int r, int c) { return place[static_cast<std::size_t>(r) * columns + c]; }
 
@@ -34,7 +36,8 @@ struct Cells {
         const int r = row(p), c = column(p);
         for (int y = std::max(0, r - 2); y <= std::min(rows - 1, r + 2); ++y)
             for (int x = std::max(0, c - 2); x <= std::min(columns - 1, c + 2); ++x)
-                if (const int other = at(y, x); other >= 0 && (positions[other] - p).norm() < spacing) return false;
+                if (const int other = at(y, x); other >= 0 && (positions[other] - p).norm() < spacing)
+                    return false;
         return true;
     }
 };
@@ -44,9 +47,11 @@ struct Cells {
 Places2d scattered_layout(const Layout& layout) {
     const double width = layout.width, height = layout.height, spacing = layout.spacing;
     if (width * height / (spacing * spacing) > 4e6)
-        throw Error(Problem{.what = "the area holds millions of emitters at this spacing",
-                            .accepted = fmt::format("a spacing of at least {}", show_quantity(std::sqrt(width * height / 4e6), Kind::length)),
-                            .path = "emitters/layout/spacing"});
+        throw Error(
+            Problem{.what = "the area holds millions of emitters at this spacing",
+                    .accepted = fmt::format("a spacing of at least {}",
+                                            show_quantity(std::sqrt(width * height / 4e6), Kind::length)),
+                    .path = "emitters/layout/spacing"});
     RandomStream random(static_cast<std::uint64_t>(layout.seed));
     Cells cells(width, height, spacing);
     Places2d places;

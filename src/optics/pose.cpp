@@ -1,7 +1,6 @@
 // The module's pose: between its own frame and the scene's.
 #include <glint/optics/pose.h>
 
-
 namespace glint {
 
 Pose module_pose(const Placement& placement) {

@@ -4,9 +4,9 @@
 #include <glint/core/quantity.h>
 #include <glint/optics/beam.h>
 
+#include <fmt/format.h>
 #include <algorithm>
 #include <cmath>
-#include <fmt/format.h>
 
 namespace glint {
 namespace {
@@ -17,7 +17,10 @@ constexpr double edge_10_90 = 2.563103;
 Beams bare(const EmitterArray& array, const Design& design) {
     const Kernel kernel = lobe_kernel(design.emitters.lobe);
     const double radius = design.emitters.near_field_radius.value_or(design.emitters.aperture / 2);
-    Beams beams{.beams = {}, .losses = {}, .emitted = static_cast<double>(array.size()) * design.drive.peak_power, .zones = array.zones};
+    Beams beams{.beams = {},
+                .losses = {},
+                .emitted = static_cast<double>(array.size()) * design.drive.peak_power,
+                .zones = array.zones};
     beams.beams.reserve(array.size());
     for (std::size_t i = 0; i < array.size(); ++i)
         beams.beams.push_back({.origin = Vec3(0, -array.positions[i].x(), array.positions[i].y()),
@@ -59,10 +62,11 @@ void through_lens(Beams& beams, const Lens& lens, const Emitters& emitters) {
         const double u = -beam.origin.y(), v = beam.origin.z(), r = std::hypot(u, v);
         const Mapped mapped = map(lens, r);
         if (mapped.angle > radians(80))
-            throw Error(Problem{.what = fmt::format("an emitter {} off the axis would be sent {} aside",
-                                                    show_quantity(r, Kind::length), show_quantity(mapped.angle, Kind::angle)),
-                                .accepted = "a longer focal length or a smaller chip: at most 80 deg",
-                                .path = "optics/lens/focal_length"});
+            throw Error(Problem{
+                .what = fmt::format("an emitter {} off the axis would be sent {} aside",
+                                    show_quantity(r, Kind::length), show_quantity(mapped.angle, Kind::angle)),
+                .accepted = "a longer focal length or a smaller chip: at most 80 deg",
+                .path = "optics/lens/focal_length"});
         const double captured = captured_share(lobe, distance, r, lens.clear_aperture / 2);
         missed += beam.power * (1 - captured);
         absorbed += beam.power * captured * (1 - lens.transmission);
@@ -80,18 +84,21 @@ void through_lens(Beams& beams, const Lens& lens, const Emitters& emitters) {
     beams.losses.push_back({"beside the lens", missed});
     beams.losses.push_back({"in the lens", absorbed});
     if (kept < 1e-6 * beams.emitted)
-        throw Error(Problem{.what = fmt::format("almost no light of the {} chip passes the lens", show_quantity(emitters.aperture, Kind::length)),
+        throw Error(Problem{.what = fmt::format("almost no light of the {} chip passes the lens",
+                                                show_quantity(emitters.aperture, Kind::length)),
                             .accepted = "a clear aperture wider than the chip",
                             .path = "optics/lens/clear_aperture"});
 }
 
 void through_diffuser(Beams& beams, const Diffuser& diffuser) {
     // The edge is the diffuser's own, softened further by the spread of the light that arrives.
-    const double own = 2 * std::tan(diffuser.roll_off) / edge_10_90;  // 1/e2 half width is two standard deviations
+    const double own =
+        2 * std::tan(diffuser.roll_off) / edge_10_90;  // 1/e2 half width is two standard deviations
     const double edge = std::hypot(own, equivalent_half_width(beams.beams.front().kernel));
     const Kernel kernel = diffuser.shape == FieldShape::round
                               ? round_kernel(std::tan(diffuser.diameter / 2), edge, diffuser.exponent)
-                              : rectangle_kernel(std::tan(diffuser.horizontal / 2), std::tan(diffuser.vertical / 2), edge, diffuser.exponent);
+                              : rectangle_kernel(std::tan(diffuser.horizontal / 2),
+                                                 std::tan(diffuser.vertical / 2), edge, diffuser.exponent);
     double lost = 0;
     for (Beam& beam : beams.beams) {
         lost += beam.power * (1 - diffuser.transmission);

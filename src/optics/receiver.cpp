@@ -11,8 +11,9 @@ Vec3 receiver_position(const Receiver& receiver) { return {0, -receiver.right, r
 PixelRay pixel_ray(const Receiver& receiver, int column, int row, const Vec2& within) {
     const Pixels& pixels = receiver.pixels;
     const double f = receiver.lens.focal_length;
-    const double u = (column + within.x() - pixels.columns / 2.0) * pixels.pitch / f;  // to the right in the field
-    const double v = (pixels.rows / 2.0 - row - within.y()) * pixels.pitch / f;        // up in the field
+    const double u =
+        (column + within.x() - pixels.columns / 2.0) * pixels.pitch / f;         // to the right in the field
+    const double v = (pixels.rows / 2.0 - row - within.y()) * pixels.pitch / f;  // up in the field
     const double r = std::hypot(u, v);
     const double area = pixels.pitch * pixels.pitch * pixels.fill_factor / (f * f);
     if (receiver.lens.mapping == LensMapping::tangent) {

@@ -24,12 +24,14 @@ CountingModel counting_model(const Design& design) {
     model.counts_per_joule = counting.efficiency / photon_energy(design.emitters.wavelength);
     model.dark_count_rate = counting.dark_count_rate;
     model.dead_time = counting.dead_time;
-    model.timing = std::sqrt(std::pow(design.drive.pulse_width / fwhm_over_sigma, 2) +
-                             std::pow(counting.jitter / fwhm_over_sigma, 2) + counting.bin * counting.bin / 12);
+    model.timing =
+        std::sqrt(std::pow(design.drive.pulse_width / fwhm_over_sigma, 2) +
+                  std::pow(counting.jitter / fwhm_over_sigma, 2) + counting.bin * counting.bin / 12);
     model.window = std::max(best_window * model.timing, counting.bin);
     model.captured = std::erf(model.window / (2 * std::sqrt(2.0) * model.timing));
     model.range_per_time = speed_of_light / air_group_index(design.emitters.wavelength) / 2;
-    model.bins = std::max(1, static_cast<int>(std::ceil(counting.gate / model.range_per_time / counting.bin)));
+    model.bins =
+        std::max(1, static_cast<int>(std::ceil(counting.gate / model.range_per_time / counting.bin)));
     model.false_alarm = -std::expm1(std::log1p(-counting.false_alarm) / model.bins);
     model.shots = design.firing.shots;
     model.pulse_width = design.drive.pulse_width;
@@ -67,7 +69,8 @@ Detection detect(const CountingModel& model, double signal_shot, double rate) {
     detection.signal = echo_counts(model, signal_shot, rate);
     detection.background = window_background(model, rate);
     detection.threshold = poisson_threshold(detection.background, model.false_alarm);
-    detection.probability = poisson_tail(detection.threshold, detection.background + model.captured * detection.signal);
+    detection.probability =
+        poisson_tail(detection.threshold, detection.background + model.captured * detection.signal);
     detection.precision = precision_bound(model, detection.signal, detection.background / model.window);
     return detection;
 }

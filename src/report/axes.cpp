@@ -1,5 +1,4 @@
 // Axes: shares, numbers that fit, labels.
-#include <glint/core/error.h>
 #include <glint/report/axes.h>
 #include <glint/report/font.h>
 

@@ -236,7 +236,7 @@ void Canvas::text(const Vec2& at, std::string_view text, const TextStyle& style)
             for (std::size_t i = 0; i < ring.size(); ++i)
                 bars.push_back(
                     bar_ring(ring[i], ring[(i + 1) % ring.size()], style.halo * density_, true, true));
-        blend(cover_union(bars, clip_), with_alpha(palette::background, 0.9));
+        blend(cover_union(bars, clip_), style.halo_colour);
     }
     blend(cover(outline.rings, clip_), style.colour);
     labels_.push_back({.text = std::string(text), .box = text_box(at, text, style)});

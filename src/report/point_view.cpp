@@ -87,8 +87,22 @@ struct Cloud {
     bool dots = false;  ///< too sparse to close up to surfaces
 };
 
-Colour shaded(const Colour& colour, double light) {
-    return {.red = colour.red * light, .green = colour.green * light, .blue = colour.blue * light};
+/// The colour lighter when the surface faces the light, darker when it turns away: by the same step of
+/// lightness whatever the colour, so that dark ends of a scale keep their shapes.
+Colour lit(const Colour& colour, double facing) {
+    Oklab lab = to_oklab(colour);
+    lab.lightness += 0.12 * (facing - 0.55);
+    return from_oklab(lab);
+}
+
+/// Radius of a mark with neighbours `spacing` away on the page [units]: close ones close up to a surface,
+/// wider ones shrink to a dot, and marks in no surface (leaves, edges) stay small.
+double mark_radius(const LocalSurface& local, double units, double dot) {
+    constexpr double closed = 11, apart = 18, largest = 6.5;
+    const double spacing = local.spacing * units;
+    if (!local.flat) return std::clamp(0.5 * local.closest * units, 0.8, dot);
+    if (spacing <= closed) return std::clamp(0.68 * spacing, 0.8, largest);
+    return largest + (dot - largest) * std::min(1.0, (spacing - closed) / (apart - closed));
 }
 
 Cloud cloud_of(const PointView& view, std::span<const LocalSurface> surfaces, const Camera& camera,
@@ -103,13 +117,11 @@ Cloud cloud_of(const PointView& view, std::span<const LocalSurface> surfaces, co
         if (depth <= 0) continue;
         const LocalSurface& local = surfaces[i];
         const double units = camera.focal / depth;
-        // Close neighbours close up to a surface; a mark alone stays a dot, larger when near.
-        const double dot = std::clamp(3.4 * middle_depth / depth, 2.0, 5.0);
+        // A mark alone is a dot, larger when near.
+        const double dot = std::clamp(3.2 * middle_depth / depth, 2.0, 5.0);
         const bool alone = cloud.dots || local.spacing == 0 || local.spacing * units > 22;
-        const double closing =
-            std::clamp((local.flat ? 0.68 * local.spacing : 0.55 * local.closest) * units, 0.8, 7.0);
-        Splat splat{
-            .centre = position, .normal = {}, .radius = view.mark_scale * (alone ? dot : closing) / units};
+        const double radius = alone ? dot : mark_radius(local, units, dot);
+        Splat splat{.centre = position, .normal = {}, .radius = view.mark_scale * radius / units};
         splat.colour =
             std::isnan(view.marks[i].value) ? palette::no_data_line : colours.of(view.marks[i].value);
         if (local.flat && !alone) {
@@ -123,9 +135,7 @@ Cloud cloud_of(const PointView& view, std::span<const LocalSurface> surfaces, co
             }
             splat.normal = away ? Vec3(-normal) : normal;
         }
-        // Marks without a surface take the light of one seen slantwise, so that they do not stand out.
-        const double facing = splat.normal ? std::max(0.0, splat.normal->dot(light)) : 0.4;
-        splat.colour = shaded(splat.colour, alone ? 1 : 0.80 + 0.20 * facing);
+        if (splat.normal) splat.colour = lit(splat.colour, std::max(0.0, splat.normal->dot(light)));
         cloud.splats.push_back(splat);
     }
     return cloud;

@@ -4,8 +4,8 @@
 #include <glint/report/tables.h>
 #include <glint/safety/caution.h>
 
-#include <cmath>
 #include <fmt/format.h>
+#include <cmath>
 #include <nlohmann/json.hpp>
 
 namespace glint {
@@ -16,7 +16,9 @@ using Json = nlohmann::ordered_json;
 // JSON has no infinity: what is not finite is null.
 Json number(double value) { return std::isfinite(value) ? Json(value) : Json(nullptr); }
 
-std::string with_unit(const std::string& key, const std::string& unit) { return unit.empty() ? key : key + "_" + unit; }
+std::string with_unit(const std::string& key, const std::string& unit) {
+    return unit.empty() ? key : key + "_" + unit;
+}
 
 Json requirements(const Assessment& assessment) {
     Json list = Json::array();
@@ -46,8 +48,12 @@ Json chip(const Design& design, const Assessment& assessment) {
 
 Json firing(const Assessment& assessment) {
     const FiringPlan& plan = assessment.plan;
-    return {{"dwells", plan.dwells()},     {"zones_at_once", plan.zones_at_once},    {"shots", plan.shots},
-            {"pulse_width_s", plan.pulse_width}, {"shot_period_s", plan.shot_period}, {"frame_period_s", plan.frame_period},
+    return {{"dwells", plan.dwells()},
+            {"zones_at_once", plan.zones_at_once},
+            {"shots", plan.shots},
+            {"pulse_width_s", plan.pulse_width},
+            {"shot_period_s", plan.shot_period},
+            {"frame_period_s", plan.frame_period},
             {"frame_rate_Hz", 1 / plan.frame_period}};
 }
 
@@ -58,9 +64,13 @@ Json light(const Assessment& assessment) {
         losses.push_back({{"name", loss.name}, {"power_W", loss.power}});
         lost += loss.power;
     }
-    for (const ZoneReport& zone : assessment.zones) landed += zone.landing.landed, escaped += zone.landing.escaped;
-    return {{"emitted_peak_W", assessment.beams.emitted}, {"in_beams_W", assessment.beams.emitted - lost}, {"losses", losses},
-            {"landed_on_scene_W", landed},  {"escaped_W", escaped}};
+    for (const ZoneReport& zone : assessment.zones)
+        landed += zone.landing.landed, escaped += zone.landing.escaped;
+    return {{"emitted_peak_W", assessment.beams.emitted},
+            {"in_beams_W", assessment.beams.emitted - lost},
+            {"losses", losses},
+            {"landed_on_scene_W", landed},
+            {"escaped_W", escaped}};
 }
 
 Json safety(const Assessment& assessment) {
@@ -89,7 +99,11 @@ Json safety(const Assessment& assessment) {
 Json ranging(const Design& design, const Assessment& assessment) {
     Json reaches = Json::array();
     for (const ReachSummary& reach : assessment.reaches)
-        reaches.push_back({{"reflectance", reach.reflectance}, {"probability", reach.probability}, {"shortest_m", reach.shortest}, {"median_m", reach.median}, {"longest_m", reach.longest}});
+        reaches.push_back({{"reflectance", reach.reflectance},
+                           {"probability", reach.probability},
+                           {"shortest_m", reach.shortest},
+                           {"median_m", reach.median},
+                           {"longest_m", reach.longest}});
     Json objects = Json::array();
     for (std::size_t i = 0; i < assessment.object_names.size(); ++i)
         objects.push_back({{"name", assessment.object_names[i]}, {"points", assessment.points_on_object[i]}});

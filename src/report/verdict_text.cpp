@@ -1,4 +1,5 @@
 // The verdict for a terminal.
+#include <glint/core/text.h>
 #include <glint/report/tables.h>
 #include <glint/safety/caution.h>
 
@@ -16,7 +17,8 @@ std::string wrapped(std::string_view text, std::size_t indent) {
     while (!text.empty()) {
         const auto end = text.find(' ');
         const std::string_view word = text.substr(0, end);
-        if (column > indent && column + 1 + word.size() > page_width) out += "\n" + std::string(indent, ' '), column = indent;
+        if (column > indent && column + 1 + word.size() > page_width)
+            out += "\n" + std::string(indent, ' '), column = indent;
         if (column > indent) out += ' ', ++column;
         out += word;
         column += word.size();
@@ -32,10 +34,12 @@ std::string shortened(std::string text, std::size_t width) {
 }
 
 std::string requirement_table(const Assessment& assessment) {
-    std::string text = fmt::format("{:<4} {:<23} {:<22} {:<20} {:>7}\n", "", "requirement", "needed", "got", "margin");
+    std::string text =
+        fmt::format("{:<4} {:<23} {:<22} {:<20} {:>7}\n", "", "requirement", "needed", "got", "margin");
     text += std::string(page_width, '-') + "\n";
     for (const RequirementResult& each : assessment.requirements) {
-        text += fmt::format("{:<4} {:<23} {:<22} {:<20} {:>7}\n", each.met ? "met" : "NOT", shortened(each.name, 23), shortened(each.needed_text, 22),
+        text += fmt::format("{:<4} {:<23} {:<22} {:<20} {:>7}\n", each.met ? "met" : "NOT",
+                            shortened(each.name, 23), shortened(each.needed_text, 22),
                             shortened(each.got_text, 20), each.margin_text);
         if (!each.limited_by.empty()) text += wrapped("limited by " + each.limited_by, 5);
     }
@@ -45,25 +49,36 @@ std::string requirement_table(const Assessment& assessment) {
 std::string chip_section(const Design& design, const Assessment& assessment) {
     const Packing& packing = assessment.packing;
     const FiringPlan& plan = assessment.plan;
-    std::string text = fmt::format("Chip      {} emitters of {}, {:.0f} per mm2, {:.1f} % fill\n", assessment.array.size(),
-                                   show_quantity(design.emitters.aperture, Kind::length), packing.density * 1e-6, 100 * packing.fill);
-    text += fmt::format("Firing    {} zones in {} dwells of {} shots, frame {}, {:.3g} Hz\n", assessment.array.zones, plan.dwells(), plan.shots,
-                        show_quantity(plan.frame_period, Kind::time), 1 / plan.frame_period);
-    text += fmt::format("Power     {} peak, {} average, optical, at the chip\n", show_quantity(assessment.beams.emitted / assessment.array.zones * plan.zones_at_once, Kind::power),
-                        show_quantity(assessment.average_power, Kind::power));
+    std::string text = fmt::format(
+        "Chip      {} emitters of {}, {:.0f} per mm2, {:.1f} % fill\n", assessment.array.size(),
+        show_quantity(design.emitters.aperture, Kind::length), packing.density * 1e-6, 100 * packing.fill);
+    text += fmt::format("Firing    {} in {} of {}, frame {}, {:.3g} Hz\n",
+                        counted(assessment.array.zones, "zone"), counted(plan.dwells(), "dwell"),
+                        counted(plan.shots, "shot"), show_quantity(plan.frame_period, Kind::time),
+                        1 / plan.frame_period);
+    text += fmt::format(
+        "Power     {} peak, {} average, optical, at the chip\n",
+        show_quantity(assessment.beams.emitted / assessment.array.zones * plan.zones_at_once, Kind::power),
+        show_quantity(assessment.average_power, Kind::power));
     for (const Loss& loss : assessment.beams.losses)
-        text += fmt::format("          {:.1f} % lost {}\n", 100 * loss.power / assessment.beams.emitted, loss.name);
-    text += fmt::format("Points    {} of {} pixels\n", assessment.points.size(), design.receiver.pixels.columns * design.receiver.pixels.rows);
+        text += fmt::format("          {:.1f} % lost {}\n", 100 * loss.power / assessment.beams.emitted,
+                            loss.name);
+    text += fmt::format("Points    {} of {} pixels\n", assessment.points.size(),
+                        design.receiver.pixels.columns * design.receiver.pixels.rows);
     return text;
 }
 
 std::string safety_section(const Assessment& assessment) {
     const SafetyVerdict& safety = assessment.safety;
-    std::string text = fmt::format("Eye safety: {} by this estimate, worst AE/AEL for Class 1 {:.3g}\n", name_of(safety.laser_class), safety.worst_ratio);
-    text += fmt::format("  {:<10} {:<24} {:>10} {:>10} {:>10} {:>8}\n", "criterion", "condition", "duration", "AE", "AEL", "AE/AEL");
+    std::string text = fmt::format("Eye safety: {} by this estimate, worst AE/AEL for Class 1 {:.3g}\n",
+                                   name_of(safety.laser_class), safety.worst_ratio);
+    text += fmt::format("  {:<10} {:<24} {:>10} {:>10} {:>10} {:>8}\n", "criterion", "condition", "duration",
+                        "AE", "AEL", "AE/AEL");
     for (const ExposureCase& each : safety.criteria)
-        text += fmt::format("  {:<10} {:<24} {:>10} {:>10} {:>10} {:>8.3g}\n", name_of(each.criterion), name_of(each.condition),
-                            show_quantity(each.duration, Kind::time), show_quantity(each.ae, Kind::energy), show_quantity(each.ael, Kind::energy), each.ratio());
+        text += fmt::format("  {:<10} {:<24} {:>10} {:>10} {:>10} {:>8.3g}\n", name_of(each.criterion),
+                            name_of(each.condition), show_quantity(each.duration, Kind::time),
+                            show_quantity(each.ae, Kind::energy), show_quantity(each.ael, Kind::energy),
+                            each.ratio());
     return text;
 }
 
@@ -75,7 +90,8 @@ std::string verdict_text(const Design& design, const Assessment& assessment) {
     text += chip_section(design, assessment) + "\n" + safety_section(assessment) + "\n";
     if (!assessment.requirements.empty()) text += requirement_table(assessment) + "\n";
     for (const std::string& finding : assessment.findings) text += wrapped(finding, 0);
-    if (!assessment.requirements.empty()) text += assessment.all_met() ? "\nEvery requirement is met.\n" : "\nNOT every requirement is met.\n";
+    if (!assessment.requirements.empty())
+        text += assessment.all_met() ? "\nEvery requirement is met.\n" : "\nNOT every requirement is met.\n";
     return text;
 }
 

@@ -91,7 +91,22 @@ void draw_zones(Canvas& canvas, const ZoneMap& map, const Frame& frame) {
             canvas.polyline(
                 polygon, {.colour = with_alpha(palette::background, 0.9), .width = 0.8, .dashes = {}}, true);
         }
-    // One size for all numbers: the smallest that any of those that fit needs.
+}
+
+/// The lines over the zones, on a light rim so that they show on dark zones too.
+void draw_outlines(Canvas& canvas, const ZoneMap& map, const Frame& frame) {
+    for (const FieldOutline& outline : map.outlines) {
+        const std::vector<Vec2> ring = placed(frame, {outline.corners})[0];
+        canvas.polyline(ring, {.colour = with_alpha(palette::background, 0.75), .width = 4, .dashes = {}},
+                        true);
+        canvas.polyline(ring, {.colour = outline.colour, .width = 2, .cap = Cap::butt, .dashes = {6, 4}},
+                        true);
+    }
+}
+
+/// All numbers have one size: the smallest that any of those that fit needs.
+void draw_numbers(Canvas& canvas, const ZoneMap& map, const Frame& frame) {
+    const SettledScale& colours = *frame.content.colours;
     double size = 12;
     const auto each_number = [&](auto&& visit) {
         for (const ZoneShape& zone : map.zones)
@@ -106,8 +121,13 @@ void draw_zones(Canvas& canvas, const ZoneMap& map, const Frame& frame) {
     each_number([&](const ZoneShape&, const Vec2&, double fitting) { size = std::min(size, fitting); });
     each_number([&](const ZoneShape& zone, const Vec2& centre, double) {
         const Colour ground = mix(palette::background, colours.of(zone.value), map.opacity);
-        const TextStyle style{
-            .size = size, .colour = ink_on(ground), .align = Align::centre, .anchor = Anchor::middle};
+        // A rim in the zone's colour parts the number from a line that runs under it.
+        const TextStyle style{.size = size,
+                              .colour = ink_on(ground),
+                              .align = Align::centre,
+                              .anchor = Anchor::middle,
+                              .halo = map.outlines.empty() ? 0 : 2.5,
+                              .halo_colour = ground};
         // Where zones overlap only the first number stands.
         const PageBox box = text_box(centre, zone.number, style);
         const auto hit = [&](const Label& label) { return label.box.overlaps(box); };
@@ -146,9 +166,8 @@ Canvas draw(const ZoneMap& map) {
     canvas.clip(frame.plot);
     draw_ground(canvas, frame);
     draw_zones(canvas, map, frame);
-    for (const FieldOutline& outline : map.outlines)
-        canvas.polyline(placed(frame, {outline.corners})[0],
-                        {.colour = outline.colour, .width = 2, .cap = Cap::butt, .dashes = {6, 4}}, true);
+    draw_outlines(canvas, map, frame);
+    draw_numbers(canvas, map, frame);
     canvas.clip(std::nullopt);
     draw_surround(canvas, frame);
     return canvas;

@@ -6,7 +6,6 @@
 #include <glint/scene/mesh.h>
 #include <glint/scene/polygon.h>
 
-#define TINYOBJLOADER_USE_DOUBLE
 #include <tiny_obj_loader.h>
 #include <sstream>
 #include <string>

@@ -33,8 +33,7 @@ TEST_CASE("square to disc keeps areas") {
     int within = 0;
     for (int i = 0; i < n; ++i)
         within += square_to_disc(r2_point(static_cast<std::uint32_t>(i), Vec2::Zero())).norm() < 0.5;
-    CHECK(static_cast<double>(within) / n ==
-          about(0.25).epsilon(0.01));  // low-discrepancy error ~ 1/sqrt(n)
+    CHECK(static_cast<double>(within) / n == about(0.25).epsilon(0.01));  // low-discrepancy error ~ 1/sqrt(n)
 }
 
 TEST_CASE("square to Gaussian puts 86.47 % within the 1/e2 radius") {

@@ -162,6 +162,21 @@ TEST_CASE("settings change a field, and bad ones are problems of their own") {
     CHECK_THROWS_AS((void)parse_setting("nothing"), Error);
 }
 
+TEST_CASE("an empty setting takes a field back") {
+    CHECK(holds(problems_with("<placement", "<environment source=\"sun\" illuminance=\"1 klx\"/><placement",
+                              {{"environment/source", "none"}}),
+                "'illuminance' contradicts source=\"none\""));
+    CHECK(problems_with("<placement", "<environment source=\"sun\" illuminance=\"1 klx\"/><placement",
+                        {{"environment/source", "none"}, {"environment/illuminance", ""}}) == "");
+    CHECK(holds(problems_with("name=\"t\"", "name=\"u\"", {{"drive/pulse_width", " "}}),
+                "missing field 'pulse_width'"));
+    Design design;
+    design.firing.frame_period = 1;
+    Places places;
+    CHECK(!set_field(design_record(), &design, places, "firing/frame_period", ""));
+    CHECK(!design.firing.frame_period.has_value());
+}
+
 TEST_CASE("a setting reaches the field it names") {
     Design design;
     Places places;

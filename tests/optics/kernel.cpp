@@ -63,8 +63,7 @@ TEST_CASE("Gaussian widths, textbook") {
         return intensity(kernel, t, 0) / std::pow(1 + t * t, 1.5);
     };
     CHECK(on_screen(by_fwhm, std::tan(radians(0.1))) / on_screen(by_fwhm, 0) == about(0.5));
-    CHECK(on_screen(by_full, std::tan(radians(10))) / on_screen(by_full, 0) ==
-          about(std::exp(-2.0)));
+    CHECK(on_screen(by_full, std::tan(radians(10))) / on_screen(by_full, 0) == about(std::exp(-2.0)));
 }
 
 TEST_CASE("diffuser solid angles, derived from I = I0 cos^-n") {
@@ -87,8 +86,7 @@ TEST_CASE("diffuser solid angles, derived from I = I0 cos^-n") {
     const double edge_over_centre[][2] = {{3, 1.5396}, {4, 1.7778}, {7, 2.7371}};
     for (const auto& [n, ratio] : edge_over_centre) {
         const Kernel kernel = round_kernel(a, 0, n);
-        CHECK(intensity(kernel, a * (1 - 1e-9), 0) / intensity(kernel, 0, 0) ==
-              about(ratio).epsilon(1e-4));
+        CHECK(intensity(kernel, a * (1 - 1e-9), 0) / intensity(kernel, 0, 0) == about(ratio).epsilon(1e-4));
     }
 }
 
@@ -121,8 +119,7 @@ TEST_CASE("capture by a lens, Gaussian: closed form on axis, Marcum series off a
     const double t = std::tan(radians(10));
     const double expected[][2] = {{0, 0.99997}, {0.3e-3, 0.99857}, {0.6e-3, 0.95276}, {0.9e-3, 0.63176}};
     for (const auto& [x, share] : expected)
-        CHECK(captured_share(gaussian_kernel(t, t), 2.5e-3, x, 1e-3) ==
-              about(share).epsilon(1.2e-5));
+        CHECK(captured_share(gaussian_kernel(t, t), 2.5e-3, x, 1e-3) == about(share).epsilon(1.2e-5));
 }
 
 TEST_CASE("capture equals a slow count over random beams, rings too") {
@@ -157,10 +154,8 @@ TEST_CASE("samples carry the power of the kernel where they fall") {
         }
         CHECK(all == about(1).epsilon(0.003));
         CHECK(right == about(0.5).epsilon(0.005));
-        if (kernel.shape == KernelShape::gaussian)
-            CHECK(mean_square == about(0.2 * 0.2 / 4).epsilon(0.005));
+        if (kernel.shape == KernelShape::gaussian) CHECK(mean_square == about(0.2 * 0.2 / 4).epsilon(0.005));
         if (kernel.shape == KernelShape::ring)
-            CHECK(2 * std::sqrt(mean_square) ==
-                  about(equivalent_half_width(kernel)).epsilon(0.005));
+            CHECK(2 * std::sqrt(mean_square) == about(equivalent_half_width(kernel)).epsilon(0.005));
     }
 }

@@ -63,8 +63,7 @@ TEST_CASE("lens mapping, textbook: pointing and pitch of an f-tan and an f-theta
     CHECK(angle_of(beams.beams[26]) - angle_of(beams.beams[25]) == about(16.0e-3).epsilon(1e-3));
     const double local[][2] = {{0.3e-3, 15.773e-3}, {0.6e-3, 15.129e-3}, {1.0e-3, 13.793e-3}};
     for (const auto& [x, pitch] : local)
-        CHECK(40e-6 * std::pow(std::cos(std::atan(x / 2.5e-3)), 2) / 2.5e-3 ==
-              about(pitch).epsilon(1e-4));
+        CHECK(40e-6 * std::pow(std::cos(std::atan(x / 2.5e-3)), 2) / 2.5e-3 == about(pitch).epsilon(1e-4));
 }
 
 TEST_CASE("residual divergence, textbook: size over focal length, with defocus in quadrature") {
@@ -172,8 +171,7 @@ TEST_CASE("the far field of each zone integrates to the power of its beams") {
     const Beams beams = beams_of(design);
     const FarField field = far_field(beams);
     const std::vector<double> powers = zone_powers(beams);
-    for (int zone = 0; zone < 2; ++zone)
-        CHECK(integral(field, zone) == about(powers[zone]).epsilon(1e-3));
+    for (int zone = 0; zone < 2; ++zone) CHECK(integral(field, zone) == about(powers[zone]).epsilon(1e-3));
 }
 
 TEST_CASE("the index finds what a loop over all beams finds") {

@@ -49,8 +49,7 @@ TEST_CASE("pixel solid angles add up to the solid angle of the field") {
                 sum += pixel_ray(receiver, column, row, {0.5, 0.5}).solid_angle;
         const Vec2 view = field_of_view(receiver);
         if (mapping == LensMapping::tangent)
-            CHECK(sum == about(4 * std::asin(std::sin(view.x() / 2) * std::sin(view.y() / 2)))
-                             .epsilon(1e-4));
+            CHECK(sum == about(4 * std::asin(std::sin(view.x() / 2) * std::sin(view.y() / 2))).epsilon(1e-4));
         else
             CHECK(sum < view.x() * view.y());
     }
@@ -65,8 +64,7 @@ TEST_CASE("pixel (0, 0) is the upper left of the field, rays are unit vectors") 
         CHECK(pixel_ray(receiver, 199, 159, {0.5, 0.5}).direction.y() < 0);
         CHECK(first.norm() == about(1).epsilon(1e-14));
     }
-    CHECK(degrees(field_of_view(receiver_of(LensMapping::tangent)).x()) ==
-          about(67.3801).epsilon(1e-5));
+    CHECK(degrees(field_of_view(receiver_of(LensMapping::tangent)).x()) == about(67.3801).epsilon(1e-5));
 }
 
 TEST_CASE("the pose turns right, lifts, and tips clockwise") {

@@ -3,8 +3,8 @@
 
 #include "program/run.h"
 
-#include <algorithm>
 #include <doctest/doctest.h>
+#include <algorithm>
 #include <filesystem>
 #include <fstream>
 #include <nlohmann/json.hpp>
@@ -32,7 +32,9 @@ TEST_CASE("assess writes every file, prints the verdict, and says with its statu
     CHECK_MESSAGE(met.status == 0, met.err);
     CHECK(holds(met.out, "CAUTION"));
     CHECK(holds(met.out, "Every requirement is met."));
-    for (const char* name : {"summary.json", "zones.csv", "points.ply", "preview-points.png", "preview-zones.png"}) CHECK(fs::file_size(out + "/" + name) > 200);
+    for (const char* name :
+         {"summary.json", "zones.csv", "points.ply", "preview-points.png", "preview-zones.png"})
+        CHECK(fs::file_size(out + "/" + name) > 200);
     const auto summary = nlohmann::json::parse(content(out + "/summary.json"));
     CHECK(summary["all_requirements_met"] == true);
     CHECK(holds(summary["caution"], "no permission to expose"));
@@ -42,7 +44,8 @@ TEST_CASE("assess writes every file, prints the verdict, and says with its statu
     const std::string zones = content(out + "/zones.csv");
     CHECK(std::count(zones.begin(), zones.end(), '\n') == 5);
 
-    const Run unmet = run("glintplan assess " + design + " --set 'requirements/range/distance=900 m' --quiet");
+    const Run unmet =
+        run("glintplan assess " + design + " --set 'requirements/range/distance=900 m' --quiet");
     CHECK(unmet.status == 1);
     CHECK(unmet.out.empty());
 }
@@ -59,9 +62,13 @@ TEST_CASE("the same bytes come out for 1, 2 and 3 threads, and in a locale with 
     const Folder folder;
     folder.write("scene.xml", small_scene);
     const std::string design = folder.write("d.xml", small_design);
-    for (const char* n : {"1", "2", "3"}) CHECK(run("glintplan assess " + design + " --quiet --threads " + n + " --out " + folder.path(n)).status == 0);
-    CHECK(run("LC_ALL=de_DE.UTF-8 glintplan assess " + design + " --quiet --out " + folder.path("comma")).status == 0);
-    for (const char* name : {"summary.json", "zones.csv", "points.ply", "preview-points.png", "preview-zones.png"}) {
+    for (const char* n : {"1", "2", "3"})
+        CHECK(run("glintplan assess " + design + " --quiet --threads " + n + " --out " + folder.path(n))
+                  .status == 0);
+    CHECK(run("LC_ALL=de_DE.UTF-8 glintplan assess " + design + " --quiet --out " + folder.path("comma"))
+              .status == 0);
+    for (const char* name :
+         {"summary.json", "zones.csv", "points.ply", "preview-points.png", "preview-zones.png"}) {
         const std::string one = content(folder.path("1") + "/" + name);
         CHECK(one == content(folder.path("2") + "/" + name));
         CHECK(one == content(folder.path("3") + "/" + name));
@@ -72,29 +79,39 @@ TEST_CASE("the same bytes come out for 1, 2 and 3 threads, and in a locale with 
 TEST_CASE("energy closes: emitted = in the beams + named losses, in the beams = landed + escaped") {
     const Folder folder;
     folder.write("scene.xml", small_scene);
-    REQUIRE(run("glintplan assess " + folder.write("d.xml", small_design) + " --quiet --out " + folder.path("out")).status == 0);
+    REQUIRE(run("glintplan assess " + folder.write("d.xml", small_design) + " --quiet --out " +
+                folder.path("out"))
+                .status == 0);
     const auto light = nlohmann::json::parse(content(folder.path("out") + "/summary.json"))["light"];
     double lost = 0;
     for (const auto& loss : light["losses"]) lost += loss["power_W"].get<double>();
-    CHECK(light["in_beams_W"].get<double>() + lost == about(light["emitted_peak_W"].get<double>()).epsilon(1e-3));
-    CHECK(light["landed_on_scene_W"].get<double>() + light["escaped_W"].get<double>() == about(light["in_beams_W"].get<double>()).epsilon(1e-3));
+    CHECK(light["in_beams_W"].get<double>() + lost ==
+          about(light["emitted_peak_W"].get<double>()).epsilon(1e-3));
+    CHECK(light["landed_on_scene_W"].get<double>() + light["escaped_W"].get<double>() ==
+          about(light["in_beams_W"].get<double>()).epsilon(1e-3));
 }
 
 TEST_CASE("an independent reader from the npm registry reads the PLY") {
     // @loaders.gl/ply; tests/run.sh installs it and names the folder.
     const char* node_modules = std::getenv("GLINT_NODE_FOLDER");
-    REQUIRE_MESSAGE(node_modules != nullptr, "GLINT_NODE_FOLDER is not set: run the tests with bash tests/run.sh");
+    REQUIRE_MESSAGE(node_modules != nullptr,
+                    "GLINT_NODE_FOLDER is not set: run the tests with bash tests/run.sh");
     const Folder folder;
     folder.write("scene.xml", small_scene);
-    REQUIRE(run("glintplan assess " + folder.write("d.xml", small_design) + " --quiet --out " + folder.path("out")).status == 0);
-    fs::copy_file(GLINT_SOURCE_DIR "/tests/program/read-ply.mjs", std::string(node_modules) + "/read-ply.mjs", fs::copy_options::overwrite_existing);
-    const Run read = run("node '" + std::string(node_modules) + "/read-ply.mjs' " + folder.path("out") + "/points.ply");
+    REQUIRE(run("glintplan assess " + folder.write("d.xml", small_design) + " --quiet --out " +
+                folder.path("out"))
+                .status == 0);
+    fs::copy_file(GLINT_SOURCE_DIR "/tests/program/read-ply.mjs", std::string(node_modules) + "/read-ply.mjs",
+                  fs::copy_options::overwrite_existing);
+    const Run read =
+        run("node '" + std::string(node_modules) + "/read-ply.mjs' " + folder.path("out") + "/points.ply");
     REQUIRE_MESSAGE(read.status == 0, read.err);
     const auto ply = nlohmann::json::parse(read.out);
     const auto summary = nlohmann::json::parse(content(folder.path("out") + "/summary.json"));
     CHECK(ply["count"] == summary["ranging"]["points"]);
-    CHECK(ply["names"] == nlohmann::json({"POSITION", "range", "signal", "precision", "probability", "zone", "column", "row", "object"}));
-    CHECK(ply["low"][2].get<double>() >= -1e-3);                             // nothing below the floor
+    CHECK(ply["names"] == nlohmann::json({"POSITION", "range", "signal", "precision", "probability", "zone",
+                                          "column", "row", "object"}));
+    CHECK(ply["low"][2].get<double>() >= -1e-3);                       // nothing below the floor
     CHECK(ply["high"][0].get<double>() == about(1.95).epsilon(1e-3));  // the face of the wall
 }
 
@@ -102,19 +119,26 @@ TEST_CASE("a bunny from the npm registry is cast and seen") {
     const char* obj = std::getenv("GLINT_BUNNY_OBJ");
     REQUIRE_MESSAGE(obj != nullptr, "GLINT_BUNNY_OBJ is not set: run the tests with bash tests/run.sh");
     const Folder folder;
-    // The mesh is about 16 units wide and has y up: it lies on its back here, which a range sensor does not mind.
-    folder.write("scene.xml", replaced(small_scene, "<object name=\"wall\" material=\"paint\"><box x=\"2 m\" z=\"1 m\" size_x=\"0.1 m\" size_y=\"4 m\" size_z=\"2 m\"/>",
-                                       "<object name=\"bunny\" material=\"paint\"><mesh file=\"" + std::string(obj) + "\" scale=\"0.1\" x=\"2.5 m\" z=\"1 m\"/>"));
+    // The mesh is about 16 units wide and has y up: it lies on its back here, which a range sensor does not
+    // mind.
+    folder.write("scene.xml", replaced(small_scene,
+                                       "<object name=\"wall\" material=\"paint\"><box x=\"2 m\" z=\"1 m\" "
+                                       "size_x=\"0.1 m\" size_y=\"4 m\" size_z=\"2 m\"/>",
+                                       "<object name=\"bunny\" material=\"paint\"><mesh file=\"" +
+                                           std::string(obj) + "\" scale=\"0.1\" x=\"2.5 m\" z=\"1 m\"/>"));
     std::string design = replaced(small_design, "object=\"wall\"", "object=\"bunny\"");
-    design = replaced(design, "columns=\"24\" rows=\"24\" pitch=\"25 um\"", "columns=\"96\" rows=\"96\" pitch=\"6.25 um\"");
-    const Run seen = run("glintplan assess " + folder.write("d.xml", replaced(design, "10 mW", "200 mW")) + " --out " + folder.path("out"));
+    design = replaced(design, "columns=\"24\" rows=\"24\" pitch=\"25 um\"",
+                      "columns=\"96\" rows=\"96\" pitch=\"6.25 um\"");
+    const Run seen = run("glintplan assess " + folder.write("d.xml", replaced(design, "10 mW", "200 mW")) +
+                         " --out " + folder.path("out"));
     CHECK_MESSAGE((seen.status == 0 || seen.status == 1), seen.err);
     const auto summary = nlohmann::json::parse(content(folder.path("out") + "/summary.json"));
     int on_bunny = 0;
     for (const auto& object : summary["ranging"]["objects"])
         if (object["name"] == "bunny") on_bunny = object["points"];
     CHECK(on_bunny > 300);
-    // "Seen in the picture": the points fill a good part of it with colours of the scale, not only axes and paper.
+    // "Seen in the picture": the points fill a good part of it with colours of the scale, not only axes and
+    // paper.
     CHECK(fs::file_size(folder.path("out") + "/preview-points.png") > 30000);
 }
 
@@ -122,9 +146,11 @@ TEST_CASE("preview draws one view, and says which there are") {
     const Folder folder;
     folder.write("scene.xml", small_scene);
     const std::string design = folder.write("d.xml", small_design);
-    CHECK(run("glintplan preview " + design + " --view zones --quiet --out " + folder.path("z.png")).status == 0);
+    CHECK(run("glintplan preview " + design + " --view zones --quiet --out " + folder.path("z.png")).status ==
+          0);
     CHECK(content(folder.path("z.png")).substr(1, 3) == "PNG");
-    const Run wrong = run("glintplan preview " + design + " --view sideways --quiet --out " + folder.path("n.png"));
+    const Run wrong =
+        run("glintplan preview " + design + " --view sideways --quiet --out " + folder.path("n.png"));
     CHECK(wrong.status == 2);
     CHECK(holds(wrong.err, "there is no view 'sideways'; accepted: points or zones"));
     CHECK(!fs::exists(folder.path("n.png")));

@@ -12,7 +12,8 @@ TEST_CASE("limits prints one JSON object with SI units in the keys") {
     const Run asked = run("glintplan limits --wavelength 905nm --duration 5ns --repetition 10kHz --json");
     REQUIRE(asked.status == 0);
     const auto answer = nlohmann::json::parse(asked.out);
-    // 905 nm, 5 ns, 10 kHz, derived from the 2014 rules: C5 = 0.4 at N = 1e5; single 1.9792e-7, train 7.9168e-8 J.
+    // 905 nm, 5 ns, 10 kHz, derived from the 2014 rules: C5 = 0.4 at N = 1e5; single 1.9792e-7,
+    // train 7.9168e-8 J.
     CHECK(answer["wavelength_m"] == about(905e-9));
     CHECK(answer["single_energy_J"].get<double>() == about(1.9792e-7).epsilon(1e-4));
     CHECK(answer["train_energy_J"].get<double>() == about(7.9168e-8).epsilon(1e-4));
@@ -20,7 +21,9 @@ TEST_CASE("limits prints one JSON object with SI units in the keys") {
     CHECK(answer["N"].get<double>() == about(1e5));
     CHECK(answer["C5"].get<double>() == about(0.4));
     CHECK(answer["governs"] == "train");
-    for (const char* key : {"duration_s", "subtense_rad", "C4", "C6", "C7", "T2_s", "alpha_max_rad", "class1_energy_J", "class1_power_W", "class3R_energy_J", "class3B_energy_J", "caution"})
+    for (const char* key :
+         {"duration_s", "subtense_rad", "C4", "C6", "C7", "T2_s", "alpha_max_rad", "class1_energy_J",
+          "class1_power_W", "class3R_energy_J", "class3B_energy_J", "caution"})
         CHECK_MESSAGE(answer.contains(key), key);
 }
 
@@ -64,8 +67,11 @@ TEST_CASE("the schemas are accepted by xmllint and accept every example and scen
 }
 
 TEST_CASE("the field reference in docs is current") {
-    const Run current = run("{ glintplan fields --markdown; } | diff - <(sed '1,/^<!-- generated/d' docs/fields.md | sed '/^<!-- scene files/,$d')");
+    const Run current =
+        run("{ glintplan fields --markdown; } | diff - <(sed '1,/^<!-- generated/d' docs/fields.md | sed "
+            "'/^<!-- scene files/,$d')");
     CHECK_MESSAGE(current.status == 0, current.out);
-    const Run scene = run("{ glintplan fields --scene --markdown; } | diff - <(sed '1,/^<!-- scene files/d' docs/fields.md)");
+    const Run scene = run(
+        "{ glintplan fields --scene --markdown; } | diff - <(sed '1,/^<!-- scene files/d' docs/fields.md)");
     CHECK_MESSAGE(scene.status == 0, scene.out);
 }

@@ -1,13 +1,13 @@
 // Running the program as a user does, and small designs to run it on.
 #include "program/run.h"
 
-#include <atomic>
-#include <cstdlib>
 #include <doctest/doctest.h>
-#include <fstream>
-#include <sstream>
 #include <sys/wait.h>
 #include <unistd.h>
+#include <atomic>
+#include <cstdlib>
+#include <fstream>
+#include <sstream>
 
 namespace glint::test {
 namespace {
@@ -23,16 +23,19 @@ std::string slurp(const std::filesystem::path& path) {
 
 Run run(const std::string& command) {
     const Folder folder;
-    const std::string whole = "cd '" GLINT_SOURCE_DIR "' && glintplan() { '" GLINTPLAN_PATH "' \"$@\"; } && { " + command + "\n} >'" + folder.path("out") +
-                              "' 2>'" + folder.path("err") + "' </dev/null";
+    const std::string whole =
+        "cd '" GLINT_SOURCE_DIR "' && glintplan() { '" GLINTPLAN_PATH "' \"$@\"; } && { " + command +
+        "\n} >'" + folder.path("out") + "' 2>'" + folder.path("err") + "' </dev/null";
     std::ofstream(folder.path("script")) << whole << "\n";
     const int status = std::system(("bash '" + folder.path("script") + "'").c_str());
-    return {WIFEXITED(status) ? WEXITSTATUS(status) : 128 + WTERMSIG(status), slurp(folder.path("out")), slurp(folder.path("err"))};
+    return {WIFEXITED(status) ? WEXITSTATUS(status) : 128 + WTERMSIG(status), slurp(folder.path("out")),
+            slurp(folder.path("err"))};
 }
 
 Folder::Folder() {
     static std::atomic<int> count = 0;
-    path_ = std::filesystem::temp_directory_path() / ("glint-program-" + std::to_string(::getpid()) + "-" + std::to_string(count++));
+    path_ = std::filesystem::temp_directory_path() /
+            ("glint-program-" + std::to_string(::getpid()) + "-" + std::to_string(count++));
     std::filesystem::create_directories(path_);
 }
 

@@ -144,8 +144,7 @@ TEST_CASE("dead time: counts saturate and the detector is armed for part of the 
     const CountingModel model = counting_model(design);
     const double counted[][2] = {{1e6, 9.901e5}, {1e7, 9.091e6}, {1e8, 5.000e7}, {1e9, 9.091e7}};
     for (const auto& [rate, expected] : counted)
-        CHECK(window_background(model, rate) / (model.window * model.shots) ==
-              about(expected).epsilon(1e-3));
+        CHECK(window_background(model, rate) / (model.window * model.shots) == about(expected).epsilon(1e-3));
     CHECK(echo_counts(model, 1e6, 0) == about(1000));  // one count a shot at most
     CHECK(echo_counts(model, 0.01, 0) == about(1000 * -std::expm1(-0.01)));
     CHECK(echo_counts(model, 0.01, 1e8) < echo_counts(model, 0.01, 0));

@@ -9,10 +9,10 @@
 #include <glint/ranging/reach.h>
 #include <glint/ranging/returns.h>
 
-#include <cmath>
 #include <doctest/doctest.h>
-#include <numeric>
 #include <omp.h>
+#include <cmath>
+#include <numeric>
 
 using namespace glint;
 
@@ -27,7 +27,8 @@ Design flood_design() {
     design.emitters.lobe = {.divergence = radians(4)};
     design.drive = {.peak_power = 0.5, .pulse_width = 2e-9};
     design.firing = {.shots = 100, .repetition = 1e6};
-    design.optics.elements = {Diffuser{.horizontal = radians(60), .vertical = radians(45), .roll_off = radians(2), .exponent = 0}};
+    design.optics.elements = {
+        Diffuser{.horizontal = radians(60), .vertical = radians(45), .roll_off = radians(2), .exponent = 0}};
     design.receiver.lens = {.focal_length = 4e-3, .f_number = 1.4, .transmission = 0.8};
     design.receiver.pixels = {.columns = 32, .rows = 24, .pitch = 60e-6, .fill_factor = 0.7};
     design.receiver.filter = {.center = 940e-9, .width = 20e-9, .transmission = 0.9};
@@ -65,9 +66,10 @@ Scene wall_at(double distance, double rho, double turn = 0) {
 }  // namespace
 
 TEST_CASE("a flat Lambertian wall gives the closed-form return at three distances") {
-    // Closed form for a pixel at angle theta, uniform intensity I (n = 0): E = I cos^3 / z^2; energy = E tp rho/pi * Omega *
-    // A cos * tau with Omega = p^2 cos^3 / f^2. Derived; textbook cos^7 fall-off in all. Tolerance 0.5 %: the pixel's own
-    // extent (curvature of cos^7 over 0.9 deg) and the offset of emitter and receiver, here zero.
+    // Closed form for a pixel at angle theta, uniform intensity I (n = 0): E = I cos^3 / z^2; energy = E tp
+    // rho/pi * Omega * A cos * tau with Omega = p^2 cos^3 / f^2. Derived; textbook cos^7 fall-off in all.
+    // Tolerance 0.5 %: the pixel's own extent (curvature of cos^7 over 0.9 deg) and the offset of emitter and
+    // receiver, here zero.
     const Bench bench(flood_design());
     const double intensity_on_axis = zone_intensity(bench.field, 0, Vec3::UnitX());
     for (const double distance : {0.8, 5.0, 30.0}) {
@@ -77,7 +79,8 @@ TEST_CASE("a flat Lambertian wall gives the closed-form return at three distance
             const PixelRay ray = pixel_ray(bench.design.receiver, entry.column, entry.row, {0.5, 0.5});
             const double cosine = ray.cosine;
             const double exposure = intensity_on_axis * std::pow(cosine, 3) / (distance * distance) * 2e-9;
-            const double expected = exposure * 0.4 / pi * ray.solid_angle * cosine * pupil_area(bench.design.receiver.lens) * 0.8 * 0.9;
+            const double expected = exposure * 0.4 / pi * ray.solid_angle * cosine *
+                                    pupil_area(bench.design.receiver.lens) * 0.8 * 0.9;
             if (std::acos(cosine) > radians(20)) continue;  // beyond, the edge of the field begins
             CHECK(entry.energy == about(expected).epsilon(0.005));
             CHECK(entry.range == about(distance / cosine).epsilon(0.005));
@@ -87,12 +90,17 @@ TEST_CASE("a flat Lambertian wall gives the closed-form return at three distance
 
 TEST_CASE("background is that of the sunlit wall, whatever the distance") {
     const Bench bench(flood_design());
-    const Returns near = cast_returns(bench.link, wall_at(1, 0.4)), far = cast_returns(bench.link, wall_at(20, 0.4));
+    const Returns near = cast_returns(bench.link, wall_at(1, 0.4)),
+                  far = cast_returns(bench.link, wall_at(20, 0.4));
     for (std::size_t i = 0; i < near.list.size(); ++i) {
-        const PixelRay ray = pixel_ray(bench.design.receiver, near.list[i].column, near.list[i].row, {0.5, 0.5});
-        const double power = bench.link.ambient * 0.4 / pi * ray.solid_angle * ray.cosine * bench.link.pupil * 0.72;
-        CHECK(near.list[i].detection.background_rate == about(power * bench.link.model.counts_per_joule).epsilon(0.005));
-        CHECK(near.list[i].detection.background_rate == about(far.list[i].detection.background_rate).epsilon(1e-9));
+        const PixelRay ray =
+            pixel_ray(bench.design.receiver, near.list[i].column, near.list[i].row, {0.5, 0.5});
+        const double power =
+            bench.link.ambient * 0.4 / pi * ray.solid_angle * ray.cosine * bench.link.pupil * 0.72;
+        CHECK(near.list[i].detection.background_rate ==
+              about(power * bench.link.model.counts_per_joule).epsilon(0.005));
+        CHECK(near.list[i].detection.background_rate ==
+              about(far.list[i].detection.background_rate).epsilon(1e-9));
     }
 }
 
@@ -110,13 +118,19 @@ TEST_CASE("casting beams forward and pixels backward agree on the energy that re
     const Bench bench(design);
     const Scene scene = wall_at(3, 0.4);
     const ZoneLanding forward = land_zones(bench.field, bench.link.pose, scene, 4096, 1)[0];
-    CHECK(forward.landed + forward.escaped == about(std::accumulate(bench.beams.beams.begin(), bench.beams.beams.end(), 0.0, [](double s, const Beam& b) { return s + b.power; })).epsilon(1e-9));
-    // Backward: each pixel's energy over its share of the wall, undone: E dA = energy pi / (rho A cos tau) * R^2 / cos.
+    CHECK(forward.landed + forward.escaped ==
+          about(std::accumulate(bench.beams.beams.begin(), bench.beams.beams.end(), 0.0,
+                                [](double s, const Beam& b) { return s + b.power; }))
+              .epsilon(1e-9));
+    // Backward: each pixel's energy over its share of the wall, undone: E dA = energy pi / (rho A cos tau) *
+    // R^2 / cos.
     double landed = 0;
     for (const Return& entry : cast_returns(bench.link, scene).list) {
         const PixelRay ray = pixel_ray(design.receiver, entry.column, entry.row, {0.5, 0.5});
-        const double exposure = entry.energy / (0.4 / pi * ray.solid_angle * ray.cosine * bench.link.pupil * bench.link.transmission);
-        landed += exposure / design.drive.pulse_width * ray.solid_angle * std::pow(entry.range, 2) / ray.cosine;
+        const double exposure = entry.energy / (0.4 / pi * ray.solid_angle * ray.cosine * bench.link.pupil *
+                                                bench.link.transmission);
+        landed +=
+            exposure / design.drive.pulse_width * ray.solid_angle * std::pow(entry.range, 2) / ray.cosine;
     }
     CHECK(landed == about(forward.landed).epsilon(0.01));
 }
@@ -129,7 +143,8 @@ TEST_CASE("a tilted wall returns less by the cosine of the light's incidence") {
             if (entry.column == 16 && entry.row == 12) return entry;
         return Return{};
     };
-    CHECK(middle(radians(50)).energy / middle(0).energy == about(std::cos(radians(50))).epsilon(0.03));  // range differs over the pixel
+    CHECK(middle(radians(50)).energy / middle(0).energy ==
+          about(std::cos(radians(50))).epsilon(0.03));  // range differs over the pixel
 }
 
 TEST_CASE("an object between emitter and surface casts a shadow that the receiver sees") {
@@ -140,7 +155,8 @@ TEST_CASE("an object between emitter and surface casts a shadow that the receive
     parts.materials = {{"all", {{940e-9, 0.5}}}};
     parts.objects = {{"wall", 0}, {"post", 0}};
     parts.planes = {{{.point = Vec3(4, 0, 0), .normal = Vec3(-1, 0, 0)}, 0}};
-    parts.boxes = {{{.centre = Vec3(2, 0, 0), .half_size = Vec3(0.02, 0.1, 2), .rotation = Mat3::Identity()}, 1}};
+    parts.boxes = {
+        {{.centre = Vec3(2, 0, 0), .half_size = Vec3(0.02, 0.1, 2), .rotation = Mat3::Identity()}, 1}};
     const Returns returns = cast_returns(bench.link, build_scene(std::move(parts)));
     int on_wall = 0, in_shadow = 0;
     for (const Return& entry : returns.list)
@@ -159,9 +175,11 @@ TEST_CASE("the pixel's echo is the nearer or farther surface, never a mix") {
     parts.materials = {{"all", {{940e-9, 0.5}}}};
     parts.objects = {{"near", 0}, {"far", 0}};
     parts.planes = {{{.point = Vec3(8, 0, 0), .normal = Vec3(-1, 0, 0)}, 1}};
-    parts.boxes = {{{.centre = Vec3(4, 5, 0), .half_size = Vec3(0.01, 5, 10), .rotation = Mat3::Identity()}, 0}};
+    parts.boxes = {
+        {{.centre = Vec3(4, 5, 0), .half_size = Vec3(0.01, 5, 10), .rotation = Mat3::Identity()}, 0}};
     for (const Return& entry : cast_returns(bench.link, build_scene(std::move(parts))).list) {
-        const double near = entry.range * pixel_ray(bench.design.receiver, entry.column, entry.row, {0.5, 0.5}).cosine;
+        const double near =
+            entry.range * pixel_ray(bench.design.receiver, entry.column, entry.row, {0.5, 0.5}).cosine;
         CHECK((near < 4.2 || near > 7.8));
     }
 }
@@ -171,7 +189,8 @@ TEST_CASE("reach ends where the target is just detected, and falls with reflecta
     const std::vector<PixelLight> lights = pixel_lights(bench.link);
     REQUIRE(lights.size() == 32 * 24);
     for (std::size_t i = 0; i < lights.size(); i += 37) {
-        const PixelReach dark = reach(bench.link, lights[i], 0.1, 0.9), bright = reach(bench.link, lights[i], 0.8, 0.9);
+        const PixelReach dark = reach(bench.link, lights[i], 0.1, 0.9),
+                         bright = reach(bench.link, lights[i], 0.8, 0.9);
         CHECK(dark.distance <= bright.distance);
         if (dark.limit == RangeLimit::gate || dark.distance == 0) continue;
         CHECK(detect_target(bench.link, lights[i], {0.1, dark.distance * 0.999}).probability >= 0.9);
@@ -201,11 +220,14 @@ TEST_CASE("fog shortens the way by exp(-2 sigma R)") {
     const Bench clear(design);
     design.environment.visibility = 200;
     const Bench fog(design);
-    const Returns with = cast_returns(fog.link, wall_at(30, 0.4)), without = cast_returns(clear.link, wall_at(30, 0.4));
+    const Returns with = cast_returns(fog.link, wall_at(30, 0.4)),
+                  without = cast_returns(clear.link, wall_at(30, 0.4));
     REQUIRE(with.list.size() == without.list.size());
     for (std::size_t i = 0; i < with.list.size(); ++i)
-        // 19.56 per km below 500 m of visibility (Kim 2001), by 0.2 km; the way differs a little over a pixel.
-        CHECK(with.list[i].energy / without.list[i].energy == about(std::exp(-2 * 0.01956 * without.list[i].range)).epsilon(0.01));
+        // 19.56 per km below 500 m of visibility (Kim 2001), by 0.2 km; the way differs a little over a
+        // pixel.
+        CHECK(with.list[i].energy / without.list[i].energy ==
+              about(std::exp(-2 * 0.01956 * without.list[i].range)).epsilon(0.01));
 }
 
 TEST_CASE("returns are the same for any number of threads") {

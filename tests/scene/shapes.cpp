@@ -119,8 +119,7 @@ TEST_CASE("box: slabs in its own frame") {
     eighth << s, -s, 0, s, s, 0, 0, 0, 1;
     const Box box{.centre = {10, 0, 0}, .half_size = {1, 1, 3}, .rotation = eighth};
     // Straight at the vertical edge, and beside it where both faces have gone back by the offset.
-    CHECK(distance_to(box, from({0, 0, 0}, {1, 0, 0})) ==
-          about(10 - std::sqrt(2.0)).epsilon(1e-15));
+    CHECK(distance_to(box, from({0, 0, 0}, {1, 0, 0})) == about(10 - std::sqrt(2.0)).epsilon(1e-15));
     const Ray beside = from({0, 0.25, 1}, {1, 0, 0});
     CHECK(distance_to(box, beside) == about(10 - std::sqrt(2.0) + 0.25).epsilon(1e-15));
     check_vector(surface_at(box, beside, distance_to(box, beside)).normal, {-s, s, 0}, 1e-15);

@@ -18,6 +18,9 @@ namespace glint {
 /// "a, b or c".
 [[nodiscard]] std::string join_or(std::span<const std::string> words);
 
+/// "1 zone", "3 zones".
+[[nodiscard]] std::string counted(long count, std::string_view noun);
+
 /// Pieces of `text` between separators, blanks trimmed; empty pieces are kept.
 [[nodiscard]] std::vector<std::string_view> split(std::string_view text, char separator);
 

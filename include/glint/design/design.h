@@ -49,9 +49,10 @@ struct Lobe {
 };
 
 struct Emitters {
-    double wavelength = 0;                    ///< [m]
-    double aperture = 0;                      ///< diameter of one emitter [m]
-    std::optional<double> near_field_radius;  ///< 1/e2 radius at the emitter [m]; half the aperture when not set
+    double wavelength = 0;  ///< [m]
+    double aperture = 0;    ///< diameter of one emitter [m]
+    std::optional<double>
+        near_field_radius;  ///< 1/e2 radius at the emitter [m]; half the aperture when not set
     Layout layout;
     Addressing addressing;
     Lobe lobe;
@@ -136,13 +137,13 @@ struct Filter {
 
 /// Single-photon detection with a histogram of arrival times.
 struct PhotonCounting {
-    double efficiency = 0;      ///< photon detection efficiency of the active area
+    double efficiency = 0;       ///< photon detection efficiency of the active area
     double dark_count_rate = 0;  ///< of one pixel [Hz]
-    double dead_time = 0;       ///< after each count [s]
-    double jitter = 0;          ///< of detector and timing, full width at half maximum [s]
-    double bin = 0;             ///< width of a histogram bin [s]
-    double gate = 0;            ///< length of the histogram, as range [m]
-    double false_alarm = 0.01;  ///< probability of a false detection in a pixel and dwell
+    double dead_time = 0;        ///< after each count [s]
+    double jitter = 0;           ///< of detector and timing, full width at half maximum [s]
+    double bin = 0;              ///< width of a histogram bin [s]
+    double gate = 0;             ///< length of the histogram, as range [m]
+    double false_alarm = 0.01;   ///< probability of a false detection in a pixel and dwell
     bool operator==(const PhotonCounting&) const = default;
 };
 
@@ -225,8 +226,8 @@ struct AveragePowerRequirement {
     bool operator==(const AveragePowerRequirement&) const = default;
 };
 
-using Requirement = std::variant<RangeRequirement, PrecisionRequirement, FrameRateRequirement, EyeSafetyRequirement,
-                                 PointsRequirement, AveragePowerRequirement>;
+using Requirement = std::variant<RangeRequirement, PrecisionRequirement, FrameRateRequirement,
+                                 EyeSafetyRequirement, PointsRequirement, AveragePowerRequirement>;
 
 struct Requirements {
     std::vector<Requirement> list;

@@ -5,7 +5,8 @@
 
 namespace glint {
 
-/// The record of struct Design: each field once, with kind, accepted range, default or required, one line of help.
+/// The record of struct Design: each field once, with kind, accepted range, default or required, one line of
+/// help.
 [[nodiscard]] const Record& design_record();
 
 }  // namespace glint

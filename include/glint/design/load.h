@@ -1,9 +1,9 @@
 // A design file into a Design, or every reason why not.
 #pragma once
 
-#include <filesystem>
 #include <glint/design/design.h>
 #include <glint/design/record_file.h>
+#include <filesystem>
 #include <span>
 #include <string>
 
@@ -26,7 +26,8 @@ struct LoadedDesign {
 };
 
 /// Reads, sets, and checks a design. Throws Error with ALL problems.
-[[nodiscard]] LoadedDesign load_design(const std::filesystem::path& file, std::span<const Setting> settings = {});
+[[nodiscard]] LoadedDesign load_design(const std::filesystem::path& file,
+                                       std::span<const Setting> settings = {});
 
 /// Fields that contradict each other although each is good alone. Paths are given, file and line are not.
 [[nodiscard]] std::vector<Problem> contradictions(const Design&);

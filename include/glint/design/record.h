@@ -1,13 +1,14 @@
-// The one description of a struct's fields, from which reader, writer, settings, schema and reference all come.
+// The one description of a struct's fields, from which reader, writer, settings, schema and reference all
+// come.
 //
-// A Record lists the fields of one struct once, in a few words each. Everything else walks that list; adding a
-// field is adding the member and one line. Owners are passed as untyped pointers because the walkers know no
-// structs; the typed members are captured where the record is described.
+// A Record lists the fields of one struct once, in a few words each. Everything else walks that list; adding
+// a field is adding the member and one line. Owners are passed as untyped pointers because the walkers know
+// no structs; the typed members are captured where the record is described.
 #pragma once
 
+#include <glint/core/quantity.h>
 #include <cstdint>
 #include <functional>
-#include <glint/core/quantity.h>
 #include <limits>
 #include <optional>
 #include <string>
@@ -57,10 +58,12 @@ struct Field {
     std::vector<std::string> choices;  ///< of a choice
     bool required = false;             ///< must be given (when it applies)
     When when;
-    std::string help;                  ///< one line
+    std::string help;  ///< one line
 
-    std::function<std::optional<Value>(const void* owner)> get;  ///< nothing when an optional field is not set
-    std::function<void(void* owner, const Value&)> set;          ///< the value has been checked before
+    std::function<std::optional<Value>(const void* owner)>
+        get;                                             ///< nothing when an optional field is not set
+    std::function<void(void* owner, const Value&)> set;  ///< the value has been checked before
+    std::function<void(void* owner)> clear;              ///< back to what a fresh struct holds
 };
 
 struct Record;
@@ -88,7 +91,7 @@ struct Record {
     std::string help;
     std::vector<Field> fields;
     std::vector<Part> parts;
-    std::vector<Sequence> sequence;            ///< none or one
+    std::vector<Sequence> sequence;                                         ///< none or one
     std::function<std::optional<Value>(const std::string& field)> initial;  ///< value in a fresh struct
 
     [[nodiscard]] const Field* field(std::string_view field_name) const;
@@ -137,9 +140,15 @@ public:
 
     /// An enum whose values 0, 1, ... have these names.
     template <class Enum>
-    Describe& choice(std::string name, Enum Owner::*member, std::vector<std::string> choices, std::string help) {
-        Field field{.name = std::move(name), .type = FieldType::choice, .choices = std::move(choices),
-                    .when = {}, .help = std::move(help), .get = {}, .set = {}};
+    Describe& choice(std::string name, Enum Owner::*member, std::vector<std::string> choices,
+                     std::string help) {
+        Field field{.name = std::move(name),
+                    .type = FieldType::choice,
+                    .choices = std::move(choices),
+                    .when = {},
+                    .help = std::move(help),
+                    .get = {},
+                    .set = {}};
         field.get = [member, names = field.choices](const void* owner) -> std::optional<Value> {
             return names.at(static_cast<std::size_t>(static_cast<const Owner*>(owner)->*member));
         };
@@ -148,6 +157,7 @@ public:
                 if (names[i] == std::get<std::string>(value))
                     static_cast<Owner*>(owner)->*member = static_cast<Enum>(i);
         };
+        field.clear = [member](void* owner) { static_cast<Owner*>(owner)->*member = Owner{}.*member; };
         record_.fields.push_back(std::move(field));
         return *this;
     }
@@ -189,7 +199,9 @@ public:
         s.kinds.push_back(std::move(kind));
         s.size = [member](const void* owner) { return (static_cast<const Owner*>(owner)->*member).size(); };
         s.kind_of = [](const void*, std::size_t) { return std::size_t{0}; };
-        s.item = [member](void* owner, std::size_t i) -> void* { return &(static_cast<Owner*>(owner)->*member)[i]; };
+        s.item = [member](void* owner, std::size_t i) -> void* {
+            return &(static_cast<Owner*>(owner)->*member)[i];
+        };
         s.append = [member](void* owner, std::size_t) -> void* {
             return &(static_cast<Owner*>(owner)->*member).emplace_back();
         };
@@ -207,7 +219,8 @@ public:
             return (static_cast<const Owner*>(owner)->*member)[i].index();
         };
         s.item = [member](void* owner, std::size_t i) -> void* {
-            return std::visit([](auto& item) -> void* { return &item; }, (static_cast<Owner*>(owner)->*member)[i]);
+            return std::visit([](auto& item) -> void* { return &item; },
+                              (static_cast<Owner*>(owner)->*member)[i]);
         };
         s.append = [member](void* owner, std::size_t kind) -> void* {
             auto& list = static_cast<Owner*>(owner)->*member;
@@ -239,8 +252,13 @@ private:
 
     template <class Stored, class Member>
     Field& add(std::string name, FieldType type, Member Owner::*member, std::string help) {
-        Field field{.name = std::move(name), .type = type, .choices = {}, .when = {}, .help = std::move(help),
-                    .get = {}, .set = {}};
+        Field field{.name = std::move(name),
+                    .type = type,
+                    .choices = {},
+                    .when = {},
+                    .help = std::move(help),
+                    .get = {},
+                    .set = {}};
         field.get = [member](const void* owner) -> std::optional<Value> {
             const Member& held = static_cast<const Owner*>(owner)->*member;
             if constexpr (requires { held.has_value(); }) {
@@ -257,6 +275,7 @@ private:
             else
                 held = static_cast<Member>(std::get<Stored>(value));
         };
+        field.clear = [member](void* owner) { static_cast<Owner*>(owner)->*member = Owner{}.*member; };
         record_.fields.push_back(std::move(field));
         return record_.fields.back();
     }

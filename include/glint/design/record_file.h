@@ -17,8 +17,8 @@ struct Places {
 
     [[nodiscard]] bool given(std::string_view path) const { return lines.find(path) != lines.end(); }
 
-    /// The problem with file and line filled in from its path: the line of the field, or of the nearest element
-    /// around it.
+    /// The problem with file and line filled in from its path: the line of the field, or of the nearest
+    /// element around it.
     [[nodiscard]] Problem at(Problem problem) const;
 };
 
@@ -33,13 +33,15 @@ struct ReadReport {
 [[nodiscard]] ReadReport read_record(const Record& record, void* target, const std::string& xml,
                                      const std::string& file);
 
-/// Sets one field by its path; `[2]` picks the second element of a kind: "optics/lens[2]/focal_length".
-/// The problem is returned, with path and what is accepted, when it cannot be done.
+/// Sets one field by its path; `[2]` picks the second element of a kind: "optics/lens[2]/focal_length". An
+/// empty text takes the field back, as if the file had not given it. The problem is returned, with path and
+/// what is accepted, when it cannot be done.
 [[nodiscard]] std::optional<Problem> set_field(const Record& record, void* target, Places& places,
                                                std::string_view path, std::string_view text);
 
 /// Required fields that are missing, and given fields that do not apply to the choices made.
-[[nodiscard]] std::vector<Problem> check_given(const Record& record, const void* target, const Places& places);
+[[nodiscard]] std::vector<Problem> check_given(const Record& record, const void* target,
+                                               const Places& places);
 
 /// The whole record as XML: every field that applies and is set, in the order of the description.
 [[nodiscard]] std::string write_record(const Record& record, const void* source);

@@ -1,9 +1,9 @@
 // The emitter array: places on the chip and the zones they are wired to.
 #pragma once
 
-#include <filesystem>
 #include <glint/core/vector.h>
 #include <glint/design/design.h>
+#include <filesystem>
 #include <string>
 #include <vector>
 
@@ -36,10 +36,10 @@ struct ZoneMembers {
 
 /// How closely the emitters sit, common practice of chip layout.
 struct Packing {
-    double area = 0;           ///< chip area that belongs to the emitters [m2]
-    double density = 0;        ///< emitters per area [1/m2]
-    double fill = 0;           ///< share of the area that emits: N pi d^2 / (4 A)
-    double nearest = 0;        ///< smallest distance of two emitters [m]; 0 for a single one
+    double area = 0;     ///< chip area that belongs to the emitters [m2]
+    double density = 0;  ///< emitters per area [1/m2]
+    double fill = 0;     ///< share of the area that emits: N pi d^2 / (4 A)
+    double nearest = 0;  ///< smallest distance of two emitters [m]; 0 for a single one
 };
 
 /// Places the emitters and wires the zones. Relative list files are looked up in `folder`.

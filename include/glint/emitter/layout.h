@@ -1,15 +1,15 @@
 // Layouts: where the emitters sit, one function a kind.
 #pragma once
 
-#include <filesystem>
 #include <glint/core/vector.h>
 #include <glint/design/design.h>
+#include <filesystem>
 #include <vector>
 
 namespace glint {
 
-/// Places in the FIELD's sense: u right, v up as the light is seen in the scene; centred on the chip; ordered from
-/// the upper left, row by row. `zones` is filled only by a list that names them.
+/// Places in the FIELD's sense: u right, v up as the light is seen in the scene; centred on the chip; ordered
+/// from the upper left, row by row. `zones` is filled only by a list that names them.
 struct Places2d {
     std::vector<Vec2> positions;  ///< [n] [m]
     std::vector<int> zones;       ///< [n] or empty

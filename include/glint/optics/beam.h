@@ -11,8 +11,8 @@ namespace glint {
 
 /// One beam in the module's frame: x forward, y left, z up, the chip in the plane x = 0 around the origin.
 struct Beam {
-    Vec3 origin = Vec3::Zero();  ///< middle of the beam where it leaves the last element [m]
-    Vec3 axis = Vec3::UnitX();  ///< unit direction
+    Vec3 origin = Vec3::Zero();   ///< middle of the beam where it leaves the last element [m]
+    Vec3 axis = Vec3::UnitX();    ///< unit direction
     Vec3 right = -Vec3::UnitY();  ///< unit, normal to the axis: the kernel's p direction
     Kernel kernel;
     double power = 0;        ///< peak [W]
@@ -35,8 +35,8 @@ struct Beams {
 };
 
 /// Sends the light of every emitter through the optics. Each emitter radiates along the chip's normal.
-/// Lens: the chief ray of an emitter at x leaves the lens at x towards -x (the lens inverts), through the back
-/// focal point; tangent mapping |x| = f tan(angle), f-theta |x| = f angle. The residual divergence is
+/// Lens: the chief ray of an emitter at x leaves the lens at x towards -x (the lens inverts), through the
+/// back focal point; tangent mapping |x| = f tan(angle), f-theta |x| = f angle. The residual divergence is
 /// sqrt(w0^2 + (defocus tan(theta_e))^2) / f, narrowed by the mapping's local scale, plus the lens blur in
 /// quadrature (textbook geometric optics). Light beside the clear aperture is lost.
 /// Errors: an emitter beyond the lens's field, or no light through the lens.

@@ -1,9 +1,9 @@
 // The far field: which zone sends how much into a direction, found fast among many beams.
 #pragma once
 
+#include <glint/optics/beam.h>
 #include <algorithm>
 #include <cmath>
-#include <glint/optics/beam.h>
 #include <vector>
 
 namespace glint {
@@ -22,7 +22,8 @@ struct FarField {
 
 [[nodiscard]] FarField far_field(const Beams& beams);
 
-/// Calls visit(beam) for every beam whose axis lies within `reach` of a unit direction in (y, z), and for some more.
+/// Calls visit(beam) for every beam whose axis lies within `reach` of a unit direction in (y, z), and for
+/// some more.
 template <class Visit>
 void beams_near(const FarField& field, const Vec3& direction, double reach, const Visit& visit) {
     const auto cell = [&](double coordinate) {
@@ -32,12 +33,14 @@ void beams_near(const FarField& field, const Vec3& direction, double reach, cons
     const int z0 = cell(direction.z() - reach), z1 = cell(direction.z() + reach);
     for (int y = y0; y <= y1; ++y) {
         const std::size_t row = static_cast<std::size_t>(y) * field.cells;
-        for (int i = field.cell_first[row + z0]; i < field.cell_first[row + z1 + 1]; ++i) visit(field.beams[i]);
+        for (int i = field.cell_first[row + z0]; i < field.cell_first[row + z1 + 1]; ++i)
+            visit(field.beams[i]);
     }
 }
 
-/// Calls visit(beam, irradiance) for every beam that lights a point of the module's frame; the irradiance is that
-/// at peak power on a surface facing the beam: intensity over squared distance [W/m2]. Allocates nothing.
+/// Calls visit(beam, irradiance) for every beam that lights a point of the module's frame; the irradiance is
+/// that at peak power on a surface facing the beam: intensity over squared distance [W/m2]. Allocates
+/// nothing.
 template <class Visit>
 void light_at(const FarField& field, const Vec3& point, const Visit& visit) {
     const double distance = point.norm();
@@ -64,7 +67,8 @@ struct ZoneField {
     double power = 0;        ///< peak power in the beams [W]
 };
 
-/// [zones]; peak intensities are searched on the beams' own axes and a raster of 15 by 15 directions over each.
+/// [zones]; peak intensities are searched on the beams' own axes and a raster of 15 by 15 directions over
+/// each.
 [[nodiscard]] std::vector<ZoneField> zone_fields(const FarField& field);
 
 }  // namespace glint

@@ -1,7 +1,8 @@
 // Angular kernels: how the power of one beam spreads over direction around its axis.
 //
-// All kernels live in the tangent plane of the axis: p = tan of the angle to the right, q = up. The solid angle of
-// dp dq is dp dq / (1 + p^2 + q^2)^(3/2), so a kernel given per dp dq is what a flat screen facing the beam shows.
+// All kernels live in the tangent plane of the axis: p = tan of the angle to the right, q = up. The solid
+// angle of dp dq is dp dq / (1 + p^2 + q^2)^(3/2), so a kernel given per dp dq is what a flat screen facing
+// the beam shows.
 #pragma once
 
 #include <glint/core/vector.h>
@@ -19,12 +20,12 @@ enum class KernelShape {
 /// A kernel of total power 1. Which members count depends on the shape.
 struct Kernel {
     KernelShape shape = KernelShape::gaussian;
-    double a = 0;         ///< gaussian: 1/e2 half width along p; ring: crest radius; fields: half width along p
-    double b = 0;         ///< gaussian: 1/e2 half width along q; ring: 1/e2 half width of the wall; fields: along q
+    double a = 0;  ///< gaussian: 1/e2 half width along p; ring: crest radius; fields: half width along p
+    double b = 0;  ///< gaussian: 1/e2 half width along q; ring: 1/e2 half width of the wall; fields: along q
     double edge = 0;      ///< fields: 1/e2 half width of the Gaussian that softens the edge
     double exponent = 0;  ///< fields: n of cos^-n
-    double scale = 0;     ///< gaussian, ring: density at the crest [per dp dq]; fields: intensity on axis [1/sr]
-    double reach = 0;     ///< radius in the tangent plane beyond which the kernel is zero
+    double scale = 0;  ///< gaussian, ring: density at the crest [per dp dq]; fields: intensity on axis [1/sr]
+    double reach = 0;  ///< radius in the tangent plane beyond which the kernel is zero
 };
 
 [[nodiscard]] Kernel gaussian_kernel(double a, double b);
@@ -38,8 +39,9 @@ struct Kernel {
 /// Radiant intensity per power [1/sr] in the direction of tangent coordinates (p, q). Zero beyond the reach.
 [[nodiscard]] double intensity(const Kernel& kernel, double p, double q);
 
-/// A point (p, q) of the kernel from a point of the unit square: equal areas of the square carry equal power for
-/// gaussian and ring. Field kernels are sampled evenly over their reach; `weight` makes up for it (mean 1).
+/// A point (p, q) of the kernel from a point of the unit square: equal areas of the square carry equal power
+/// for gaussian and ring. Field kernels are sampled evenly over their reach; `weight` makes up for it (mean
+/// 1).
 struct KernelSample {
     Vec2 tangent;
     double weight = 1;
@@ -47,8 +49,8 @@ struct KernelSample {
 [[nodiscard]] KernelSample sample(const Kernel& kernel, const Vec2& unit_square);
 
 /// The kernel of a bare emitter. Gaussian: irradiance on a flat screen falls to 1/e2 at the half angle.
-/// Widths by `lobe.width`: full and half 1/e2 angle, or full angle at half maximum (0.58871 of the 1/e2 one in
-/// the tangent).
+/// Widths by `lobe.width`: full and half 1/e2 angle, or full angle at half maximum (0.58871 of the 1/e2 one
+/// in the tangent).
 [[nodiscard]] Kernel lobe_kernel(const Lobe& lobe);
 
 /// 1/e2 half width of the Gaussian that has the same second moment as a gaussian or ring kernel.
@@ -58,8 +60,8 @@ struct KernelSample {
 [[nodiscard]] double power_within(const Kernel& kernel, double r);
 
 /// Share of a gaussian or ring kernel, leaving a point at distance `offset` from the axis of a lens and
-/// `distance` before it, that passes the lens of radius `radius`. The integral of the kernel over the offset disc:
-/// for a Gaussian 1 - Q1(2 offset/w, 2 radius/w), Q1 the Marcum function.
+/// `distance` before it, that passes the lens of radius `radius`. The integral of the kernel over the offset
+/// disc: for a Gaussian 1 - Q1(2 offset/w, 2 radius/w), Q1 the Marcum function.
 [[nodiscard]] double captured_share(const Kernel& kernel, double distance, double offset, double radius);
 
 }  // namespace glint

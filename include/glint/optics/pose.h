@@ -12,7 +12,9 @@ struct Pose {
     Vec3 position = Vec3::Zero();
 
     [[nodiscard]] Vec3 to_scene(const Vec3& point) const { return rotation * point + position; }
-    [[nodiscard]] Vec3 to_module(const Vec3& point) const { return rotation.transpose() * (point - position); }
+    [[nodiscard]] Vec3 to_module(const Vec3& point) const {
+        return rotation.transpose() * (point - position);
+    }
 };
 
 /// Heading turns to the right about the vertical, then elevation lifts the nose, then roll tips clockwise.

@@ -5,8 +5,9 @@
 
 namespace glint {
 
-/// Works a design through: array, firing plan, beams, scene, returns, points, safety, requirements. The one place
-/// that shows the order. Errors carry file and line of the field to change. Throws Stopped when asked to stop.
+/// Works a design through: array, firing plan, beams, scene, returns, points, safety, requirements. The one
+/// place that shows the order. Errors carry file and line of the field to change. Throws Stopped when asked
+/// to stop.
 [[nodiscard]] Assessment assess(const LoadedDesign& loaded, const Progress& progress = {});
 
 }  // namespace glint

@@ -18,11 +18,11 @@ namespace glint {
 
 /// One requirement held against what was got.
 struct RequirementResult {
-    std::string name;     ///< "Range at 10 %"
-    std::string path;     ///< "requirements/range"
-    std::string unit;     ///< SI unit of the numbers, for keys: "m", "Hz", ...; empty for a count or a share
-    double needed = 0;    ///< SI
-    double got = 0;       ///< SI
+    std::string name;   ///< "Range at 10 %"
+    std::string path;   ///< "requirements/range"
+    std::string unit;   ///< SI unit of the numbers, for keys: "m", "Hz", ...; empty for a count or a share
+    double needed = 0;  ///< SI
+    double got = 0;     ///< SI
     std::string needed_text;
     std::string got_text;
     std::string margin_text;  ///< "+12 %": positive when there is room
@@ -35,8 +35,8 @@ struct ZoneReport {
     int emitters = 0;
     ZoneField field;
     ZoneLanding landing;
-    double shot_energy = 0;      ///< in the beams [J]
-    std::size_t returns = 0;     ///< pixel returns in which this zone is the strongest
+    double shot_energy = 0;   ///< in the beams [J]
+    std::size_t returns = 0;  ///< pixel returns in which this zone is the strongest
     std::size_t points = 0;
     double nearest_return = 0;   ///< [m]; 0 without returns
     double farthest_return = 0;  ///< [m]
@@ -77,7 +77,8 @@ struct Assessment {
     std::vector<ReachSummary> reaches;  ///< one for each range requirement
     SafetyVerdict safety;
     std::vector<RequirementResult> requirements;
-    std::vector<std::string> findings;  ///< what to mind about this design or this evaluation, whole sentences
+    std::vector<std::string>
+        findings;  ///< what to mind about this design or this evaluation, whole sentences
 
     [[nodiscard]] bool all_met() const;
 };

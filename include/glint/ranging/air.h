@@ -8,7 +8,8 @@ namespace glint {
 /// 0.16 V + 0.34 from 1 km, V - 0.5 from 0.5 km, 0 below, V in km.
 [[nodiscard]] double extinction(double visibility, double wavelength);
 
-/// Group index of standard air (15 C, 101.325 kPa): n - lambda dn/dlambda with n of Ciddor (1996), 0.23 to 1.69 um.
+/// Group index of standard air (15 C, 101.325 kPa): n - lambda dn/dlambda with n of Ciddor (1996), 0.23
+/// to 1.69 um.
 [[nodiscard]] double air_group_index(double wavelength);
 
 }  // namespace glint

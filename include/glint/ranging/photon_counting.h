@@ -20,10 +20,10 @@ struct CountingModel {
     double range_per_time = 0;    ///< half the speed of light in air [m/s]
 };
 
-/// Timing after Incoronato et al. (2021): sigma^2 = (pulse FWHM / 2.3548)^2 + (jitter FWHM / 2.3548)^2 + bin^2 / 12.
-/// Window of 2.80 sigma, which is best against uniform background and holds 83.85 % of a Gaussian (derived), but at
-/// least one bin. The false alarm of the dwell is shared among all bins as positions of the window, which is
-/// conservative: p = 1 - (1 - P)^(1 / bins).
+/// Timing after Incoronato et al. (2021): sigma^2 = (pulse FWHM / 2.3548)^2 + (jitter FWHM / 2.3548)^2 +
+/// bin^2 / 12. Window of 2.80 sigma, which is best against uniform background and holds 83.85 % of a Gaussian
+/// (derived), but at least one bin. The false alarm of the dwell is shared among all bins as positions of the
+/// window, which is conservative: p = 1 - (1 - P)^(1 / bins).
 [[nodiscard]] CountingModel counting_model(const Design& design);
 
 /// What one pixel gets out of one dwell.
@@ -41,8 +41,8 @@ struct Detection {
 [[nodiscard]] double background_rate(const CountingModel& model, double power);
 
 /// Counts of an echo in a dwell from its photoelectrons per shot. A free-running detector is armed for
-/// 1 / (1 + b dead_time) of the time (textbook, non-paralysable), and counts at most once per dead time, hence at
-/// most once per pulse: shots * (1 - exp(-n armed)). Without dead time every photoelectron counts.
+/// 1 / (1 + b dead_time) of the time (textbook, non-paralysable), and counts at most once per dead time,
+/// hence at most once per pulse: shots * (1 - exp(-n armed)). Without dead time every photoelectron counts.
 [[nodiscard]] double echo_counts(const CountingModel& model, double signal_shot, double background_rate);
 
 /// Background counts inside the window over the dwell.
@@ -51,12 +51,13 @@ struct Detection {
 /// Detection of an echo of `signal_shot` photoelectrons per shot against `background_rate` [Hz].
 [[nodiscard]] Detection detect(const CountingModel& model, double signal_shot, double background_rate);
 
-/// Cramer-Rao bound of the range [m] for an echo of S counts (whole dwell) over a background of beta counts per
-/// second of histogram: sigma / sqrt(S K(rho)), rho = beta sigma sqrt(2 pi) / S, with
-/// K(rho) = integral x^2 phi^2 / (phi + rho phi(0)) dx in closed form to 0.7 % (derived, checked numerically).
+/// Cramer-Rao bound of the range [m] for an echo of S counts (whole dwell) over a background of beta counts
+/// per second of histogram: sigma / sqrt(S K(rho)), rho = beta sigma sqrt(2 pi) / S, with K(rho) = integral
+/// x^2 phi^2 / (phi + rho phi(0)) dx in closed form to 0.7 % (derived, checked numerically).
 [[nodiscard]] double precision_bound(const CountingModel& model, double counts, double background_per_second);
 
-/// 1 / K(rho), the growth of the variance by background: 1 + 2 sqrt(2) rho + 0.54 sqrt(1.7 rho / (1 + 1.7 rho)).
+/// 1 / K(rho), the growth of the variance by background: 1 + 2 sqrt(2) rho + 0.54 sqrt(1.7 rho / (1 + 1.7
+/// rho)).
 [[nodiscard]] double variance_growth(double rho);
 
 }  // namespace glint

@@ -8,9 +8,9 @@ namespace glint {
 
 /// The light that serves one pixel best, seen from far away, where emitter and receiver look along one line.
 struct PixelLight {
-    int dwell = -1;          ///< the dwell that sends most into the pixel's field; -1 when none does
-    double intensity = 0;    ///< of that dwell, mean over the pixel's field [W/sr]
-    double collected = 0;    ///< solid angle times foreshortened pupil area [m2 sr]
+    int dwell = -1;        ///< the dwell that sends most into the pixel's field; -1 when none does
+    double intensity = 0;  ///< of that dwell, mean over the pixel's field [W/sr]
+    double collected = 0;  ///< solid angle times foreshortened pupil area [m2 sr]
 };
 
 /// [rows x columns] in reading order.
@@ -34,13 +34,15 @@ struct PixelReach {
     RangeLimit limit = RangeLimit::no_light;
 };
 
-/// Largest distance, up to the gate, at which the pixel detects the target with `probability`. The signal falls
-/// with distance and the background does not change, so the answer is unique; it is found to 1e-6 of itself.
-/// Background limits when the window holds more background than the signal it asks for, else signal does.
-[[nodiscard]] PixelReach reach(const Link& link, const PixelLight& light, double reflectance, double probability);
+/// Largest distance, up to the gate, at which the pixel detects the target with `probability`. The signal
+/// falls with distance and the background does not change, so the answer is unique; it is found to 1e-6 of
+/// itself. Background limits when the window holds more background than the signal it asks for, else signal
+/// does.
+[[nodiscard]] PixelReach reach(const Link& link, const PixelLight& light, double reflectance,
+                               double probability);
 
-/// Value that the share `share` of the list reaches or exceeds: the (1 - share) quantile, conservative between two
-/// entries. 0 for an empty list.
+/// Value that the share `share` of the list reaches or exceeds: the (1 - share) quantile, conservative
+/// between two entries. 0 for an empty list.
 [[nodiscard]] double reached_by_share(std::vector<double> values, double share);
 
 }  // namespace glint

@@ -49,7 +49,8 @@ struct TextStyle {
     Align align = Align::left;
     Anchor anchor = Anchor::baseline;
     Reading reading = Reading::across;
-    double halo = 0;  ///< width of a rim in the page colour around the letters [units]
+    double halo = 0;  ///< width of a rim around the letters [units]
+    Colour halo_colour = with_alpha(palette::background, 0.9);
 };
 
 /// A text that was drawn and the box it takes: advance width by ascent and descent.

@@ -6,8 +6,8 @@
 
 namespace glint {
 
-/// The verdict for a terminal, at most 80 columns: caution, requirements with needed, got, margin and what limits,
-/// chip, eye safety, findings.
+/// The verdict for a terminal, at most 80 columns: caution, requirements with needed, got, margin and what
+/// limits, chip, eye safety, findings.
 [[nodiscard]] std::string verdict_text(const Design& design, const Assessment& assessment);
 
 /// summary.json: one object, numbers in SI with the unit in the key, the caution first.
