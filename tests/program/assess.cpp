@@ -22,6 +22,13 @@ std::string content(const std::string& path) {
     return text.str();
 }
 
+// What tests/run.sh fetched for the tests.
+std::string test_data(const std::string& name) {
+    const char* folder = std::getenv("GLINT_TEST_DATA");
+    REQUIRE_MESSAGE(folder != nullptr, "GLINT_TEST_DATA is not set: run the tests with bash tests/run.sh");
+    return std::string(folder) + "/" + name;
+}
+
 }  // namespace
 
 TEST_CASE("assess writes every file, prints the verdict, and says with its status whether all is met") {
@@ -93,7 +100,6 @@ TEST_CASE("energy closes: emitted = in the beams + named losses, in the beams = 
 
 TEST_CASE("an independent reader from the npm registry reads the PLY") {
     // @loaders.gl/ply; tests/run.sh installs it and names the folder.
-    const char* node_modules = std::getenv("GLINT_NODE_FOLDER");
     REQUIRE_MESSAGE(node_modules != nullptr,
                     "GLINT_NODE_FOLDER is not set: run the tests with bash tests/run.sh");
     const Folder folder;
@@ -101,10 +107,9 @@ TEST_CASE("an independent reader from the npm registry reads the PLY") {
     REQUIRE(run("glintplan assess " + folder.write("d.xml", small_design) + " --quiet --out " +
                 folder.path("out"))
                 .status == 0);
-    fs::copy_file(GLINT_SOURCE_DIR "/tests/program/read-ply.mjs", std::string(node_modules) + "/read-ply.mjs",
+    fs::copy_file(GLINT_SOURCE_DIR "/tests/program/read-ply.mjs", node + "/read-ply.mjs",
                   fs::copy_options::overwrite_existing);
-    const Run read =
-        run("node '" + std::string(node_modules) + "/read-ply.mjs' " + folder.path("out") + "/points.ply");
+    const Run read = run("node '" + node + "/read-ply.mjs' " + folder.path("out") + "/points.ply");
     REQUIRE_MESSAGE(read.status == 0, read.err);
     const auto ply = nlohmann::json::parse(read.out);
     const auto summary = nlohmann::json::parse(content(folder.path("out") + "/summary.json"));
@@ -116,16 +121,15 @@ TEST_CASE("an independent reader from the npm registry reads the PLY") {
 }
 
 TEST_CASE("a bunny from the npm registry is cast and seen") {
-    const char* obj = std::getenv("GLINT_BUNNY_OBJ");
-    REQUIRE_MESSAGE(obj != nullptr, "GLINT_BUNNY_OBJ is not set: run the tests with bash tests/run.sh");
+    const std::string obj = test_data("bunny.obj");
     const Folder folder;
     // The mesh is about 16 units wide and has y up: it lies on its back here, which a range sensor does not
     // mind.
     folder.write("scene.xml", replaced(small_scene,
                                        "<object name=\"wall\" material=\"paint\"><box x=\"2 m\" z=\"1 m\" "
                                        "size_x=\"0.1 m\" size_y=\"4 m\" size_z=\"2 m\"/>",
-                                       "<object name=\"bunny\" material=\"paint\"><mesh file=\"" +
-                                           std::string(obj) + "\" scale=\"0.1\" x=\"2.5 m\" z=\"1 m\"/>"));
+                                       "<object name=\"bunny\" material=\"paint\"><mesh file=\"" + obj +
+                                           "\" scale=\"0.1\" x=\"2.5 m\" z=\"1 m\"/>"));
     std::string design = replaced(small_design, "object=\"wall\"", "object=\"bunny\"");
     design = replaced(design, "columns=\"24\" rows=\"24\" pitch=\"25 um\"",
                       "columns=\"96\" rows=\"96\" pitch=\"6.25 um\"");

@@ -1,6 +1,6 @@
 // A scanned mesh of everyday quality: read, cast, and compared with a slow loop and with its own shadow.
 //
-// The environment variable GLINT_BUNNY_OBJ names the file; tests/fetch-bunny.sh makes it.
+// The environment variable GLINT_TEST_DATA names the folder of bunny.obj; tests/fetch-bunny.sh makes it.
 #include "scene/support.h"
 
 #include <doctest/doctest.h>
@@ -12,10 +12,10 @@ using namespace glint::testing;
 namespace {
 
 Mesh bunny() {
-    const char* path = std::getenv("GLINT_BUNNY_OBJ");
-    if (path == nullptr || *path == '\0')
-        FAIL("GLINT_BUNNY_OBJ is not set; run tests/fetch-bunny.sh OUTFILE and set it to OUTFILE");
-    return read_obj(path);
+    const char* folder = std::getenv("GLINT_TEST_DATA");
+    if (folder == nullptr || *folder == '\0')
+        FAIL("GLINT_TEST_DATA is not set: run the tests with bash tests/run.sh");
+    return read_obj(std::string(folder) + "/bunny.obj");
 }
 
 SceneParts parts_of(const Mesh& mesh) {
