@@ -100,8 +100,7 @@ TEST_CASE("energy closes: emitted = in the beams + named losses, in the beams = 
 
 TEST_CASE("an independent reader from the npm registry reads the PLY") {
     // @loaders.gl/ply; tests/run.sh installs it and names the folder.
-    REQUIRE_MESSAGE(node_modules != nullptr,
-                    "GLINT_NODE_FOLDER is not set: run the tests with bash tests/run.sh");
+    const std::string node = test_data("node");
     const Folder folder;
     folder.write("scene.xml", small_scene);
     REQUIRE(run("glintplan assess " + folder.write("d.xml", small_design) + " --quiet --out " +
