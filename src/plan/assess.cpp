@@ -131,10 +131,9 @@ Assessment work_through(const LoadedDesign& loaded, const Progress& progress) {
     for (const Point& point : result.points) ++result.points_on_object[point.object];
 
     result.safety = judge_small_source(design, result.plan, field, progress);
-    for (const Requirement& requirement : design.requirements.list)
-        if (const auto* range = std::get_if<RangeRequirement>(&requirement))
-            result.reaches.push_back(summarize_reach(link, lights, *range));
-    result.requirements = judge_requirements(design, result, link, lights);
+    JudgedRequirements judged = judge_requirements(design, result, link, lights);
+    result.requirements = std::move(judged.results);
+    result.reaches = std::move(judged.reaches);
     result.findings = collect_findings(design, result);
     return result;
 }

@@ -17,6 +17,7 @@ struct Context {
     const Assessment& assessment;
     const Link& link;
     std::span<const PixelLight> lights;
+    std::vector<ReachSummary>& reaches;  // filled by the range requirements
 };
 
 // Beyond ten times the bound the figure says no more than that there is plenty.
@@ -53,7 +54,13 @@ std::string common_limit(const std::vector<PixelReach>& list, double got) {
 
 RequirementResult judge(const Context& context, const RangeRequirement& range) {
     const std::vector<PixelReach> list = reaches(context, range);
-    const double got = reached_by_share(distances(list), range.share);
+    const std::vector<double> far = distances(list);
+    context.reaches.push_back({.reflectance = range.reflectance,
+                               .probability = range.probability,
+                               .shortest = reached_by_share(far, 1),
+                               .median = reached_by_share(far, 0.5),
+                               .longest = reached_by_share(far, 0)});
+    const double got = reached_by_share(far, range.share);
     return {.name = fmt::format("Range at {}", show_quantity(range.reflectance, Kind::ratio)),
             .unit = "m",
             .needed = range.distance,
@@ -174,10 +181,10 @@ const char* element_of(const Requirement& requirement) {
 
 }  // namespace
 
-std::vector<RequirementResult> judge_requirements(const Design& design, const Assessment& assessment,
-                                                  const Link& link, std::span<const PixelLight> lights) {
-    const Context context{design, assessment, link, lights};
-    std::vector<RequirementResult> results;
+JudgedRequirements judge_requirements(const Design& design, const Assessment& assessment, const Link& link,
+                                      std::span<const PixelLight> lights) {
+    JudgedRequirements judged;
+    const Context context{design, assessment, link, lights, judged.reaches};
     std::map<std::string, int> seen;
     for (const Requirement& requirement : design.requirements.list) {
         const int occurrence = ++seen[element_of(requirement)];
@@ -188,23 +195,11 @@ std::vector<RequirementResult> judge_requirements(const Design& design, const As
                 throw Error(Problem{.what = fmt::format("the scene has no object '{}'", points->object),
                                     .accepted = join_or(assessment.object_names),
                                     .path = path + "/object"});
-        results.push_back(std::visit([&](const auto& each) { return judge(context, each); }, requirement));
-        results.back().path = path;
+        judged.results.push_back(
+            std::visit([&](const auto& each) { return judge(context, each); }, requirement));
+        judged.results.back().path = path;
     }
-    return results;
-}
-
-ReachSummary summarize_reach(const Link& link, std::span<const PixelLight> lights,
-                             const RangeRequirement& range) {
-    std::vector<double> list(lights.size());
-    parallel_for(list.size(), [&](std::size_t i) {
-        list[i] = reach(link, lights[i], range.reflectance, range.probability).distance;
-    });
-    return {.reflectance = range.reflectance,
-            .probability = range.probability,
-            .shortest = reached_by_share(list, 1),
-            .median = reached_by_share(list, 0.5),
-            .longest = reached_by_share(list, 0)};
+    return judged;
 }
 
 }  // namespace glint

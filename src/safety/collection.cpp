@@ -41,8 +41,12 @@ double share_of_wide(const Beam& beam, const Aperture& aperture) {
         sum += passing;
         most = std::max(most, passing);
     }
-    const double area = pi * aperture.radius * aperture.radius;
-    return std::min(1.0, (aperture.play > 0 ? most : sum / disc_points) * area / beam.power);
+    // What passes the grown disc, and the largest intensity over the disc itself, both bound what passes with
+    // play.
+    const double grown = aperture.radius + aperture.play;
+    const double through_grown = sum / disc_points * pi * grown * grown;
+    const double at_most = std::min(through_grown, most * pi * aperture.radius * aperture.radius);
+    return std::min(1.0, (aperture.play > 0 ? at_most : through_grown) / beam.power);
 }
 
 }  // namespace

@@ -7,15 +7,15 @@
 
 namespace glint {
 
-/// Judges every requirement of the design. `assessment` must hold everything but requirements and findings.
-/// Errors: a requirement on an object that the scene does not have.
-[[nodiscard]] std::vector<RequirementResult> judge_requirements(const Design& design,
-                                                                const Assessment& assessment,
-                                                                const Link& link,
-                                                                std::span<const PixelLight> lights);
+/// The verdict on each requirement, and how far the pixels reach for each range requirement.
+struct JudgedRequirements {
+    std::vector<RequirementResult> results;
+    std::vector<ReachSummary> reaches;
+};
 
-/// Distances that the pixels reach for one range requirement.
-[[nodiscard]] ReachSummary summarize_reach(const Link& link, std::span<const PixelLight> lights,
-                                           const RangeRequirement& range);
+/// Judges every requirement of the design. `assessment` must hold everything but requirements, reaches and
+/// findings. Errors: a requirement on an object that the scene does not have.
+[[nodiscard]] JudgedRequirements judge_requirements(const Design& design, const Assessment& assessment,
+                                                    const Link& link, std::span<const PixelLight> lights);
 
 }  // namespace glint

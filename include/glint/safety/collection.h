@@ -18,7 +18,8 @@ struct Aperture {
 /// round Gaussian whose radius is the smaller one of the beam there, sqrt(exit_radius^2 + (L theta)^2), which
 /// gathers most; where the aperture is wide against the beam, the half plane within its rim, which is never
 /// less. Wide kernels: mean intensity over the disc times its solid angle. With play: for narrow beams the
-/// disc grown by it, for wide ones the largest intensity met within it.
+/// disc grown by it, for wide ones the
+/// smaller of the disc grown by it and of the largest intensity met within it.
 [[nodiscard]] double collected_share(const Beam& beam, const Aperture& aperture);
 
 /// Energy of one zone through the aperture, per shot.
