@@ -4,6 +4,7 @@
 
 #include <glint/core/error.h>
 #include <glint/core/parallel.h>
+#include <glint/core/text.h>
 #include <glint/core/version.h>
 #include <glint/safety/caution.h>
 
@@ -25,13 +26,14 @@ int explain(const Error& error) {
 int parse_and_run(int argc, char** argv) {
     CLI::App app{
         "Planner for addressable emitter arrays and flash illumination in lidar and 3D sensing.\n\n" +
-        std::string(caution_paragraph)};
+        wrapped(caution_paragraph, 80)};
     app.name("glintplan");
     app.set_version_flag("--version", fmt::format("glintplan {}", version()));
     app.require_subcommand(1);
-    app.footer(
+    app.footer(wrapped(
         "glintplan COMMAND --help says more. Exit status: 0 every requirement met, 1 one not met, 2 bad "
-        "input, 3 the machine failed, 130 stopped.");
+        "input, 3 the machine failed, 130 stopped.",
+        80));
     const std::array commands{cli::add_assess(app), cli::add_preview(app), cli::add_limits(app),
                               cli::add_fields(app)};
     try {

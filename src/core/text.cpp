@@ -50,6 +50,19 @@ std::string counted(long count, std::string_view noun) {
     return std::to_string(count) + " " + std::string(noun) + (count == 1 ? "" : "s");
 }
 
+std::string wrapped(std::string_view text, std::size_t width, std::size_t indent) {
+    const std::string margin(indent, ' ');
+    std::string out = margin;
+    std::size_t column = indent;
+    for (const std::string_view word : split(text, ' ')) {
+        if (column > indent && column + 1 + word.size() > width) out += "\n" + margin, column = indent;
+        if (column > indent) out += ' ', ++column;
+        out += word;
+        column += word.size();
+    }
+    return out + "\n";
+}
+
 std::string_view trim(std::string_view text) {
     constexpr std::string_view blank = " \t\r\n";
     const auto first = text.find_first_not_of(blank);

@@ -10,24 +10,6 @@ namespace {
 
 constexpr std::size_t page_width = 80;
 
-// Breaks text at blanks so that no line is wider than the page; continuation lines are indented.
-std::string wrapped(std::string_view text, std::size_t indent) {
-    std::string out(indent, ' ');
-    std::size_t column = indent;
-    while (!text.empty()) {
-        const auto end = text.find(' ');
-        const std::string_view word = text.substr(0, end);
-        if (column > indent && column + 1 + word.size() > page_width)
-            out += "\n" + std::string(indent, ' '), column = indent;
-        if (column > indent) out += ' ', ++column;
-        out += word;
-        column += word.size();
-        if (end == std::string_view::npos) break;
-        text.remove_prefix(end + 1);
-    }
-    return out + "\n";
-}
-
 std::string shortened(std::string text, std::size_t width) {
     if (text.size() > width) text = text.substr(0, width - 1) + ".";
     return text;
@@ -41,7 +23,7 @@ std::string requirement_table(const Assessment& assessment) {
         text += fmt::format("{:<4} {:<23} {:<22} {:<20} {:>7}\n", each.met ? "met" : "NOT",
                             shortened(each.name, 23), shortened(each.needed_text, 22),
                             shortened(each.got_text, 20), each.margin_text);
-        if (!each.limited_by.empty()) text += wrapped("limited by " + each.limited_by, 5);
+        if (!each.limited_by.empty()) text += wrapped("limited by " + each.limited_by, page_width, 5);
     }
     return text;
 }
@@ -85,11 +67,11 @@ std::string safety_section(const Assessment& assessment) {
 }  // namespace
 
 std::string verdict_text(const Design& design, const Assessment& assessment) {
-    std::string text = wrapped(caution_paragraph, 0) + "\n";
+    std::string text = wrapped(caution_paragraph, page_width) + "\n";
     if (!design.name.empty()) text += design.name + "\n\n";
     text += chip_section(design, assessment) + "\n" + safety_section(assessment) + "\n";
     if (!assessment.requirements.empty()) text += requirement_table(assessment) + "\n";
-    for (const std::string& finding : assessment.findings) text += wrapped(finding, 0);
+    for (const std::string& finding : assessment.findings) text += wrapped(finding, page_width);
     if (!assessment.requirements.empty())
         text += assessment.all_met() ? "\nEvery requirement is met.\n" : "\nNOT every requirement is met.\n";
     return text;

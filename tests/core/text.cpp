@@ -26,6 +26,12 @@ TEST_CASE("numbers are read whole or not at all, whatever follows") {
         CHECK_MESSAGE(!parse_number(text).good, text);
 }
 
+TEST_CASE("wrapped text keeps every word and no line is too wide") {
+    CHECK(wrapped("one two three", 7) == "one two\nthree\n");
+    CHECK(wrapped("one two", 80, 2) == "  one two\n");
+    CHECK(wrapped("unbreakable", 4) == "unbreakable\n");
+}
+
 TEST_CASE("split keeps empty pieces and trims blanks") {
     const auto pieces = split(" a , ,b", ',');
     REQUIRE(pieces.size() == 3);

@@ -21,8 +21,12 @@ namespace glint {
 /// "1 zone", "3 zones".
 [[nodiscard]] std::string counted(long count, std::string_view noun);
 
+/// Text broken at blanks so that no line is wider than `width`, every line indented; ends with a line break.
+[[nodiscard]] std::string wrapped(std::string_view text, std::size_t width, std::size_t indent = 0);
+
 /// Pieces of `text` between separators, blanks trimmed; empty pieces are kept.
 [[nodiscard]] std::vector<std::string_view> split(std::string_view text, char separator);
+std::vector<std::string_view> split(std::string&& text, char separator) = delete;  // the pieces would dangle
 
 [[nodiscard]] std::string_view trim(std::string_view text);
 
