@@ -1,6 +1,7 @@
 // Small text helpers for messages.
 #pragma once
 
+#include <concepts>
 #include <span>
 #include <string>
 #include <string_view>
@@ -26,7 +27,8 @@ namespace glint {
 
 /// Pieces of `text` between separators, blanks trimmed; empty pieces are kept.
 [[nodiscard]] std::vector<std::string_view> split(std::string_view text, char separator);
-std::vector<std::string_view> split(std::string&& text, char separator) = delete;  // the pieces would dangle
+template <std::same_as<std::string> Temporary>
+void split(Temporary&& text, char separator) = delete;  // the pieces would dangle
 
 [[nodiscard]] std::string_view trim(std::string_view text);
 
