@@ -125,7 +125,9 @@ private:
             known = meshes_.emplace(entry.file, std::move(mesh)).first;
         }
         Mesh placed = known->second;
-        const Mat3 rotation = pose.rotation * turned(entry.turn);
+        Mat3 upright = Mat3::Identity();
+        if (entry.up == UpAxis::y) upright << 1, 0, 0, 0, 0, -1, 0, 1, 0;  // y becomes z, z becomes -y
+        const Mat3 rotation = pose.rotation * turned(entry.turn) * upright;
         const Vec3 origin = pose(entry.x, entry.y, entry.z);
         for (Vec3& vertex : placed.vertices) vertex = rotation * (entry.scale * vertex) + origin;
         if (!placed.triangles.empty()) parts.meshes.push_back({std::move(placed), object_});

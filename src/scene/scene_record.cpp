@@ -85,6 +85,7 @@ Record mesh() {
     return placed(describe, "Place of the file's origin")
         .file("file", &MeshEntry::file, "OBJ file")
         .required()
+        .choice("up", &MeshEntry::up, {"z", "y"}, "Axis of the file that points up")
         .quantity("scale", &MeshEntry::scale, Kind::number, above_to(0, 1e6), "Metres per unit of the file")
         .quantity("turn", &MeshEntry::turn, Kind::angle, any_angle,
                   "Turned counter-clockwise seen from above")

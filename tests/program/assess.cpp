@@ -2,6 +2,7 @@
 #include "about.h"
 
 #include "program/run.h"
+#include "report/png_reader.h"
 
 #include <doctest/doctest.h>
 #include <algorithm>
@@ -120,29 +121,40 @@ TEST_CASE("an independent reader from the npm registry reads the PLY") {
 }
 
 TEST_CASE("a bunny from the npm registry is cast and seen") {
-    const std::string obj = test_data("bunny.obj");
     const Folder folder;
-    // The mesh is about 16 units wide and has y up: it lies on its back here, which a range sensor does not
-    // mind.
-    folder.write("scene.xml", replaced(small_scene,
-                                       "<object name=\"wall\" material=\"paint\"><box x=\"2 m\" z=\"1 m\" "
-                                       "size_x=\"0.1 m\" size_y=\"4 m\" size_z=\"2 m\"/>",
-                                       "<object name=\"bunny\" material=\"paint\"><mesh file=\"" + obj +
-                                           "\" scale=\"0.1\" x=\"2.5 m\" z=\"1 m\"/>"));
+    // The mesh is about 16 units high and has y up; here it stands 1.6 m high on the floor, 3.5 m away.
+    const std::string mesh =
+        "<mesh file=\"" + test_data("bunny.obj") + "\" up=\"y\" scale=\"0.1\" x=\"3.5 m\" turn=\"-60 deg\"/>";
+    const std::string wall =
+        "<object name=\"wall\" material=\"paint\"><box x=\"2 m\" z=\"1 m\" size_x=\"0.1 m\" size_y=\"4 m\" "
+        "size_z=\"2 m\"/>";
+    folder.write("scene.xml",
+                 replaced(small_scene, wall, "<object name=\"bunny\" material=\"paint\">" + mesh));
     std::string design = replaced(small_design, "object=\"wall\"", "object=\"bunny\"");
     design = replaced(design, "columns=\"24\" rows=\"24\" pitch=\"25 um\"",
-                      "columns=\"96\" rows=\"96\" pitch=\"6.25 um\"");
-    const Run seen = run("glintplan assess " + folder.write("d.xml", replaced(design, "10 mW", "200 mW")) +
+                      "columns=\"96\" rows=\"96\" pitch=\"12 um\"");
+    design = replaced(design, "focal_length=\"1 mm\" clear_aperture=\"2 mm\"",
+                      "focal_length=\"0.5 mm\" clear_aperture=\"1 mm\"");
+    const Run seen = run("glintplan assess " + folder.write("d.xml", replaced(design, "10 mW", "2 W")) +
                          " --out " + folder.path("out"));
     CHECK_MESSAGE((seen.status == 0 || seen.status == 1), seen.err);
     const auto summary = nlohmann::json::parse(content(folder.path("out") + "/summary.json"));
     int on_bunny = 0;
     for (const auto& object : summary["ranging"]["objects"])
         if (object["name"] == "bunny") on_bunny = object["points"];
-    CHECK(on_bunny > 300);
-    // "Seen in the picture": the points fill a good part of it with colours of the scale, not only axes and
-    // paper.
-    CHECK(fs::file_size(folder.path("out") + "/preview-points.png") > 30000);
+    CHECK(on_bunny > 1000);
+    // Seen in the picture: coloured pixels beside the colour bar, as many as that many points must cover.
+    const ReadPicture picture = read_png(content(folder.path("out") + "/preview-points.png"));
+    REQUIRE(picture.width == 2560);
+    int coloured = 0;
+    for (int y = 0; y < picture.height; ++y)
+        for (int x = 0; x < picture.width * 9 / 10; ++x) {
+            const unsigned char* pixel =
+                &picture.pixels[(static_cast<std::size_t>(y) * picture.width + x) * 3];
+            const auto [low, high] = std::minmax({pixel[0], pixel[1], pixel[2]});
+            coloured += high - low > 60;
+        }
+    CHECK(coloured > 20 * on_bunny);
 }
 
 TEST_CASE("preview draws one view, and says which there are") {

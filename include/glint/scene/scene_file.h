@@ -43,8 +43,10 @@ struct PlaneEntry {
     double x = 0, y = 0, z = 0;                       ///< a point of it
     double normal_x = 0, normal_y = 0, normal_z = 1;  ///< any length above 0
 };
+enum class UpAxis { z, y };
 struct MeshEntry {
-    std::string file;  ///< OBJ
+    std::string file;         ///< OBJ
+    UpAxis up = UpAxis::z;    ///< axis of the file that points up
     double scale = 1;  ///< metres per unit of the file
     double x = 0, y = 0, z = 0;
     double turn = 0;
