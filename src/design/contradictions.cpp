@@ -78,26 +78,47 @@ void check_addressing(const Design& design, std::vector<Problem>& problems) {
     divide(addressing.columns, layout.columns, "columns");
 }
 
+void check_fan_out(const FanOut& fan_out, std::vector<Problem>& problems) {
+    const auto check = [&](int orders, double period, const char* direction) {
+        if (orders % 2 == 0)
+            problems.push_back({.what = fmt::format("{} orders have no middle", orders),
+                                .accepted = "an odd number",
+                                .path = fmt::format("optics/fan_out/orders_{}", direction)});
+        if (orders > 1 && !(period > 0))
+            problems.push_back({.what = "several orders need a period",
+                                .accepted = "a period above 0",
+                                .path = fmt::format("optics/fan_out/period_{}", direction)});
+    };
+    check(fan_out.orders_right, fan_out.period_right, "right");
+    check(fan_out.orders_up, fan_out.period_up, "up");
+    if (fan_out.efficiency + fan_out.zero_order.value_or(0) > 1)
+        problems.push_back({.what = "efficiency and zero order are more than all of the light",
+                            .accepted = "a sum up to 100 %",
+                            .path = "optics/fan_out/zero_order"});
+}
+
 void check_optics(const Design& design, std::vector<Problem>& problems) {
-    int lenses = 0;
-    bool diffused = false;
+    // The order that makes sense: lens, then fan-out, then diffuser; each at most once.
+    constexpr const char* names[] = {"lens", "diffuser", "fan_out"};
+    constexpr int places[] = {0, 2, 1};
+    int last = -1;
     for (const OpticalElement& element : design.optics.elements) {
-        if (std::holds_alternative<Diffuser>(element)) {
-            if (diffused)
-                problems.push_back(
-                    {.what = "a second diffuser", .accepted = "one", .path = "optics/diffuser[2]"});
-            diffused = true;
-            continue;
-        }
-        ++lenses;
-        if (lenses > 1)
-            problems.push_back({.what = "a second lens",
-                                .accepted = "one, with the focal length of the whole",
-                                .path = "optics/lens[2]"});
-        if (diffused)
-            problems.push_back({.what = "a lens behind a diffuser",
-                                .accepted = "the lens before the diffuser",
-                                .path = "optics/lens"});
+        const int place = places[element.index()];
+        const std::string name = names[element.index()];
+        if (place == last)
+            problems.push_back(
+                {.what = "a second " + name, .accepted = "one", .path = "optics/" + name + "[2]"});
+        if (place < last)
+            problems.push_back({.what = "the " + name + " stands too late",
+                                .accepted = "the order lens, fan_out, diffuser, each at most once",
+                                .path = "optics/" + name});
+        last = std::max(last, place);
+        if (const Lens* lens = std::get_if<Lens>(&element);
+            lens != nullptr && lens->defocus <= -lens->focal_length / 2)
+            problems.push_back({.what = "the chip would stand in the middle of the lens or beyond",
+                                .accepted = "a defocus above minus half the focal length",
+                                .path = "optics/lens/defocus"});
+        if (const FanOut* fan_out = std::get_if<FanOut>(&element)) check_fan_out(*fan_out, problems);
     }
 }
 

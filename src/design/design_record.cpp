@@ -152,13 +152,30 @@ Record diffuser() {
                   "n of the profile I ~ cos^-n inside the field")
         .quantity("transmission", &Diffuser::transmission, K::ratio, above_to(0, 1),
                   "Share of the light that leaves within the field")
+        .quantity("distance", &Diffuser::distance, K::length, from_to(0, 1),
+                  "Behind the element before it, or the chip: sets the size of the lit spots")
+        .done();
+}
+
+Record fan_out() {
+    return Describe<FanOut>("fan_out", "A grating that makes several beams of each")
+        .integer("orders_right", &FanOut::orders_right, from_to(1, 99), "Beams side by side; an odd number")
+        .integer("orders_up", &FanOut::orders_up, from_to(1, 99), "Beams one above the other; an odd number")
+        .quantity("period_right", &FanOut::period_right, K::length, from_to(0, 1e-3),
+                  "Period of the grating across the field")
+        .quantity("period_up", &FanOut::period_up, K::length, from_to(0, 1e-3),
+                  "Period of the grating up the field")
+        .quantity("efficiency", &FanOut::efficiency, K::ratio, above_to(0, 1),
+                  "Share of the light in all wanted orders; without the zero order when that is given")
+        .quantity("zero_order", &FanOut::zero_order, K::ratio, from_to(0, 1),
+                  "Share of the light that goes straight on; as any other order when not given")
         .done();
 }
 
 Record optics() {
     return Describe<Optics>("optics",
                             "The projection optics, in the order light meets them; none: the bare chip")
-        .sequence(&Optics::elements, {lens(), diffuser()})
+        .sequence(&Optics::elements, {lens(), diffuser(), fan_out()})
         .done();
 }
 

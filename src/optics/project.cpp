@@ -80,6 +80,7 @@ void through_lens(Beams& beams, const Lens& lens, const Emitters& emitters) {
                                       std::hypot(residual * mapped.tangential, lens.blur));
         beam.origin.x() = lens.focal_length;
         beam.exit_radius = std::min(distance * lobe_width, lens.clear_aperture / 2);
+        beam.curvature = -lens.defocus / (lens.focal_length * distance);
     }
     beams.losses.push_back({"beside the lens", missed});
     beams.losses.push_back({"in the lens", absorbed});
@@ -103,19 +104,84 @@ void through_diffuser(Beams& beams, const Diffuser& diffuser) {
     for (Beam& beam : beams.beams) {
         lost += beam.power * (1 - diffuser.transmission);
         beam.power *= diffuser.transmission;
-        beam.kernel = kernel;
         beam.right = beam.axis.cross(Vec3::UnitZ()).normalized();  // keep the field upright
+        beam.exit_radius = radius_at(beam, diffuser.distance);
+        beam.curvature = 0;
+        beam.origin += diffuser.distance / beam.axis.x() * beam.axis;
+        beam.kernel = kernel;
     }
     beams.losses.push_back({"in the diffuser", lost});
 }
 
+// What one order of a fan-out does to every beam: a shift of direction cosines, and a share of the power.
+struct Order {
+    double shift_right, shift_up;
+    double share;
+};
+
+std::vector<Order> orders_of(const FanOut& fan_out, double wavelength) {
+    std::vector<Order> orders;
+    const int right = fan_out.orders_right / 2, up = fan_out.orders_up / 2;  // both numbers are odd
+    const int wanted = fan_out.orders_right * fan_out.orders_up;
+    // The zero order, when it is given on its own, is taken out of the shared efficiency.
+    const double zero = fan_out.zero_order.value_or(fan_out.efficiency / wanted);
+    const double others =
+        fan_out.zero_order ? fan_out.efficiency / std::max(1, wanted - 1) : fan_out.efficiency / wanted;
+    for (int n = up; n >= -up; --n)
+        for (int m = -right; m <= right; ++m)
+            orders.push_back({fan_out.orders_right > 1 ? m * wavelength / fan_out.period_right : 0,
+                              fan_out.orders_up > 1 ? n * wavelength / fan_out.period_up : 0,
+                              m == 0 && n == 0 ? zero : others});
+    return orders;
+}
+
+void through_fan_out(Beams& beams, const FanOut& fan_out, double wavelength) {
+    const std::vector<Order> orders = orders_of(fan_out, wavelength);
+    double beyond = 0, unused = 0;
+    std::vector<Beam> fanned;
+    fanned.reserve(beams.beams.size() * orders.size());
+    for (const Beam& beam : beams.beams) {
+        double sent = 0;
+        for (const Order& order : orders) {
+            sent += order.share;
+            const double y = beam.axis.y() - order.shift_right, z = beam.axis.z() + order.shift_up;
+            const double x2 = 1 - y * y - z * z;
+            if (x2 < 0.03) {  // 80 degrees: as good as along the surface
+                beyond += beam.power * order.share;
+                continue;
+            }
+            Beam copy = beam;
+            copy.axis = Vec3(std::sqrt(x2), y, z);
+            copy.power = beam.power * order.share;
+            copy.right = copy.axis.cross(Vec3::UnitZ()).normalized();
+            // Spreads are kept in direction cosines, so they grow with the obliquity of the order.
+            const double stretch = std::sqrt(beam.axis.x() / copy.axis.x());
+            if (beam.kernel.shape == KernelShape::gaussian)
+                copy.kernel = gaussian_kernel(beam.kernel.a * stretch, beam.kernel.b * stretch);
+            fanned.push_back(copy);
+        }
+        unused += beam.power * (1 - sent);
+    }
+    beams.beams = std::move(fanned);
+    beams.losses.push_back({"in unwanted orders", unused});
+    beams.losses.push_back({"in orders beyond 80 degrees", beyond});
+}
+
 }  // namespace
+
+double radius_at(const Beam& beam, double along) {
+    const double whole = std::min(beam.kernel.a, beam.kernel.b), bent = beam.curvature * beam.exit_radius;
+    const double own = std::sqrt(std::max(0.0, whole * whole - bent * bent));
+    return std::hypot(beam.exit_radius * (1 + along * beam.curvature), along * own);
+}
 
 Beams project(const EmitterArray& array, const Design& design) {
     Beams beams = bare(array, design);
     for (const OpticalElement& element : design.optics.elements) {
         if (const Lens* lens = std::get_if<Lens>(&element)) through_lens(beams, *lens, design.emitters);
         if (const Diffuser* diffuser = std::get_if<Diffuser>(&element)) through_diffuser(beams, *diffuser);
+        if (const FanOut* fan_out = std::get_if<FanOut>(&element))
+            through_fan_out(beams, *fan_out, design.emitters.wavelength);
     }
     return beams;
 }

@@ -15,7 +15,7 @@ constexpr int disc_points = 64;
 
 double share_of_narrow(const Beam& beam, const Aperture& aperture, double along, double beside) {
     const double radius = aperture.radius + aperture.play;
-    const double width = std::hypot(beam.exit_radius, along * std::min(beam.kernel.a, beam.kernel.b));
+    const double width = radius_at(beam, along);
     if (width <= 0) return beside <= radius ? 1 : 0;
     if (beside > radius + 3 * width) return 0;
     if (beside + 3 * width < radius) return 1;

@@ -144,7 +144,7 @@ TEST_CASE("fields that contradict each other are named") {
     CHECK(holds(problems_with("pulse_width=\"3 ns\"", "pulse_width=\"3 us\""),
                 "longer than the 1 us from shot to shot"));
     CHECK(holds(problems_with("<optics>", "<optics><diffuser horizontal=\"10 deg\" vertical=\"10 deg\"/>"),
-                "a lens behind a diffuser"));
+                "the lens stands too late"));
     CHECK(holds(problems_with("scheme=\"blocks\" rows=\"2\" columns=\"2\"", "scheme=\"list\""),
                 "the layout is no list"));
 }

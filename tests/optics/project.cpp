@@ -217,6 +217,58 @@ TEST_CASE("an f-tan array lights a flat wall evenly") {
         CHECK(on_wall(radians(angle)) / on_wall(0) == about(1).epsilon(0.01));
 }
 
+TEST_CASE("a fan-out sends orders where the grating equation says, and keeps the power") {
+    // Textbook grating equation sin = m lambda / period: 0.94 um over 2.748 um gives 20.003 deg and 43.168
+    // deg; the third order is evanescent; (1, 1) leaves at 28.931 deg to the axis.
+    Design design = line_of_emitters(40e-6, 1);
+    design.emitters.wavelength = 940e-9;
+    design.optics.elements = {Lens{.focal_length = 2.5e-3, .clear_aperture = 4e-3},
+                              FanOut{.orders_right = 7,
+                                     .orders_up = 3,
+                                     .period_right = 2.748e-6,
+                                     .period_up = 2.748e-6,
+                                     .efficiency = 0.7,
+                                     .zero_order = 0.01}};
+    const Beams beams = beams_of(design);
+    CHECK(beams.beams.size() == 15);  // 7 x 3 less the six of third order
+    double first = 0, second = 0, corner = 0;
+    for (const Beam& beam : beams.beams) {
+        const double right = degrees(std::asin(-beam.axis.y())), up = degrees(std::asin(beam.axis.z()));
+        if (std::abs(up) < 0.1 && std::abs(right - 20) < 1) first = right;
+        if (std::abs(up) < 0.1 && std::abs(right - 43) < 1) second = right;
+        if (up > 10 && right > 10 && right < 30) corner = degrees(std::acos(beam.axis.x()));
+        CHECK(beam.power ==
+              about(std::abs(up) < 0.1 && std::abs(right) < 0.1 ? 0.01 : 0.7 / 20).epsilon(1e-3));
+    }
+    CHECK(first == about(20.003).epsilon(1e-4));
+    CHECK(second == about(43.168).epsilon(1e-4));
+    CHECK(corner == about(28.931).epsilon(1e-4));
+    CHECK(in_beams(beams) + lost(beams) == about(beams.emitted).epsilon(1e-12));
+}
+
+TEST_CASE("a beam out of focus narrows to its image and widens again") {
+    // Thin lens: f = 3.5 mm, chip 130 um beyond the focal plane: image at f (f + d) / d = 97.7 mm, magnified
+    // by 26.9.
+    Design design = line_of_emitters(40e-6, 1);
+    design.emitters.near_field_radius = 5e-6;
+    design.optics.elements = {Lens{.focal_length = 3.5e-3, .clear_aperture = 5e-3, .defocus = 130e-6}};
+    const Beam beam = beams_of(design).beams[0];
+    const double image = 3.5e-3 * 3.63e-3 / 130e-6;
+    CHECK(-1 / beam.curvature == about(image).epsilon(1e-9));
+    CHECK(radius_at(beam, image) == about(5e-6 * image / 3.5e-3).epsilon(1e-6));
+    CHECK(radius_at(beam, 0) == about(3.63e-3 * std::tan(radians(10))).epsilon(1e-9));
+    CHECK(radius_at(beam, 10) == about(10 * beam.kernel.a).epsilon(0.02));
+}
+
+TEST_CASE("a diffuser behind the chip is lit by spots of the lobe's width") {
+    Design design = line_of_emitters(40e-6, 2);
+    design.optics.elements = {Diffuser{
+        .horizontal = radians(60), .vertical = radians(45), .roll_off = radians(2), .distance = 0.5e-3}};
+    const Beams beams = beams_of(design);
+    CHECK(beams.beams[0].exit_radius == about(std::hypot(3.5e-6, 0.5e-3 * std::tan(radians(10)))));
+    CHECK(beams.beams[0].origin.x() == about(0.5e-3));
+}
+
 TEST_CASE("impossible optics are refused") {
     Design design = line_of_emitters(1e-3, 40);
     design.optics.elements = {Lens{.focal_length = 2e-3, .clear_aperture = 60e-3}};

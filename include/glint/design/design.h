@@ -101,10 +101,24 @@ struct Diffuser {
     double roll_off = 0;      ///< 10-90 % width of the edge for a collimated source [rad]
     double exponent = 0;      ///< n of I ~ cos^-n inside the field
     double transmission = 1;  ///< share that leaves inside the field and its edge
+    double distance = 0;      ///< behind the element before it, or the chip [m]
     bool operator==(const Diffuser&) const = default;
 };
 
-using OpticalElement = std::variant<Lens, Diffuser>;
+/// A grating that makes several beams of each.
+struct FanOut {
+    int orders_right = 1;     ///< beams side by side; odd
+    int orders_up = 1;        ///< beams one above the other; odd
+    double period_right = 0;  ///< of the grating across the field [m]
+    double period_up = 0;     ///< and up [m]
+    double efficiency =
+        0.6;  ///< share of the light in all wanted orders (without the zero one when it is given)
+    std::optional<double>
+        zero_order;  ///< share of the light that goes straight on; as any other order when not set
+    bool operator==(const FanOut&) const = default;
+};
+
+using OpticalElement = std::variant<Lens, Diffuser, FanOut>;
 
 /// The projection optics, in the order light meets them.
 struct Optics {

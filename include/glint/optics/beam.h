@@ -17,6 +17,8 @@ struct Beam {
     Kernel kernel;
     double power = 0;        ///< peak [W]
     double exit_radius = 0;  ///< 1/e2 radius of the beam at its origin [m]
+    double curvature =
+        0;  ///< change of slope with place across the beam at its origin [1/m]; below 0 it converges
     int zone = 0;
     int emitter = 0;
 };
@@ -39,8 +41,17 @@ struct Beams {
 /// back focal point; tangent mapping |x| = f tan(angle), f-theta |x| = f angle. The residual divergence is
 /// sqrt(w0^2 + (defocus tan(theta_e))^2) / f, narrowed by the mapping's local scale, plus the lens blur in
 /// quadrature (textbook geometric optics). Light beside the clear aperture is lost.
-/// Errors: an emitter beyond the lens's field, or no light through the lens.
+/// Diffuser: a beam lights a spot of its radius at the diffuser, and every place of it sends out the whole
+/// field. Fan-out: each beam becomes one beam an order, direction cosines shifted by m lambda / period
+/// (grating equation); orders beyond 90 degrees are lost. Errors: an emitter beyond the lens's field, or no
+/// light through the lens.
 [[nodiscard]] Beams project(const EmitterArray& array, const Design& design);
+
+/// 1/e2 radius of a beam a distance along its axis from its origin [m]:
+/// sqrt(W^2 (1 + L c)^2 + L^2 eta^2), W the exit radius, c the curvature, eta the part of the kernel's
+/// smaller half width that the curvature does not explain (sqrt(k^2 - (c W)^2); ray optics in two
+/// coordinates).
+[[nodiscard]] double radius_at(const Beam& beam, double along);
 
 /// Radiant intensity of one beam in a unit direction [W/sr].
 [[nodiscard]] double intensity(const Beam& beam, const Vec3& direction);
