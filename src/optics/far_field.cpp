@@ -47,8 +47,8 @@ int cell_of(double coordinate, int cells) {
 
 }  // namespace
 
-FarField far_field(const Beams& beams) {
-    FarField field{.beams = merged(beams.beams, beams.zones), .zones = beams.zones};
+FarField far_field(const Beams& beams, Merge merge) {
+    FarField field{.beams = merge == Merge::yes ? merged(beams.beams, beams.zones) : beams.beams, .zones = beams.zones};
     for (const Beam& beam : field.beams) {
         field.reach = std::max(field.reach, angular_reach(beam.kernel));
         field.spread = std::max(field.spread, beam.origin.norm());

@@ -16,11 +16,11 @@ bool holds_for(SourceSize source, double subtense) {
         case SourceSize::any:
             return true;
         case SourceSize::point:
-            return subtense <= alpha_min;
+            return subtense <= point_source;
         case SourceSize::extended:
-            return subtense > alpha_min;
+            return subtense > point_source;
         case SourceSize::extended_to_82_mrad:
-            return subtense > alpha_min && touches({0, 82e-3}, subtense);
+            return subtense > point_source && touches({0, 82e-3}, subtense);
     }
     return false;
 }

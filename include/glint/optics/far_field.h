@@ -20,7 +20,10 @@ struct FarField {
     int zones = 0;
 };
 
-[[nodiscard]] FarField far_field(const Beams& beams);
+/// Whether beams of a zone that share axis and kernel become one. The eye sees them apart, the scene does not.
+enum class Merge { no, yes };
+
+[[nodiscard]] FarField far_field(const Beams& beams, Merge merge = Merge::yes);
 
 /// Calls visit(beam) for every beam whose axis lies within `reach` of a unit direction in (y, z), and for
 /// some more.

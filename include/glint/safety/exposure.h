@@ -6,6 +6,7 @@
 #include <glint/safety/class.h>
 #include <glint/safety/collection.h>
 #include <glint/safety/pulses.h>
+#include <glint/safety/time_pattern.h>
 #include <span>
 #include <vector>
 
@@ -26,20 +27,8 @@ struct ExposureCase {
     [[nodiscard]] double ratio() const { return ae / ael; }
 };
 
-/// What one aperture is exposed to in a frame: dwells in time order that send something into it.
-struct DwellEnergy {
-    int dwell = 0;
-    double energy = 0;  ///< per shot [J]
-};
 [[nodiscard]] std::vector<DwellEnergy> dwell_energies(const FiringPlan& plan,
                                                       std::span<const ZoneEnergy> zones);
-
-/// How the emission is judged.
-struct ExposureRules {
-    LaserClass laser_class = LaserClass::class_1;
-    double wavelength = 0;  ///< [m]
-    double time_base = 0;   ///< [s]
-};
 
 /// Worst case of each criterion for a small source (C6 = 1), in the order single, average, group, train; a
 /// criterion that does not apply is left out. Emission durations: one pulse; Ti; every span from the start of

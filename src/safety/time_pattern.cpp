@@ -1,0 +1,293 @@
+// The time pattern: what a part of the image emits over the firing plan, held against the limits.
+#include <glint/safety/time_pattern.h>
+
+#include <algorithm>
+#include <cmath>
+#include <limits>
+
+namespace glint {
+namespace {
+
+constexpr double small_t2 = 10;  // s, T2 of a small source
+// Up to here a retinal limit is C6 times that of a point.
+constexpr double short_of_t2 = small_t2 * (1 - 1e-6);
+// Limits without C6 have one row that asks for an extended source; it only lowers the limit, so it always counts.
+constexpr double without_c6 = 2 * alpha_min;
+
+double in_tables(double duration) { return std::clamp(duration, limit_durations.from, limit_durations.to); }
+
+// Limit of a part for a duration, given that of a point for durations where that is enough.
+double part_limit(const TimePattern& pattern, double duration, double point_limit, double subtense) {
+    if (pattern.curve.mechanism != Mechanism::retinal_thermal) return point_limit;
+    if (duration <= short_of_t2) return point_limit * std::max(1.0, subtense / alpha_min);
+    return pattern.curve.energy(in_tables(duration), subtense, t2(subtense));
+}
+
+double point_limit(const TimePattern& pattern, double duration) {
+    const bool retinal = pattern.curve.mechanism == Mechanism::retinal_thermal;
+    return pattern.curve.energy(in_tables(duration), retinal ? alpha_min : without_c6, small_t2);
+}
+
+// Whether a duration is within the time base and belongs to the aperture under test.
+bool counts(const TimePattern& pattern, double duration) {
+    return duration <= pattern.rules.time_base && duration >= pattern.rules.durations.from && duration <= pattern.rules.durations.to;
+}
+
+TimedRatio emission(double duration, double pulses, double ae, double ael) {
+    return {.ratio = ae / ael, .duration = duration, .pulses = pulses, .ae = ae, .ael = ael};
+}
+
+double start_of(const TimePattern& pattern, const DwellEnergy& dwell) { return pattern.plan.start[dwell.dwell]; }
+
+// Shots of a dwell that start within a stretch that opens with its first shot.
+double shots_within(const TimePattern& pattern, double stretch) {
+    if (stretch < 0) return 0;
+    return std::min<double>(pattern.plan.shots, std::floor(stretch / pattern.plan.shot_period * (1 + 1e-12)) + 1);
+}
+
+struct Within {
+    double energy = 0, pulses = 0;
+};
+
+// The most that starts within a stretch: the stretch opens with the first shot of a dwell or closes with the last shot
+// of one, because between such moments the energy changes at a constant rate.
+Within most_within(const TimePattern& pattern, std::span<const DwellEnergy> dwells, double stretch) {
+    const double last_shot = (pattern.plan.shots - 1) * pattern.plan.shot_period;
+    const std::size_t count = dwells.size();
+    Within most;
+    for (std::size_t first = 0; first < count; ++first) {
+        Within opening, closing;
+        for (std::size_t next = 0; next < count; ++next) {
+            const std::size_t ahead = (first + next) % count, behind = (first + count - next) % count;
+            const double wrap_ahead = first + next >= count ? pattern.plan.frame_period : 0;
+            const double wrap_behind = next > first ? pattern.plan.frame_period : 0;
+            const double later = wrap_ahead + start_of(pattern, dwells[ahead]) - start_of(pattern, dwells[first]);
+            const double earlier = wrap_behind + start_of(pattern, dwells[first]) - start_of(pattern, dwells[behind]);
+            const double opened = shots_within(pattern, stretch - later), closed = shots_within(pattern, stretch - earlier);
+            if (opened == 0 && closed == 0) break;
+            opening.energy += opened * dwells[ahead].energy, opening.pulses += opened;
+            closing.energy += closed * dwells[behind].energy, closing.pulses += closed;
+        }
+        if (opening.energy > most.energy) most = opening;
+        if (closing.energy > most.energy) most = closing;
+        if (stretch >= last_shot && count == 1) break;
+    }
+    return most;
+}
+
+TimedRatio worst_single(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size) {
+    double strongest = 0;
+    for (const DwellEnergy& dwell : dwells) strongest = std::max(strongest, dwell.energy);
+    const double duration = pattern.plan.pulse_width;
+    if (shortest_duration(size.side) > duration || !counts(pattern, duration)) return {};
+    return emission(duration, 1, strongest, part_limit(pattern, duration, pattern.single_limit, size.subtense));
+}
+
+TimedRatio worst_group(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size) {
+    if (size.side > alpha_max(pattern.group_time) || pattern.plan.pulse_width > pattern.group_time || !counts(pattern, pattern.group_time)) return {};
+    const Within most = most_within(pattern, dwells, pattern.group_time);
+    if (most.pulses <= 1) return {};
+    return emission(pattern.group_time, most.pulses, most.energy, part_limit(pattern, pattern.group_time, pattern.group_limit, size.subtense));
+}
+
+// Least C5 over a family of subtenses: at its ends and just beyond each bound between cells that lies inside.
+double least_c5(const TimePattern& pattern, const PartSize& size, double count) {
+    TrainPulse pulse{.wavelength = pattern.rules.wavelength, .duration = pattern.plan.pulse_width, .count = count, .time_base = pattern.rules.time_base};
+    double least = 1;
+    const auto consider = [&](double subtense) {
+        pulse.subtense = subtense;
+        least = std::min(least, c5(pulse));
+    };
+    consider(size.subtense);
+    if (pulse.duration <= pattern.group_time) return least;  // there C5 does not depend on the subtense
+    consider(size.largest_subtense);
+    consider(size.whole_subtense);
+    for (const double bound : {5e-3, alpha_max(pulse.duration), 100e-3})
+        for (const double beside : {bound * (1 - 1e-9), bound * (1 + 1e-9)})
+            if (beside > size.subtense && beside < size.largest_subtense) consider(beside);
+    return least;
+}
+
+TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size, const TimedRatio& single, const TimedRatio& group) {
+    const FiringPlan& plan = pattern.plan;
+    if (pattern.curve.mechanism != Mechanism::retinal_thermal || plan.pulse_width > aversion_time_base || single.ratio <= 0) return {};
+    const bool grouped = group.pulses > 1;
+    const double span = (plan.shots - 1) * plan.shot_period;
+    const double groups_a_dwell = grouped ? std::min<double>(plan.shots, std::floor(span / pattern.group_time) + 1) : plan.shots;
+    const double window = std::min(t2(size.largest_subtense), pattern.rules.time_base);
+    const double frames = std::max(1.0, std::ceil(window / plan.frame_period * (1 - 1e-12)));
+    const double count = frames * groups_a_dwell * static_cast<double>(dwells.size());
+    TimedRatio worst = grouped && group.ratio > single.ratio ? group : single;
+    worst.C5 = least_c5(pattern, size, std::max(1.0, count));
+    worst.pulses = std::max(1.0, count);
+    worst.ael *= worst.C5;
+    worst.ratio = worst.ae / worst.ael;
+    return worst;
+}
+
+// The most that one stretch of whole dwells holds, over all durations. Stretches are sorted into classes of duration; a
+// class whose most energy over its least limit is not above what is known is dropped, others are halved.
+class AverageSearch {
+public:
+    AverageSearch(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size, double known)
+        : pattern_(pattern), dwells_(dwells), size_(size), shortest_(shortest_duration(size.side)), known_(known) {
+        for (const DwellEnergy& dwell : dwells) frame_energy_ += pattern.plan.shots * dwell.energy;
+    }
+
+    TimedRatio run() {
+        if (!(shortest_ <= pattern_.rules.time_base)) return {};
+        const double period = pattern_.plan.frame_period, length = pattern_.dwell_length;
+        pairs_of_shots();
+        at(shortest_);
+        stretches(0, {length, period + length});
+        // With more than a frame the ratio is quasi-convex in the number of frames: worst with the fewest that the
+        // side allows, or with the most that end by 10 s, by T2 or by the time base, where the limit bends.
+        const double fewest = std::max(1.0, std::floor((shortest_ - length) / period));
+        stretches(fewest, {length, period + length});
+        for (const double bend : pattern_.curve.bends) at(bend);
+        const double base = pattern_.rules.time_base;
+        for (const double end : {std::min(small_t2, base), std::min(t2(size_.subtense), base), base}) {
+            at(end);
+            const double frames = std::floor(end / period);
+            if (frames <= fewest) continue;
+            stretches(frames, {length, end - frames * period});
+            stretches(frames - 1, {end - frames * period, period + length});
+        }
+        return worst_;
+    }
+
+private:
+    [[nodiscard]] double limit(double duration) const {
+        return part_limit(pattern_, duration, point_limit(pattern_, duration), size_.subtense);
+    }
+
+    // Least limit from `shorter` to `longer`: it grows but for small steps down where it bends.
+    [[nodiscard]] double least_limit(double shorter, double longer) const {
+        double least = limit(shorter);
+        for (const double bend : pattern_.curve.bends)
+            if (bend > shorter && bend < longer) least = std::min(least, limit(bend));
+        return least;
+    }
+
+    void consider(double duration, double energy, double pulses) {
+        if (duration < shortest_ || !counts(pattern_, duration)) return;
+        const TimedRatio found = emission(duration, pulses, energy, limit(duration));
+        if (found.ratio > known_) worst_ = found, known_ = found.ratio;
+    }
+
+    void pairs_of_shots() {
+        if (pattern_.plan.shots < 2) return;
+        double strongest = 0;
+        for (const DwellEnergy& dwell : dwells_) strongest = std::max(strongest, dwell.energy);
+        consider(pattern_.plan.shot_period + pattern_.plan.pulse_width, 2 * strongest, 2);
+    }
+
+    // All that starts within a duration, whatever part of a dwell that is.
+    void at(double duration) {
+        if (duration < std::max(shortest_, pattern_.plan.pulse_width) || !counts(pattern_, duration)) return;
+        const double frames = std::floor(duration / pattern_.plan.frame_period * (1 + 1e-12));
+        if ((frames + 1) * frame_energy_ <= known_ * limit(duration)) return;
+        const Within rest = most_within(pattern_, dwells_, std::max(0.0, duration - frames * pattern_.plan.frame_period));
+        const double pulses = frames * static_cast<double>(dwells_.size()) * pattern_.plan.shots + rest.pulses;
+        consider(duration, frames * frame_energy_ + rest.energy, pulses);
+    }
+
+    // Whole frames and a stretch from the first pulse of a dwell to the last of one, its length within `range`.
+    void stretches(double frames, Interval range) {
+        const double before = frames * pattern_.plan.frame_period;
+        const double shorter = std::max(before + range.from, shortest_);
+        if (range.from > range.to || before + range.to < shortest_ || shorter > pattern_.rules.time_base) return;
+        const double least = known_ * least_limit(shorter, before + range.to) - frames * frame_energy_;
+        if (frame_energy_ <= least || most_in(range.to) <= least) return;
+        if (range.to > 1.1 * range.from && range.to - range.from > 0.01 * (before + range.from)) {
+            const double middle = std::sqrt(range.from * range.to);
+            stretches(frames, {range.from, middle});
+            stretches(frames, {middle, range.to});
+            return;
+        }
+        each_stretch(range, [&](double duration, double energy, std::size_t count) {
+            const double dwells = frames * static_cast<double>(dwells_.size()) + static_cast<double>(count);
+            consider(before + duration, frames * frame_energy_ + energy, dwells * pattern_.plan.shots);
+        });
+    }
+
+    [[nodiscard]] double time(std::size_t i) const {
+        const std::size_t count = dwells_.size();
+        return i < count ? start_of(pattern_, dwells_[i]) : start_of(pattern_, dwells_[i - count]) + pattern_.plan.frame_period;
+    }
+    [[nodiscard]] double energy(std::size_t i) const {
+        return dwells_[i < dwells_.size() ? i : i - dwells_.size()].energy * pattern_.plan.shots;
+    }
+
+    // Most energy of whole dwells, none of them twice, that a stretch holds.
+    [[nodiscard]] double most_in(double duration) const {
+        const double open = duration - pattern_.dwell_length + 1e-12 * pattern_.plan.frame_period;
+        double sum = 0, most = 0;
+        std::size_t next = 0;
+        for (std::size_t first = 0; first < dwells_.size(); ++first) {
+            while (next < first + dwells_.size() && time(next) - time(first) <= open) sum += energy(next++);
+            most = std::max(most, sum);
+            sum -= energy(first);
+        }
+        return most;
+    }
+
+    template <class Visit>
+    void each_stretch(const Interval& range, const Visit& visit) const {
+        const double slack = 1e-12 * pattern_.plan.frame_period;
+        for (std::size_t first = 0; first < dwells_.size(); ++first) {
+            double sum = 0;
+            for (std::size_t last = first; last < first + dwells_.size(); ++last) {
+                sum += energy(last);
+                const double duration = time(last) - time(first) + pattern_.dwell_length;
+                if (duration > range.to + slack) break;
+                if (duration >= range.from - slack) visit(duration, sum, last - first + 1);
+            }
+        }
+    }
+
+    const TimePattern& pattern_;
+    std::span<const DwellEnergy> dwells_;
+    const PartSize& size_;
+    double shortest_;
+    double known_;
+    double frame_energy_ = 0;
+    TimedRatio worst_;
+};
+
+}  // namespace
+
+double shortest_duration(double side) {
+    if (side <= 5e-3 * (1 + 1e-9)) return 0;
+    if (side > 100e-3 * (1 + 1e-9)) return std::numeric_limits<double>::infinity();
+    return (side / 0.2) * (side / 0.2);  // alpha_max = 200 mrad sqrt(t)
+}
+
+TimePattern time_pattern(const FiringPlan& plan, const ExposureRules& rules) {
+    TimePattern pattern{.plan = plan, .rules = rules};
+    pattern.curve = limit_curve(rules.laser_class, rules.wavelength, rules.mechanism);
+    const auto point = [&](double duration) { return point_limit(pattern, duration); };
+    pattern.dwell_length = (plan.shots - 1) * plan.shot_period + plan.pulse_width;
+    pattern.group_time = grouping_time(rules.wavelength);
+    pattern.single_limit = point(plan.pulse_width);
+    pattern.group_limit = point(pattern.group_time);
+    return pattern;
+}
+
+double energy_within(const TimePattern& pattern, std::span<const DwellEnergy> dwells, double stretch) {
+    return most_within(pattern, dwells, stretch).energy;
+}
+
+TimedRatios worst_over_time(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size, const Ratios& known) {
+    TimedRatios worst;
+    if (dwells.empty()) return worst;
+    TimedRatio& single = worst[static_cast<int>(PulseCriterion::single)];
+    TimedRatio& group = worst[static_cast<int>(PulseCriterion::group)];
+    single = worst_single(pattern, dwells, size);
+    group = worst_group(pattern, dwells, size);
+    worst[static_cast<int>(PulseCriterion::train)] = worst_train(pattern, dwells, size, single, group);
+    worst[static_cast<int>(PulseCriterion::average)] = AverageSearch(pattern, dwells, size, known[static_cast<int>(PulseCriterion::average)]).run();
+    return worst;
+}
+
+}  // namespace glint

@@ -1,0 +1,296 @@
+// The window search: branch and bound over rectangular windows of a retinal image.
+#include <glint/safety/window_search.h>
+
+#include <algorithm>
+#include <cmath>
+#include <queue>
+
+namespace glint {
+namespace {
+
+constexpr double widest_side = 100e-3;
+constexpr double short_side = 5e-3;  // alpha_max up to 625 us
+constexpr double snapping = 1e-3;    // of the side of a spot: edges closer than this are one
+constexpr std::size_t few_dwells = 64;
+
+// Spots as edges, sorted by dwell so that energies of a dwell are summed in one run.
+struct Box {
+    double low_u, high_u, low_v, high_v;
+    double energy;
+    int dwell;
+};
+
+std::vector<Box> boxes_of(std::span<const Spot> spots, std::span<const int> dwell_of_zone) {
+    std::vector<Box> boxes;
+    boxes.reserve(spots.size());
+    for (const Spot& spot : spots)
+        boxes.push_back({spot.middle.x() - spot.half.x(), spot.middle.x() + spot.half.x(), spot.middle.y() - spot.half.y(),
+                         spot.middle.y() + spot.half.y(), spot.energy, dwell_of_zone[spot.zone]});
+    std::ranges::stable_sort(boxes, {}, &Box::dwell);
+    return boxes;
+}
+
+// Edges that all but coincide become one: arithmetic on one row of emitters differs by less, and so do beams of one
+// kind that a lens treats a little differently. Low edges go down and high edges up.
+template <class Less>
+void snap(std::vector<Box>& boxes, double Box::*edge, double tolerance, const Less& less) {
+    std::vector<Box*> order;
+    for (Box& box : boxes) order.push_back(&box);
+    std::ranges::sort(order, [&](const Box* a, const Box* b) { return less(a->*edge, b->*edge); });
+    double kept = order.front()->*edge;
+    for (Box* box : order) {
+        if (std::abs(box->*edge - kept) > tolerance) kept = box->*edge;
+        box->*edge = kept;
+    }
+}
+
+void snap_edges(std::vector<Box>& boxes) {
+    double u = 1, v = 1;
+    for (const Box& box : boxes) u = std::min(u, box.high_u - box.low_u), v = std::min(v, box.high_v - box.low_v);
+    const auto tolerance = [](double side) { return std::max(1e-9, snapping * std::max(side, 0.2 * alpha_min)); };
+    snap(boxes, &Box::low_u, tolerance(u), std::less{});
+    snap(boxes, &Box::high_u, tolerance(u), std::greater{});
+    snap(boxes, &Box::low_v, tolerance(v), std::less{});
+    snap(boxes, &Box::high_v, tolerance(v), std::greater{});
+}
+
+std::vector<double> distinct(std::vector<double> values) {
+    std::ranges::sort(values);
+    values.erase(std::unique(values.begin(), values.end()), values.end());
+    return values;
+}
+
+// One side of a window.
+struct Interval1 {
+    double begin, end;
+    [[nodiscard]] double width() const { return end - begin; }
+};
+
+// Sides that a best window can have: from the low edge of a spot to the high edge of one, or of a set length with one
+// end on such an edge.
+std::vector<Interval1> candidate_sides(const std::vector<Box>& boxes, double Box::*low, double Box::*high, std::span<const double> lengths) {
+    std::vector<double> lows, highs;
+    for (const Box& box : boxes) lows.push_back(box.*low), highs.push_back(box.*high);
+    lows = distinct(std::move(lows)), highs = distinct(std::move(highs));
+    const double first = lows.front(), last = highs.back();
+    std::vector<Interval1> sides;
+    for (const double begin : lows) {
+        for (const double end : highs)
+            if (end - begin > alpha_min && end - begin <= widest_side) sides.push_back({begin, end});
+        for (const double length : lengths)
+            if (begin + length < last || length == alpha_min) sides.push_back({begin, begin + length});
+    }
+    for (const double end : highs)
+        for (const double length : lengths)
+            if (end - length > first) sides.push_back({end - length, end});
+    return sides;
+}
+
+// alpha_max of every stretch of time that the dwells of an image can make, those within half a percent as the smallest.
+std::vector<double> side_limits(const TimePattern& pattern, const std::vector<Box>& boxes) {
+    constexpr double apart = 1.005;
+    std::vector<double> limits{alpha_max(pattern.plan.pulse_width), short_side, widest_side};
+    std::vector<double> starts;
+    for (const Box& box : boxes) starts.push_back(pattern.plan.start[box.dwell]);
+    starts = distinct(std::move(starts));
+    const double period = pattern.plan.frame_period;
+    if (starts.size() > few_dwells || period < 5e-3) {
+        for (double limit = short_side; limit < widest_side; limit *= apart) limits.push_back(limit);
+    } else {
+        for (double frames = 0; frames * period < 0.25; ++frames)
+            for (const double first : starts)
+                for (const double last : starts) {
+                    const double duration = frames * period + last - first + (last < first ? period : 0) + pattern.dwell_length;
+                    if (duration < 0.25) limits.push_back(alpha_max(duration));
+                }
+    }
+    limits = distinct(std::move(limits));
+    std::vector<double> kept{alpha_min};
+    for (const double limit : limits)
+        if (limit > apart * kept.back()) kept.push_back(limit);
+    if (kept.back() < widest_side) kept.push_back(widest_side);
+    return kept;
+}
+
+// Candidate sides in a binary tree: first apart by length, then by place. A node knows what holds for all below it.
+struct SideTree {
+    struct Node {
+        double low, high;         // around all sides below
+        double shortest, longest;
+        int left = -1, right = -1;  // -1: a single side
+    };
+    std::vector<Node> nodes;  // the root is the last
+
+    int build(std::span<Interval1> sides) {
+        Node node{sides.front().begin, sides.front().end, sides.front().width(), sides.front().width()};
+        for (const Interval1& side : sides) {
+            node.low = std::min(node.low, side.begin), node.high = std::max(node.high, side.end);
+            node.shortest = std::min(node.shortest, side.width()), node.longest = std::max(node.longest, side.width());
+        }
+        if (sides.size() > 1) {
+            const auto middle = sides.begin() + static_cast<std::ptrdiff_t>(sides.size() / 2);
+            if (node.longest > 1.25 * node.shortest) std::ranges::nth_element(sides, middle, {}, &Interval1::width);
+            else std::ranges::nth_element(sides, middle, {}, &Interval1::begin);
+            const std::size_t half = sides.size() / 2;
+            node.left = build(sides.first(half));
+            node.right = build(sides.subspan(half));
+        }
+        nodes.push_back(node);
+        return static_cast<int>(nodes.size()) - 1;
+    }
+};
+
+double clamped(double side) { return std::clamp(side, alpha_min, widest_side); }
+
+// A rectangle of angles.
+struct Window {
+    double low_u, high_u, low_v, high_v;
+};
+
+// Share of [low, high] that a side within [from, to], at most `longest` long, can cover.
+double overlap(double low, double high, double from, double to, double longest) {
+    const double both = std::min({std::min(high, to) - std::max(low, from), longest});
+    if (both <= 0) return 0;
+    return both >= high - low ? 1 : both / (high - low);
+}
+
+// Most energy by dwell that a window within `around` can hold, in time order.
+void gather(const std::vector<Box>& boxes, std::span<const int> members, const Window& around, double longest_u, double longest_v, std::vector<DwellEnergy>& out) {
+    out.clear();
+    for (const int i : members) {
+        const Box& box = boxes[i];
+        const double share_u = overlap(box.low_u, box.high_u, around.low_u, around.high_u, longest_u);
+        if (share_u <= 0) continue;
+        const double share = share_u * overlap(box.low_v, box.high_v, around.low_v, around.high_v, longest_v);
+        if (share <= 0) continue;
+        if (out.empty() || out.back().dwell != box.dwell) out.push_back({box.dwell, 0});
+        out.back().energy += share * box.energy;
+    }
+}
+
+// A family of windows: a node of each tree, and the boxes that its windows can touch.
+struct Family {
+    int side_u, side_v;
+    std::vector<int> members;
+    double excess;  // largest bound over what is known, by criterion
+    Ratios bound;
+};
+
+struct LessPromising {
+    bool operator()(const Family& a, const Family& b) const { return a.excess < b.excess; }
+};
+
+class Search {
+public:
+    Search(const TimePattern& pattern, std::vector<Box> boxes, const Ratios& floor, double slack) : pattern_(pattern), boxes_(std::move(boxes)), slack_(slack), known_(floor) {
+        snap_edges(boxes_);
+        const std::vector<double> lengths = side_limits(pattern, boxes_);
+        std::vector<Interval1> sides = candidate_sides(boxes_, &Box::low_u, &Box::high_u, lengths);
+        tree_u_.build(sides);
+        sides = candidate_sides(boxes_, &Box::low_v, &Box::high_v, lengths);
+        tree_v_.build(sides);
+        const auto extent = [](const SideTree& tree) { return std::max(tree.nodes.back().high - tree.nodes.back().low, alpha_min); };
+        whole_ = (extent(tree_u_) + extent(tree_v_)) / 2;
+    }
+
+    WindowSearch run() {
+        Family root{.side_u = static_cast<int>(tree_u_.nodes.size()) - 1, .side_v = static_cast<int>(tree_v_.nodes.size()) - 1, .members = std::vector<int>(boxes_.size()), .excess = 0, .bound = {}};
+        for (std::size_t i = 0; i < boxes_.size(); ++i) root.members[i] = static_cast<int>(i);
+        push(std::move(root));
+        while (!open_.empty()) {
+            const Family family = open_.top();
+            open_.pop();
+            if (promise(family.bound) <= 1 + slack_) drop(family.bound);
+            else split(family);
+        }
+        return std::move(found_);
+    }
+
+private:
+    [[nodiscard]] double promise(const Ratios& bound) const {
+        double most = 0;
+        for (std::size_t c = 0; c < 4; ++c)
+            if (bound[c] > 0) most = std::max(most, bound[c] / std::max(known_[c], 1e-300));
+        return most;
+    }
+
+    void drop(const Ratios& bound) {
+        for (std::size_t c = 0; c < 4; ++c) found_.bound[c] = std::max(found_.bound[c], bound[c]);
+    }
+
+    void push(Family family) {
+        const SideTree::Node &u = tree_u_.nodes[family.side_u], &v = tree_v_.nodes[family.side_v];
+        const Window around{u.low, u.high, v.low, v.high};
+        ++found_.nodes;
+        gather(boxes_, family.members, around, u.longest, v.longest, energies_);
+        if (energies_.empty()) return;
+        const PartSize size{.subtense = (clamped(u.shortest) + clamped(v.shortest)) / 2,
+                            .largest_subtense = (std::max(u.longest, alpha_min) + std::max(v.longest, alpha_min)) / 2,
+                            .side = std::max(u.shortest, v.shortest),
+                            .whole_subtense = whole_};
+        const TimedRatios ratios = worst_over_time(pattern_, energies_, size, known_);
+        if (u.left < 0 && v.left < 0) {
+            keep(around, ratios, size.subtense);
+            return;
+        }
+        for (std::size_t c = 0; c < 4; ++c) family.bound[c] = ratios[c].ratio;
+        family.excess = promise(family.bound);
+        if (family.excess <= 1 + slack_) drop(family.bound);
+        else open_.push(std::move(family));
+    }
+
+    void keep(const Window& window, const TimedRatios& ratios, double subtense) {
+        for (std::size_t c = 0; c < 4; ++c) {
+            if (ratios[c].ratio <= known_[c]) continue;
+            known_[c] = ratios[c].ratio;
+            found_.bound[c] = std::max(found_.bound[c], ratios[c].ratio);
+            found_.parts[c] = {.worst = ratios[c], .low = {window.low_u, window.low_v}, .high = {window.high_u, window.high_v}, .subtense = subtense, .zones = {}};
+        }
+    }
+
+    // Splits the side whose family is wider than its windows by more.
+    void split(const Family& family) {
+        const SideTree::Node &u = tree_u_.nodes[family.side_u], &v = tree_v_.nodes[family.side_v];
+        const double loose_u = u.left < 0 ? -1 : (u.high - u.low) / u.shortest, loose_v = v.left < 0 ? -1 : (v.high - v.low) / v.shortest;
+        const bool along_u = loose_u >= loose_v;
+        for (const int child : along_u ? std::array{u.left, u.right} : std::array{v.left, v.right}) {
+            Family half{.side_u = along_u ? child : family.side_u, .side_v = along_u ? family.side_v : child, .members = {}, .excess = 0, .bound = {}};
+            const SideTree::Node &hu = tree_u_.nodes[half.side_u], &hv = tree_v_.nodes[half.side_v];
+            for (const int i : family.members) {
+                const Box& box = boxes_[i];
+                if (box.high_u > hu.low && box.low_u < hu.high && box.high_v > hv.low && box.low_v < hv.high) half.members.push_back(i);
+            }
+            if (!half.members.empty()) push(std::move(half));
+        }
+    }
+
+    const TimePattern& pattern_;
+    std::vector<Box> boxes_;
+    SideTree tree_u_, tree_v_;
+    double slack_;
+    double whole_ = 0;
+    Ratios known_;
+    WindowSearch found_;
+    std::vector<DwellEnergy> energies_;
+    std::priority_queue<Family, std::vector<Family>, LessPromising> open_;
+};
+
+}  // namespace
+
+WindowSearch search_windows(const TimePattern& pattern, std::span<const Spot> spots, std::span<const int> dwell_of_zone, const Ratios& floor, double slack) {
+    if (spots.empty()) return {};
+    WindowSearch found = Search(pattern, boxes_of(spots, dwell_of_zone), floor, slack).run();
+    for (ImagePart& part : found.parts) {
+        if (part.worst.ratio <= 0) continue;
+        for (const Spot& spot : spots) {
+            const bool inside = spot.middle.x() + spot.half.x() > part.low.x() && spot.middle.x() - spot.half.x() < part.high.x() &&
+                                spot.middle.y() + spot.half.y() > part.low.y() && spot.middle.y() - spot.half.y() < part.high.y();
+            if (inside) part.zones.push_back(spot.zone);
+        }
+        std::ranges::sort(part.zones);
+        part.zones.erase(std::unique(part.zones.begin(), part.zones.end()), part.zones.end());
+    }
+    return found;
+}
+
+}  // namespace glint
