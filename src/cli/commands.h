@@ -22,6 +22,7 @@ struct Command {
 };
 
 [[nodiscard]] Command add_assess(CLI::App& app);
+[[nodiscard]] Command add_safety(CLI::App& app);
 [[nodiscard]] Command add_preview(CLI::App& app);
 [[nodiscard]] Command add_limits(CLI::App& app);
 [[nodiscard]] Command add_fields(CLI::App& app);

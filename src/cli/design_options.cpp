@@ -21,13 +21,28 @@ void add_design_options(CLI::App& command, DesignOptions& options) {
     command.add_flag("--quiet", options.quiet, "No progress and no verdict on the terminal");
 }
 
-AssessedDesign assess_design(const DesignOptions& options) {
+namespace {
+
+LoadedDesign load(const DesignOptions& options) {
     if (options.threads > 0) omp_set_num_threads(options.threads);
     std::vector<Setting> settings;
     for (const std::string& text : options.settings) settings.push_back(parse_setting(text));
-    AssessedDesign result{.loaded = load_design(options.design, settings), .assessment = {}};
+    return load_design(options.design, settings);
+}
+
+}  // namespace
+
+AssessedDesign assess_design(const DesignOptions& options) {
+    AssessedDesign result{.loaded = load(options), .assessment = {}};
     const TerminalProgress terminal(!options.quiet);
     result.assessment = assess(result.loaded, terminal.progress());
+    return result;
+}
+
+JudgedDesign judge_design(const DesignOptions& options) {
+    JudgedDesign result{.loaded = load(options), .verdict = {}};
+    const TerminalProgress terminal(!options.quiet);
+    result.verdict = assess_safety(result.loaded, terminal.progress());
     return result;
 }
 

@@ -28,4 +28,13 @@ struct AssessedDesign {
 /// Loads and assesses with progress on a terminal. Throws Error; Stopped on Ctrl-C.
 [[nodiscard]] AssessedDesign assess_design(const DesignOptions& options);
 
+/// A design and how it stands for the eye.
+struct JudgedDesign {
+    LoadedDesign loaded;
+    SafetyVerdict verdict;
+};
+
+/// The same for eye safety alone.
+[[nodiscard]] JudgedDesign judge_design(const DesignOptions& options);
+
 }  // namespace glint::cli

@@ -3,6 +3,7 @@
 #include <glint/design/load.h>
 
 #include <fmt/format.h>
+#include <algorithm>
 
 namespace glint {
 namespace {
@@ -49,6 +50,30 @@ void check_band(const Design& design, std::vector<Problem>& problems) {
         problems.push_back({.what = "the pass band leaves the range of the solar spectrum known here",
                             .accepted = "a band within 400 nm to 1700 nm",
                             .path = "receiver/filter/width"});
+}
+
+template <class Element>
+bool holds(const Optics& optics) {
+    return std::ranges::any_of(optics.elements, [](const OpticalElement& each) { return std::holds_alternative<Element>(each); });
+}
+
+void check_eye_safety(const Design& design, std::vector<Problem>& problems) {
+    const double tolerance = design.eye_safety.tolerances.wavelength, wavelength = design.emitters.wavelength;
+    if (wavelength - tolerance < 400e-9 || wavelength + tolerance > 1800e-9)
+        problems.push_back({.what = "the tolerance leaves the wavelengths that the limits cover",
+                            .accepted = "a wavelength band within 400 nm to 1800 nm",
+                            .path = "eye_safety/tolerances/wavelength"});
+    for (const Fault& fault : design.eye_safety.faults.list) {
+        const auto* missing = std::get_if<ElementMissing>(&fault);
+        if (missing == nullptr) continue;
+        const bool there = missing->element == ElementKind::lens       ? holds<Lens>(design.optics)
+                           : missing->element == ElementKind::fan_out ? holds<FanOut>(design.optics)
+                                                                      : holds<Diffuser>(design.optics);
+        if (!there)
+            problems.push_back({.what = "a fault takes away an element that the optics do not hold",
+                                .accepted = "lens, fan_out or diffuser, whichever is in optics",
+                                .path = "eye_safety/faults/element_missing/element"});
+    }
 }
 
 void check_addressing(const Design& design, std::vector<Problem>& problems) {
@@ -129,6 +154,7 @@ std::vector<Problem> contradictions(const Design& design) {
     check_timing(design, problems);
     check_band(design, problems);
     check_addressing(design, problems);
+    check_eye_safety(design, problems);
     check_optics(design, problems);
     return problems;
 }

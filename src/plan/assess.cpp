@@ -68,9 +68,6 @@ void refuse_blind_receiver(const Returns& returns, std::span<const PixelLight> l
 
 std::vector<std::string> collect_findings(const Design& design, const Assessment& assessment) {
     std::vector<std::string> findings;
-    findings.push_back(
-        "Eye safety is the simplified evaluation: every source is taken as a point (C6 = 1), at the fixed "
-        "distances of conditions 1 and 3. It is stricter than the evaluation of the extended source.");
     const double escaped = [&] {
         double sum = 0;
         for (const ZoneReport& zone : assessment.zones) sum += zone.landing.escaped;
@@ -130,12 +127,25 @@ Assessment work_through(const LoadedDesign& loaded, const Progress& progress) {
     result.points_on_object.assign(scene.objects.size(), 0);
     for (const Point& point : result.points) ++result.points_on_object[point.object];
 
-    result.safety = judge_small_source(design, result.plan, field, progress);
+    result.safety = judge_safety(design, result.array, progress);
     JudgedRequirements judged = judge_requirements(design, result, link, lights);
     result.requirements = std::move(judged.results);
     result.reaches = std::move(judged.reaches);
     result.findings = collect_findings(design, result);
     return result;
+}
+
+// Runs a stage; what goes wrong in it gets the file and line of the field to change.
+template <class Stage>
+auto with_places(const LoadedDesign& loaded, const Stage& stage) {
+    try {
+        return stage();
+    } catch (const Error& error) {
+        std::vector<Problem> problems = error.problems();
+        for (Problem& problem : problems)
+            if (problem.file.empty()) problem = loaded.places.at(std::move(problem));
+        throw Error(std::move(problems), error.blame());
+    }
 }
 
 }  // namespace
@@ -145,15 +155,14 @@ bool Assessment::all_met() const {
 }
 
 Assessment assess(const LoadedDesign& loaded, const Progress& progress) {
-    try {
-        return work_through(loaded, progress);
-    } catch (const Error& error) {
-        // Stages know the field; only here is it known where the field stands.
-        std::vector<Problem> problems = error.problems();
-        for (Problem& problem : problems)
-            if (problem.file.empty()) problem = loaded.places.at(std::move(problem));
-        throw Error(std::move(problems), error.blame());
-    }
+    return with_places(loaded, [&] { return work_through(loaded, progress); });
+}
+
+SafetyVerdict assess_safety(const LoadedDesign& loaded, const Progress& progress) {
+    return with_places(loaded, [&] {
+        const Design& design = loaded.design;
+        return judge_safety(design, build_array(design.emitters, field_sense(design.optics), loaded.folder), progress);
+    });
 }
 
 }  // namespace glint

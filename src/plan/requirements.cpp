@@ -121,23 +121,22 @@ RequirementResult judge(const Context& context, const FrameRateRequirement& rate
 }
 
 RequirementResult judge(const Context& context, const EyeSafetyRequirement& safety) {
-    constexpr LaserClass asked[] = {LaserClass::class_1, LaserClass::class_1M, LaserClass::class_3R,
-                                    LaserClass::class_3B};
+    constexpr LaserClass asked[] = {LaserClass::class_1,  LaserClass::class_1M, LaserClass::class_2,
+                                    LaserClass::class_2M, LaserClass::class_3R, LaserClass::class_3B};
     const LaserClass wanted = asked[static_cast<int>(safety.laser_class)];
     const SafetyVerdict& verdict = context.assessment.safety;
     const bool class_held = static_cast<int>(verdict.laser_class) <= static_cast<int>(wanted);
-    // The margin is that to the limit of Class 1; a higher class has no margin to it left.
-    const bool margin_held = wanted != LaserClass::class_1 || verdict.margin >= safety.margin;
+    // The ratio is known for the strictest class asked for; a laxer one that holds has more room than is shown.
+    const double ratio = wanted == verdict.asked ? verdict.asked_ratio : verdict.worst_ratio;
+    const bool margin_held = wanted != verdict.asked || ratio <= 1 - safety.margin;
     const ExposureCase* governing = verdict.criteria.empty() ? nullptr : &verdict.criteria.front();
     return {.name = "Eye safety, AE/AEL",
             .unit = "",
-            .needed = wanted == LaserClass::class_1 ? 1 - safety.margin : 1,
-            .got = verdict.worst_ratio,
-            .needed_text = wanted == LaserClass::class_1
-                               ? fmt::format("{}, up to {:.2f}", name_of(wanted), 1 - safety.margin)
-                               : std::string(name_of(wanted)),
-            .got_text = fmt::format("{}, {:.3g}", name_of(verdict.laser_class), verdict.worst_ratio),
-            .margin_text = percent(verdict.margin),
+            .needed = 1 - safety.margin,
+            .got = ratio,
+            .needed_text = fmt::format("{}, up to {:.2f}", name_of(wanted), 1 - safety.margin),
+            .got_text = fmt::format("{}, {:.3g}", name_of(verdict.laser_class), ratio),
+            .margin_text = percent(1 - ratio),
             .limited_by = governing == nullptr ? ""
                                                : fmt::format("{}, {}", name_of(governing->criterion),
                                                              name_of(governing->condition)),

@@ -1,6 +1,9 @@
 // summary.json.
+#include "report/safety_json.h"
+
 #include <glint/core/version.h>
 #include <glint/optics/receiver.h>
+#include <glint/report/safety_page.h>
 #include <glint/report/tables.h>
 #include <glint/safety/caution.h>
 
@@ -73,29 +76,6 @@ Json light(const Assessment& assessment) {
             {"escaped_W", escaped}};
 }
 
-Json safety(const Assessment& assessment) {
-    const SafetyVerdict& verdict = assessment.safety;
-    Json criteria = Json::array();
-    for (const ExposureCase& each : verdict.criteria)
-        criteria.push_back({{"criterion", name_of(each.criterion)},
-                            {"condition", each.condition == Condition::telescope ? 1 : 3},
-                            {"duration_s", each.duration},
-                            {"pulses", each.pulses},
-                            {"C5", each.C5},
-                            {"C6", 1},
-                            {"ae_J", each.ae},
-                            {"ael_J", each.ael},
-                            {"ratio", each.ratio()},
-                            {"zones", each.zones},
-                            {"eye_m", {each.eye.x(), each.eye.y(), each.eye.z()}}});
-    return {{"caution", caution_paragraph},
-            {"evaluation", "simplified: every source taken as a point (C6 = 1)"},
-            {"class", std::string(name_of(verdict.laser_class)).substr(6)},
-            {"worst_ratio", verdict.worst_ratio},
-            {"margin", verdict.margin},
-            {"criteria", criteria}};
-}
-
 Json ranging(const Design& design, const Assessment& assessment) {
     Json reaches = Json::array();
     for (const ReachSummary& reach : assessment.reaches)
@@ -131,7 +111,7 @@ std::string summary_json(const Design& design, const Assessment& assessment) {
     summary["chip"] = chip(design, assessment);
     summary["firing"] = firing(assessment);
     summary["light"] = light(assessment);
-    summary["eye_safety"] = safety(assessment);
+    summary["eye_safety"] = assessment.safety;
     summary["ranging"] = ranging(design, assessment);
     summary["findings"] = assessment.findings;
     return summary.dump(2) + "\n";

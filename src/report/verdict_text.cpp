@@ -1,5 +1,6 @@
 // The verdict for a terminal.
 #include <glint/core/text.h>
+#include <glint/report/safety_page.h>
 #include <glint/report/tables.h>
 #include <glint/safety/caution.h>
 
@@ -50,26 +51,12 @@ std::string chip_section(const Design& design, const Assessment& assessment) {
     return text;
 }
 
-std::string safety_section(const Assessment& assessment) {
-    const SafetyVerdict& safety = assessment.safety;
-    std::string text = fmt::format("Eye safety: {} by this estimate, worst AE/AEL for Class 1 {:.3g}\n",
-                                   name_of(safety.laser_class), safety.worst_ratio);
-    text += fmt::format("  {:<10} {:<24} {:>10} {:>10} {:>10} {:>8}\n", "criterion", "condition", "duration",
-                        "AE", "AEL", "AE/AEL");
-    for (const ExposureCase& each : safety.criteria)
-        text += fmt::format("  {:<10} {:<24} {:>10} {:>10} {:>10} {:>8.3g}\n", name_of(each.criterion),
-                            name_of(each.condition), show_quantity(each.duration, Kind::time),
-                            show_quantity(each.ae, Kind::energy), show_quantity(each.ael, Kind::energy),
-                            each.ratio());
-    return text;
-}
-
 }  // namespace
 
 std::string verdict_text(const Design& design, const Assessment& assessment) {
     std::string text = wrapped(caution_paragraph, page_width) + "\n";
     if (!design.name.empty()) text += design.name + "\n\n";
-    text += chip_section(design, assessment) + "\n" + safety_section(assessment) + "\n";
+    text += chip_section(design, assessment) + "\n" + safety_section(assessment.safety) + "\n";
     if (!assessment.requirements.empty()) text += requirement_table(assessment) + "\n";
     for (const std::string& finding : assessment.findings) text += wrapped(finding, page_width);
     if (!assessment.requirements.empty())

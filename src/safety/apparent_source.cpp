@@ -50,16 +50,24 @@ Moments moments(const EnteringBeam& beam, double vergence) {
     return {w2 * grown * grown + l * l * s2, w2 * turned * turned + s2 * seen * seen, w2 * grown * turned + s2 * l * seen};
 }
 
+// Metric of direction over slopes: d(angle)^2 = (1 + q^2) dp^2 / (1 + p^2 + q^2)^2 along p.
+Vec2 angle_per_slope(const Vec2& slope) {
+    return Vec2(std::sqrt(1 + slope.y() * slope.y()), std::sqrt(1 + slope.x() * slope.x())) / (1 + slope.squaredNorm());
+}
+
 }  // namespace
+
+Vec2 line_of_sight(const EyePlace& eye) {
+    const Vec2 slope = across(eye.place) / eye.place.x();
+    return slope.cwiseProduct(angle_per_slope(slope));
+}
 
 EnteringLight entering_light(const FarField& field, const EyePlace& eye, double pulse_width) {
     EnteringLight light{.eye = eye};
     const double distance = eye.place.norm();
     const Vec2 slope = across(eye.place) / eye.place.x();
-    const double secant2 = 1 + slope.squaredNorm();
-    light.cosine = 1 / std::sqrt(secant2);
-    // Metric of direction over slopes: d(angle)^2 = (1 + q^2) dp^2 / (1 + p^2 + q^2)^2 along p.
-    light.scale = Vec2(std::sqrt(1 + slope.y() * slope.y()), std::sqrt(1 + slope.x() * slope.x())) / secant2;
+    light.cosine = 1 / std::sqrt(1 + slope.squaredNorm());
+    light.scale = angle_per_slope(slope);
     const Aperture aperture{.centre = eye.place, .radius = eye.pupil_radius};
     const double beside = (eye.pupil_radius + field.spread + 3 * field.widest_exit) / distance;
     const double reach = beside < 1 ? field.reach + std::asin(beside) : 2;

@@ -1,4 +1,4 @@
-// Collection: how much of each zone's light passes an aperture in front of the module.
+// Collection: how much of a beam passes an aperture in front of the module.
 #include <glint/core/constants.h>
 #include <glint/safety/collection.h>
 
@@ -46,28 +46,6 @@ double collected_share(const Beam& beam, const Aperture& aperture) {
         return share_of_wide(beam, aperture);
     if (along <= 0) return 0;
     return share_of_narrow(beam, aperture, along, (path - along * beam.axis).norm());
-}
-
-std::vector<ZoneEnergy> collected_energies(const FarField& field, const Aperture& aperture, double pulse_width) {
-    std::vector<ZoneEnergy> energies;
-    const double distance = aperture.centre.norm();
-    // Beams start up to `spread` beside the origin, have a width there, and need only touch the rim.
-    const double beside = (aperture.radius + field.spread + 3 * field.widest_exit) / distance;
-    const double reach = beside < 1 ? field.reach + std::asin(beside) : 2;
-    beams_near(field, aperture.centre / distance, reach, [&](const Beam& beam) {
-        const double share = collected_share(beam, aperture);
-        if (share > 0) energies.push_back({beam.zone, share * beam.power * pulse_width});
-    });
-    std::ranges::stable_sort(energies, {}, &ZoneEnergy::zone);
-    std::size_t kept = 0;
-    for (std::size_t i = 0; i < energies.size(); ++i) {
-        if (kept > 0 && energies[kept - 1].zone == energies[i].zone)
-            energies[kept - 1].energy += energies[i].energy;
-        else
-            energies[kept++] = energies[i];
-    }
-    energies.resize(kept);
-    return energies;
 }
 
 }  // namespace glint

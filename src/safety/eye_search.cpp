@@ -1,6 +1,7 @@
 // The eye search: places and foci in order of promise, and a closer look around the worst.
 #include <glint/core/constants.h>
 #include <glint/safety/eye_search.h>
+#include <glint/safety/image_bound.h>
 
 #include <algorithm>
 #include <cmath>
@@ -10,9 +11,8 @@ namespace {
 
 constexpr double growth_of_distance = 1.2;
 constexpr double farthest = 1e4;  // m
+constexpr std::size_t single = static_cast<std::size_t>(PulseCriterion::single), group = static_cast<std::size_t>(PulseCriterion::group), train = static_cast<std::size_t>(PulseCriterion::train);
 constexpr std::size_t batch = 64;
-// Spots differ from that of the strongest beam by less than this, as a share of its side.
-constexpr double unlike_spots = 0.02;
 
 // A place of the eye and what enters there.
 struct Place {
@@ -27,6 +27,9 @@ struct Item {
     Ratios bound;
     double promise;  // largest bound over what is known
 };
+
+// Smallest subtense for the limit, any subtense for N.
+constexpr PartSize anything_as_point{.subtense = alpha_min, .largest_subtense = 0.2, .side = 0, .whole_subtense = 0.2};
 
 double promise_of(const Ratios& bound, const Ratios& known) {
     double promise = 0;
@@ -53,26 +56,59 @@ public:
             measurement(question.condition, pattern_.rules.wavelength, std::min(pattern_.rules.durations.to, 10.0));
         radius_ = at.aperture / 2;
         nearest_ = std::max(at.distance, question.closest_access);
+        per_energy_ = ratios_of(worst_over_time(pattern_, std::array{DwellEnergy{.dwell = 0, .energy = 1}}, anything_as_point));
     }
 
-    EyeSearch everywhere() {
+    void everywhere() {
+        if (nothing_at_all()) return;
+        // A few places first: the more is known, the less has to be looked at.
+        for (double distance = nearest_; distance < farthest; distance *= growth_of_distance)
+            if (!look(few_places(distance)) || enough()) break;
+        if (worst_is_ours()) closer();
         // Beyond some distance even all the light, taken as a point, is less than what was found nearer.
         for (double distance = nearest_; distance < farthest; distance *= growth_of_distance)
-            if (!look(raster(distance))) break;
-        return std::move(found_);
+            if (enough() || !look(raster(distance))) break;
+        if (worst_is_ours() && !enough()) closer();
     }
 
-    EyeSearch at(std::span<const Vec3> places) {
-        look(places);
-        return std::move(found_);
-    }
-
-    EyeSearch closer() {
+    void closer() {
         for (double step = 0.25; step > 0.01; step /= 2) look_around(step);
-        return std::move(found_);
+    }
+
+    EyeSearch result() { return std::move(found_); }
+
+    // False when nothing at these places can be worse than what is known.
+    bool look(std::span<const Vec3> where) {
+        std::vector<Place> places(where.size());
+        parallel_for(where.size(), "looking for the worst place of the eye", progress_,
+                     [&](std::size_t i) { places[i] = place_at(where[i]); });
+        found_.work.places += where.size();
+        bool any = false;
+        for (const Place& place : places) {
+            if (promise_of(ratios_of(place.as_point), found_.known) <= 1 + (retinal_ ? search_slack : 0)) continue;
+            any = true;
+            if (!retinal_) keep(whole(place), place.light.eye, 0);
+        }
+        if (any && retinal_) search_items(places, items_of(places));
+        return any;
     }
 
 private:
+    // Whether all the light of the module through one pupil would not matter.
+    [[nodiscard]] bool nothing_at_all() const {
+        EnteringLight all;
+        for (const Beam& beam : question_.field.beams) all.beams.push_back({.zone = beam.zone, .energy = beam.power * pattern_.plan.pulse_width});
+        return all.beams.empty() || promise_of(ratios_of(as_point(all)), found_.known) <= 1;
+    }
+
+    [[nodiscard]] bool enough() const { return found_.worst_ratio() > question_.enough; }
+    [[nodiscard]] const EyeCase& worst() const {
+        return *std::ranges::max_element(found_.worst, {}, [](const EyeCase& each) { return each.part.worst.ratio; });
+    }
+    [[nodiscard]] bool worst_is_ours() const {
+        return worst().part.worst.ratio > 0 && worst().condition == question_.condition && worst().mechanism == pattern_.curve.mechanism;
+    }
+
     [[nodiscard]] TimedRatios as_point(const EnteringLight& light) const {
         std::vector<DwellEnergy> dwells;
         std::vector<std::pair<int, double>> entering;
@@ -82,8 +118,7 @@ private:
             if (dwells.empty() || dwells.back().dwell != dwell) dwells.push_back({dwell, 0});
             dwells.back().energy += energy;
         }
-        // Smallest subtense for the limit, any subtense for N.
-        return worst_over_time(pattern_, dwells, {.subtense = alpha_min, .largest_subtense = 0.2, .side = 0, .whole_subtense = 0.2});
+        return worst_over_time(pattern_, dwells, anything_as_point);
     }
 
     [[nodiscard]] Place place_at(const Vec3& where) const {
@@ -120,20 +155,18 @@ private:
         return places;
     }
 
-    // False when nothing at these places can be worse than what is known.
-    bool look(std::span<const Vec3> where) {
-        std::vector<Place> places(where.size());
-        parallel_for(where.size(), "looking for the worst place of the eye", progress_,
-                     [&](std::size_t i) { places[i] = place_at(where[i]); });
-        found_.work.places += where.size();
-        bool any = false;
-        for (const Place& place : places) {
-            if (promise_of(ratios_of(place.as_point), found_.known) <= 1 + (retinal_ ? search_slack : 0)) continue;
-            any = true;
-            if (!retinal_) keep(whole(place), place.light.eye, 0);
+    // The middle, the corners and the edges of what the beams' axes cover.
+    [[nodiscard]] std::vector<Vec3> few_places(double distance) const {
+        Vec2 low(1, 1), high(-1, -1);
+        for (const Beam& beam : question_.field.beams) {
+            const Vec2 axis(beam.axis.y(), beam.axis.z());
+            low = low.cwiseMin(axis), high = high.cwiseMax(axis);
         }
-        if (any && retinal_) search_items(places, items_of(places));
-        return any;
+        std::vector<Vec3> places;
+        for (const double y : {low.x(), (low.x() + high.x()) / 2, high.x()})
+            for (const double z : {low.y(), (low.y() + high.y()) / 2, high.y()})
+                if (const double x2 = 1 - y * y - z * z; x2 > 0.04) places.push_back(distance * Vec3(std::sqrt(x2), y, z));
+        return places;
     }
 
     // All that enters, as the part that each criterion judges.
@@ -148,32 +181,35 @@ private:
         return parts;
     }
 
+    // Places and foci that may be worse than what is known, most promising first.
     [[nodiscard]] std::vector<Item> items_of(const std::vector<Place>& places) const {
+        std::vector<std::vector<Item>> of_place(places.size());
+        parallel_for(places.size(), "looking for the worst focus of the eye", progress_,
+                     [&](std::size_t p) { of_place[p] = items_at(p, places[p]); });
         std::vector<Item> items;
-        for (std::size_t p = 0; p < places.size(); ++p) {
-            const EnteringLight& light = places[p].light;
-            if (light.beams.empty()) continue;
-            const Ratios bound = ratios_of(places[p].as_point);
-            if (promise_of(bound, found_.known) <= 1 + search_slack) continue;
-            // One spot tells the size of all; a window gathers no more than in proportion to its side.
-            const EnteringBeam& strongest = *std::ranges::max_element(light.beams, {}, &EnteringBeam::energy);
-            for (const double vergence : vergences(light)) {
-                const double side = 2 * spot_of(strongest, light, vergence).half.minCoeff();
-                const double size = std::max(1.0, (1 - unlike_spots) * side / alpha_min);
-                Item item{.place = p, .vergence = vergence, .bound = bound, .promise = 0};
-                for (double& each : item.bound) each /= size;
-                item.promise = promise_of(item.bound, found_.known);
-                if (item.promise > 1 + search_slack) items.push_back(item);
-            }
-        }
+        for (const std::vector<Item>& some : of_place) items.insert(items.end(), some.begin(), some.end());
         std::ranges::stable_sort(items, std::greater{}, &Item::promise);
+        return items;
+    }
+
+    [[nodiscard]] std::vector<Item> items_at(std::size_t index, const Place& place) const {
+        LightRatios ratios{.as_point = ratios_of(place.as_point), .per_energy = per_energy_};
+        if (place.light.beams.empty() || promise_of(ratios.as_point, found_.known) <= 1 + search_slack) return {};
+        // C5 falls with the number of pulses: that of all beams together is the least.
+        ratios.per_energy[train] = std::max(per_energy_[single], per_energy_[group]) / place.as_point[train].C5;
+        std::vector<Item> items;
+        for (const double vergence : vergences(place.light)) {
+            Item item{.place = index, .vergence = vergence, .bound = image_bound(retinal_image(place.light, vergence), ratios, found_.known), .promise = 0};
+            item.promise = promise_of(item.bound, found_.known);
+            if (item.promise > 1 + search_slack) items.push_back(item);
+        }
         return items;
     }
 
     // Batches in a fixed order, each judged against what the batches before it found: the same for any threads.
     void search_items(const std::vector<Place>& places, const std::vector<Item>& items) {
         std::size_t size = 1;  // the most promising first, alone, to know something
-        for (std::size_t first = 0; first < items.size(); first += size, size = std::min(batch, 2 * size)) {
+        for (std::size_t first = 0; first < items.size() && !enough(); first += size, size = std::min(batch, 2 * size)) {
             const std::size_t count = std::min(size, items.size() - first);
             std::vector<WindowSearch> results(count);
             parallel_for(count, "looking for the worst part of the image", progress_, [&](std::size_t i) {
@@ -202,8 +238,7 @@ private:
     // Places and foci one step around the worst case; the step is a share of the pupil's radius, of a tenth of the
     // distance and of a dioptre.
     void look_around(double step) {
-        const EyeCase centre = *std::ranges::max_element(found_.worst, {}, [](const EyeCase& each) { return each.part.worst.ratio; });
-        if (centre.part.worst.ratio <= 0) return;
+        const EyeCase centre = worst();
         const double distance = centre.eye.place.norm();
         const Vec3 forward = centre.eye.place / distance;
         const Vec3 aside = forward.cross(std::abs(forward.z()) < 0.9 ? Vec3::UnitZ() : Vec3::UnitY()).normalized();
@@ -238,6 +273,7 @@ private:
     EyeSearch found_;
     std::vector<int> dwell_of_zone_;
     bool retinal_;
+    Ratios per_energy_{};
     double radius_ = 0;
     double nearest_ = 0;
 };
@@ -251,15 +287,15 @@ double EyeSearch::worst_ratio() const {
 }
 
 EyeSearch search_eyes(const EyeQuestion& question, EyeSearch before, const Progress& progress) {
-    return Search(question, std::move(before), progress).everywhere();
+    Search search(question, std::move(before), progress);
+    search.everywhere();
+    return search.result();
 }
 
 EyeSearch search_eyes_at(const EyeQuestion& question, std::span<const Vec3> places, EyeSearch before, const Progress& progress) {
-    return Search(question, std::move(before), progress).at(places);
-}
-
-EyeSearch refine(const EyeQuestion& question, EyeSearch before, const Progress& progress) {
-    return Search(question, std::move(before), progress).closer();
+    Search search(question, std::move(before), progress);
+    search.look(places);
+    return search.result();
 }
 
 }  // namespace glint

@@ -11,16 +11,17 @@ namespace {
 constexpr double small_t2 = 10;  // s, T2 of a small source
 // Up to here a retinal limit is C6 times that of a point.
 constexpr double short_of_t2 = small_t2 * (1 - 1e-6);
+constexpr double least_of_c5 = 0.2;
 // Limits without C6 have one row that asks for an extended source; it only lowers the limit, so it always counts.
 constexpr double without_c6 = 2 * alpha_min;
 
 double in_tables(double duration) { return std::clamp(duration, limit_durations.from, limit_durations.to); }
 
 // Limit of a part for a duration, given that of a point for durations where that is enough.
-double part_limit(const TimePattern& pattern, double duration, double point_limit, double subtense) {
+double part_limit(const TimePattern& pattern, double duration, double point_limit, double subtense, double T2) {
     if (pattern.curve.mechanism != Mechanism::retinal_thermal) return point_limit;
     if (duration <= short_of_t2) return point_limit * std::max(1.0, subtense / alpha_min);
-    return pattern.curve.energy(in_tables(duration), subtense, t2(subtense));
+    return pattern.curve.energy(in_tables(duration), subtense, T2);
 }
 
 double point_limit(const TimePattern& pattern, double duration) {
@@ -80,14 +81,14 @@ TimedRatio worst_single(const TimePattern& pattern, std::span<const DwellEnergy>
     for (const DwellEnergy& dwell : dwells) strongest = std::max(strongest, dwell.energy);
     const double duration = pattern.plan.pulse_width;
     if (shortest_duration(size.side) > duration || !counts(pattern, duration)) return {};
-    return emission(duration, 1, strongest, part_limit(pattern, duration, pattern.single_limit, size.subtense));
+    return emission(duration, 1, strongest, part_limit(pattern, duration, pattern.single_limit, size.subtense, small_t2));
 }
 
 TimedRatio worst_group(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size) {
     if (size.side > alpha_max(pattern.group_time) || pattern.plan.pulse_width > pattern.group_time || !counts(pattern, pattern.group_time)) return {};
     const Within most = most_within(pattern, dwells, pattern.group_time);
     if (most.pulses <= 1) return {};
-    return emission(pattern.group_time, most.pulses, most.energy, part_limit(pattern, pattern.group_time, pattern.group_limit, size.subtense));
+    return emission(pattern.group_time, most.pulses, most.energy, part_limit(pattern, pattern.group_time, pattern.group_limit, size.subtense, small_t2));
 }
 
 // Least C5 over a family of subtenses: at its ends and just beyond each bound between cells that lies inside.
@@ -108,15 +109,32 @@ double least_c5(const TimePattern& pattern, const PartSize& size, double count) 
     return least;
 }
 
-TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size, const TimedRatio& single, const TimedRatio& group) {
+// Most dwells that start within a stretch no longer than a frame.
+double dwells_within(const TimePattern& pattern, std::span<const DwellEnergy> dwells, double stretch) {
+    std::size_t most = 1, next = 0;
+    for (std::size_t first = 0; first < dwells.size(); ++first) {
+        const auto later = [&](std::size_t i) {
+            const double wrap = i < dwells.size() ? 0 : pattern.plan.frame_period;
+            return wrap + start_of(pattern, dwells[i % dwells.size()]) - start_of(pattern, dwells[first]);
+        };
+        next = std::max(next, first);
+        while (next < first + dwells.size() && later(next) <= stretch * (1 + 1e-12)) ++next;
+        most = std::max(most, next - first);
+    }
+    return static_cast<double>(most);
+}
+
+TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size, const TimedRatio& single, const TimedRatio& group, double known) {
     const FiringPlan& plan = pattern.plan;
     if (pattern.curve.mechanism != Mechanism::retinal_thermal || plan.pulse_width > aversion_time_base || single.ratio <= 0) return {};
+    if (std::max(single.ratio, group.ratio) <= least_of_c5 * known) return {};
     const bool grouped = group.pulses > 1;
     const double span = (plan.shots - 1) * plan.shot_period;
     const double groups_a_dwell = grouped ? std::min<double>(plan.shots, std::floor(span / pattern.group_time) + 1) : plan.shots;
     const double window = std::min(t2(size.largest_subtense), pattern.rules.time_base);
-    const double frames = std::max(1.0, std::ceil(window / plan.frame_period * (1 - 1e-12)));
-    const double count = frames * groups_a_dwell * static_cast<double>(dwells.size());
+    const double frames = std::ceil(window / plan.frame_period * (1 - 1e-12));
+    const double dwells_counted = frames > 1 ? frames * static_cast<double>(dwells.size()) : dwells_within(pattern, dwells, window);
+    const double count = groups_a_dwell * dwells_counted;
     TimedRatio worst = grouped && group.ratio > single.ratio ? group : single;
     worst.C5 = least_c5(pattern, size, std::max(1.0, count));
     worst.pulses = std::max(1.0, count);
@@ -130,7 +148,7 @@ TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> 
 class AverageSearch {
 public:
     AverageSearch(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size, double known)
-        : pattern_(pattern), dwells_(dwells), size_(size), shortest_(shortest_duration(size.side)), known_(known) {
+        : pattern_(pattern), dwells_(dwells), size_(size), retinal_(pattern.curve.mechanism == Mechanism::retinal_thermal), t2_(t2(size.subtense)), shortest_(shortest_duration(size.side)), known_(known) {
         for (const DwellEnergy& dwell : dwells) frame_energy_ += pattern.plan.shots * dwell.energy;
     }
 
@@ -144,9 +162,10 @@ public:
         // side allows, or with the most that end by 10 s, by T2 or by the time base, where the limit bends.
         const double fewest = std::max(1.0, std::floor((shortest_ - length) / period));
         stretches(fewest, {length, period + length});
-        for (const double bend : pattern_.curve.bends) at(bend);
+        for (const double bend : pattern_.curve.bends)
+            if (bend < small_t2) at(bend);
         const double base = pattern_.rules.time_base;
-        for (const double end : {std::min(small_t2, base), std::min(t2(size_.subtense), base), base}) {
+        for (const double end : {std::min(small_t2, base), std::min(t2_, base), base}) {
             at(end);
             const double frames = std::floor(end / period);
             if (frames <= fewest) continue;
@@ -158,7 +177,7 @@ public:
 
 private:
     [[nodiscard]] double limit(double duration) const {
-        return part_limit(pattern_, duration, point_limit(pattern_, duration), size_.subtense);
+        return part_limit(pattern_, duration, duration > short_of_t2 && retinal_ ? 0 : point_limit(pattern_, duration), size_.subtense, t2_);
     }
 
     // Least limit from `shorter` to `longer`: it grows but for small steps down where it bends.
@@ -196,6 +215,7 @@ private:
     void stretches(double frames, Interval range) {
         const double before = frames * pattern_.plan.frame_period;
         const double shorter = std::max(before + range.from, shortest_);
+        range.to = std::min(range.to, pattern_.rules.time_base - before);
         if (range.from > range.to || before + range.to < shortest_ || shorter > pattern_.rules.time_base) return;
         const double least = known_ * least_limit(shorter, before + range.to) - frames * frame_energy_;
         if (frame_energy_ <= least || most_in(range.to) <= least) return;
@@ -249,6 +269,8 @@ private:
     const TimePattern& pattern_;
     std::span<const DwellEnergy> dwells_;
     const PartSize& size_;
+    bool retinal_;
+    double t2_;
     double shortest_;
     double known_;
     double frame_energy_ = 0;
@@ -285,7 +307,7 @@ TimedRatios worst_over_time(const TimePattern& pattern, std::span<const DwellEne
     TimedRatio& group = worst[static_cast<int>(PulseCriterion::group)];
     single = worst_single(pattern, dwells, size);
     group = worst_group(pattern, dwells, size);
-    worst[static_cast<int>(PulseCriterion::train)] = worst_train(pattern, dwells, size, single, group);
+    worst[static_cast<int>(PulseCriterion::train)] = worst_train(pattern, dwells, size, single, group, known[static_cast<int>(PulseCriterion::train)]);
     worst[static_cast<int>(PulseCriterion::average)] = AverageSearch(pattern, dwells, size, known[static_cast<int>(PulseCriterion::average)]).run();
     return worst;
 }

@@ -1,4 +1,5 @@
 // The window search: branch and bound over rectangular windows of a retinal image.
+#include <glint/safety/image_bound.h>
 #include <glint/safety/window_search.h>
 
 #include <algorithm>
@@ -112,32 +113,51 @@ std::vector<double> side_limits(const TimePattern& pattern, const std::vector<Bo
     return kept;
 }
 
-// Candidate sides in a binary tree: first apart by length, then by place. A node knows what holds for all below it.
-struct SideTree {
+// Candidate sides in a binary tree: first apart by length, then by place. A node knows what holds for all below it, and
+// is divided when it is first asked for its children.
+class SideTree {
+public:
     struct Node {
-        double low, high;         // around all sides below
+        double low, high;  // around all sides below
         double shortest, longest;
-        int left = -1, right = -1;  // -1: a single side
+        std::size_t first, count;  // sides below
+        int left = -1;             // its children are left and left + 1; -1: not divided yet
     };
-    std::vector<Node> nodes;  // the root is the last
 
-    int build(std::span<Interval1> sides) {
-        Node node{sides.front().begin, sides.front().end, sides.front().width(), sides.front().width()};
-        for (const Interval1& side : sides) {
+    explicit SideTree(std::vector<Interval1> sides) : sides_(std::move(sides)) { add(0, sides_.size()); }
+
+    [[nodiscard]] const Node& operator[](int node) const { return nodes_[node]; }
+
+    // First of the two children; the node must hold more than one side.
+    int children(int node) {
+        if (nodes_[node].left < 0) {
+            const Node parent = nodes_[node];
+            const auto begin = sides_.begin() + static_cast<std::ptrdiff_t>(parent.first);
+            const std::size_t half = parent.count / 2;
+            const auto middle = begin + static_cast<std::ptrdiff_t>(half), end = begin + static_cast<std::ptrdiff_t>(parent.count);
+            if (parent.longest > 1.25 * parent.shortest)
+                std::nth_element(begin, middle, end, [](const Interval1& a, const Interval1& b) { return a.width() < b.width(); });
+            else std::nth_element(begin, middle, end, [](const Interval1& a, const Interval1& b) { return a.begin < b.begin; });
+            nodes_[node].left = static_cast<int>(nodes_.size());
+            add(parent.first, half);
+            add(parent.first + half, parent.count - half);
+        }
+        return nodes_[node].left;
+    }
+
+private:
+    void add(std::size_t first, std::size_t count) {
+        Node node{1e9, -1e9, 1e9, 0, first, count};
+        for (std::size_t i = first; i < first + count; ++i) {
+            const Interval1& side = sides_[i];
             node.low = std::min(node.low, side.begin), node.high = std::max(node.high, side.end);
             node.shortest = std::min(node.shortest, side.width()), node.longest = std::max(node.longest, side.width());
         }
-        if (sides.size() > 1) {
-            const auto middle = sides.begin() + static_cast<std::ptrdiff_t>(sides.size() / 2);
-            if (node.longest > 1.25 * node.shortest) std::ranges::nth_element(sides, middle, {}, &Interval1::width);
-            else std::ranges::nth_element(sides, middle, {}, &Interval1::begin);
-            const std::size_t half = sides.size() / 2;
-            node.left = build(sides.first(half));
-            node.right = build(sides.subspan(half));
-        }
-        nodes.push_back(node);
-        return static_cast<int>(nodes.size()) - 1;
+        nodes_.push_back(node);
     }
+
+    std::vector<Interval1> sides_;
+    std::vector<Node> nodes_;  // the root comes first
 };
 
 double clamped(double side) { return std::clamp(side, alpha_min, widest_side); }
@@ -149,23 +169,9 @@ struct Window {
 
 // Share of [low, high] that a side within [from, to], at most `longest` long, can cover.
 double overlap(double low, double high, double from, double to, double longest) {
-    const double both = std::min({std::min(high, to) - std::max(low, from), longest});
+    const double both = std::min(std::min(high, to) - std::max(low, from), longest);
     if (both <= 0) return 0;
     return both >= high - low ? 1 : both / (high - low);
-}
-
-// Most energy by dwell that a window within `around` can hold, in time order.
-void gather(const std::vector<Box>& boxes, std::span<const int> members, const Window& around, double longest_u, double longest_v, std::vector<DwellEnergy>& out) {
-    out.clear();
-    for (const int i : members) {
-        const Box& box = boxes[i];
-        const double share_u = overlap(box.low_u, box.high_u, around.low_u, around.high_u, longest_u);
-        if (share_u <= 0) continue;
-        const double share = share_u * overlap(box.low_v, box.high_v, around.low_v, around.high_v, longest_v);
-        if (share <= 0) continue;
-        if (out.empty() || out.back().dwell != box.dwell) out.push_back({box.dwell, 0});
-        out.back().energy += share * box.energy;
-    }
 }
 
 // A family of windows: a node of each tree, and the boxes that its windows can touch.
@@ -182,19 +188,11 @@ struct LessPromising {
 
 class Search {
 public:
-    Search(const TimePattern& pattern, std::vector<Box> boxes, const Ratios& floor, double slack) : pattern_(pattern), boxes_(std::move(boxes)), slack_(slack), known_(floor) {
-        snap_edges(boxes_);
-        const std::vector<double> lengths = side_limits(pattern, boxes_);
-        std::vector<Interval1> sides = candidate_sides(boxes_, &Box::low_u, &Box::high_u, lengths);
-        tree_u_.build(sides);
-        sides = candidate_sides(boxes_, &Box::low_v, &Box::high_v, lengths);
-        tree_v_.build(sides);
-        const auto extent = [](const SideTree& tree) { return std::max(tree.nodes.back().high - tree.nodes.back().low, alpha_min); };
-        whole_ = (extent(tree_u_) + extent(tree_v_)) / 2;
-    }
+    Search(const TimePattern& pattern, const std::vector<Box>& boxes, const Ratios& floor, double slack)
+        : Search(pattern, boxes, side_limits(pattern, boxes), floor, slack) {}
 
     WindowSearch run() {
-        Family root{.side_u = static_cast<int>(tree_u_.nodes.size()) - 1, .side_v = static_cast<int>(tree_v_.nodes.size()) - 1, .members = std::vector<int>(boxes_.size()), .excess = 0, .bound = {}};
+        Family root{.side_u = 0, .side_v = 0, .members = std::vector<int>(boxes_.size()), .excess = 0, .bound = {}};
         for (std::size_t i = 0; i < boxes_.size(); ++i) root.members[i] = static_cast<int>(i);
         push(std::move(root));
         while (!open_.empty()) {
@@ -207,6 +205,13 @@ public:
     }
 
 private:
+    Search(const TimePattern& pattern, const std::vector<Box>& boxes, const std::vector<double>& lengths, const Ratios& floor, double slack)
+        : pattern_(pattern), boxes_(boxes), tree_u_(candidate_sides(boxes, &Box::low_u, &Box::high_u, lengths)),
+          tree_v_(candidate_sides(boxes, &Box::low_v, &Box::high_v, lengths)), slack_(slack), known_(floor) {
+        const auto extent = [](const SideTree& tree) { return std::max(tree[0].high - tree[0].low, alpha_min); };
+        whole_ = (extent(tree_u_) + extent(tree_v_)) / 2;
+    }
+
     [[nodiscard]] double promise(const Ratios& bound) const {
         double most = 0;
         for (std::size_t c = 0; c < 4; ++c)
@@ -219,17 +224,17 @@ private:
     }
 
     void push(Family family) {
-        const SideTree::Node &u = tree_u_.nodes[family.side_u], &v = tree_v_.nodes[family.side_v];
-        const Window around{u.low, u.high, v.low, v.high};
+        const SideTree::Node u = tree_u_[family.side_u], v = tree_v_[family.side_v];
         ++found_.nodes;
-        gather(boxes_, family.members, around, u.longest, v.longest, energies_);
+        gather(family.members, u, v);
         if (energies_.empty()) return;
+        const Window around{u.low, u.high, v.low, v.high};
         const PartSize size{.subtense = (clamped(u.shortest) + clamped(v.shortest)) / 2,
                             .largest_subtense = (std::max(u.longest, alpha_min) + std::max(v.longest, alpha_min)) / 2,
                             .side = std::max(u.shortest, v.shortest),
                             .whole_subtense = whole_};
         const TimedRatios ratios = worst_over_time(pattern_, energies_, size, known_);
-        if (u.left < 0 && v.left < 0) {
+        if (u.count == 1 && v.count == 1) {
             keep(around, ratios, size.subtense);
             return;
         }
@@ -237,6 +242,30 @@ private:
         family.excess = promise(family.bound);
         if (family.excess <= 1 + slack_) drop(family.bound);
         else open_.push(std::move(family));
+    }
+
+    // Most energy by dwell, in time order, that a window of the family can hold, as if its limit were that of the
+    // smallest. What a window takes of a spot grows no faster than its sides until they are those of the spot, and so
+    // does its limit: over its limit it takes most at that size, or at the nearest to it that the family has.
+    void gather(std::span<const int> members, const SideTree::Node& u, const SideTree::Node& v) {
+        energies_.clear();
+        const double least = growth_of_limit((clamped(u.shortest) + clamped(v.shortest)) / 2);
+        double spot_u = -1, spot_v = -1, factor = 1;
+        for (const int i : members) {
+            const Box& box = boxes_[i];
+            const double share_u = overlap(box.low_u, box.high_u, u.low, u.high, u.longest);
+            if (share_u <= 0) continue;
+            const double share = share_u * overlap(box.low_v, box.high_v, v.low, v.high, v.longest);
+            if (share <= 0) continue;
+            const double size_u = box.high_u - box.low_u, size_v = box.high_v - box.low_v;
+            if (size_u != spot_u || size_v != spot_v) {
+                spot_u = size_u, spot_v = size_v;
+                const double best_u = clamped(std::clamp(size_u, u.shortest, u.longest)), best_v = clamped(std::clamp(size_v, v.shortest, v.longest));
+                factor = std::min(1.0, least / growth_of_limit((best_u + best_v) / 2));
+            }
+            if (energies_.empty() || energies_.back().dwell != box.dwell) energies_.push_back({box.dwell, 0});
+            energies_.back().energy += factor * share * box.energy;
+        }
     }
 
     void keep(const Window& window, const TimedRatios& ratios, double subtense) {
@@ -250,12 +279,13 @@ private:
 
     // Splits the side whose family is wider than its windows by more.
     void split(const Family& family) {
-        const SideTree::Node &u = tree_u_.nodes[family.side_u], &v = tree_v_.nodes[family.side_v];
-        const double loose_u = u.left < 0 ? -1 : (u.high - u.low) / u.shortest, loose_v = v.left < 0 ? -1 : (v.high - v.low) / v.shortest;
+        const SideTree::Node u = tree_u_[family.side_u], v = tree_v_[family.side_v];
+        const double loose_u = u.count == 1 ? -1 : (u.high - u.low) / u.shortest, loose_v = v.count == 1 ? -1 : (v.high - v.low) / v.shortest;
         const bool along_u = loose_u >= loose_v;
-        for (const int child : along_u ? std::array{u.left, u.right} : std::array{v.left, v.right}) {
+        const int left = along_u ? tree_u_.children(family.side_u) : tree_v_.children(family.side_v);
+        for (const int child : {left, left + 1}) {
             Family half{.side_u = along_u ? child : family.side_u, .side_v = along_u ? family.side_v : child, .members = {}, .excess = 0, .bound = {}};
-            const SideTree::Node &hu = tree_u_.nodes[half.side_u], &hv = tree_v_.nodes[half.side_v];
+            const SideTree::Node &hu = tree_u_[half.side_u], &hv = tree_v_[half.side_v];
             for (const int i : family.members) {
                 const Box& box = boxes_[i];
                 if (box.high_u > hu.low && box.low_u < hu.high && box.high_v > hv.low && box.low_v < hv.high) half.members.push_back(i);
@@ -265,7 +295,7 @@ private:
     }
 
     const TimePattern& pattern_;
-    std::vector<Box> boxes_;
+    const std::vector<Box>& boxes_;
     SideTree tree_u_, tree_v_;
     double slack_;
     double whole_ = 0;
@@ -279,7 +309,9 @@ private:
 
 WindowSearch search_windows(const TimePattern& pattern, std::span<const Spot> spots, std::span<const int> dwell_of_zone, const Ratios& floor, double slack) {
     if (spots.empty()) return {};
-    WindowSearch found = Search(pattern, boxes_of(spots, dwell_of_zone), floor, slack).run();
+    std::vector<Box> boxes = boxes_of(spots, dwell_of_zone);
+    snap_edges(boxes);
+    WindowSearch found = Search(pattern, boxes, floor, slack).run();
     for (ImagePart& part : found.parts) {
         if (part.worst.ratio <= 0) continue;
         for (const Spot& spot : spots) {

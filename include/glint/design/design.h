@@ -194,9 +194,64 @@ struct Environment {
 };
 
 /// How the eye-safety evaluation is set up.
+/// How far a built module may be from its nominal values, each to both sides. The verdict is for the worst corner.
+struct Tolerances {
+    double power = 0;         ///< share of the peak power
+    double divergence = 0;    ///< share of the emitters' divergence
+    double pulse_width = 0;   ///< share
+    double wavelength = 0;    ///< [m]
+    double focal_length = 0;  ///< share
+    bool operator==(const Tolerances&) const = default;
+};
+
+enum class ElementKind { lens, fan_out, diffuser };
+
+/// An optical element is missing, or cracked so that light passes as if it were.
+struct ElementMissing {
+    ElementKind element = ElementKind::lens;
+    bool operator==(const ElementMissing&) const = default;
+};
+
+/// The driver of one zone does not switch off; the worst zone counts.
+struct ZoneStuckOn {
+    bool operator==(const ZoneStuckOn&) const = default;
+};
+
+/// Every zone fires in every dwell.
+struct AllZonesAtOnce {
+    bool operator==(const AllZonesAtOnce&) const = default;
+};
+
+struct PulseTooLong {
+    double factor = 1;
+    bool operator==(const PulseTooLong&) const = default;
+};
+
+/// The clock of the firing plan runs too fast.
+struct RepetitionTooHigh {
+    double factor = 1;
+    bool operator==(const RepetitionTooHigh&) const = default;
+};
+
+/// More current, and with it more power, than asked for.
+struct OverCurrent {
+    double factor = 1;  ///< on the peak power
+    bool operator==(const OverCurrent&) const = default;
+};
+
+using Fault = std::variant<ElementMissing, ZoneStuckOn, AllZonesAtOnce, PulseTooLong, RepetitionTooHigh, OverCurrent>;
+
+/// Single faults to be judged, one at a time.
+struct Faults {
+    std::vector<Fault> list;
+    bool operator==(const Faults&) const = default;
+};
+
 struct EyeSafetySettings {
     double closest_access = 0;  ///< from the chip to the closest place a person can reach [m]
     double time_base = 100;     ///< [s]
+    Tolerances tolerances;
+    Faults faults;
     bool operator==(const EyeSafetySettings&) const = default;
 };
 
@@ -221,7 +276,7 @@ struct FrameRateRequirement {
     bool operator==(const FrameRateRequirement&) const = default;
 };
 
-enum class AskedClass { class_1, class_1M, class_3R, class_3B };
+enum class AskedClass { class_1, class_1M, class_2, class_2M, class_3R, class_3B };
 
 struct EyeSafetyRequirement {
     AskedClass laser_class = AskedClass::class_1;

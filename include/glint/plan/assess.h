@@ -10,4 +10,7 @@ namespace glint {
 /// to stop.
 [[nodiscard]] Assessment assess(const LoadedDesign& loaded, const Progress& progress = {});
 
+/// Eye safety alone; needs no scene. Same errors.
+[[nodiscard]] SafetyVerdict assess_safety(const LoadedDesign& loaded, const Progress& progress = {});
+
 }  // namespace glint

@@ -10,7 +10,7 @@
 #include <glint/ranging/landing.h>
 #include <glint/ranging/reach.h>
 #include <glint/ranging/returns.h>
-#include <glint/safety/small_source.h>
+#include <glint/safety/verdict.h>
 #include <string>
 #include <vector>
 

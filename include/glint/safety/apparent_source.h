@@ -17,6 +17,9 @@ struct EyePlace {
     double pupil_radius = 3.5e-3; ///< or that of the telescope's aperture [m]
 };
 
+/// Angles, across and up, under which light from the origin of the chip arrives, in the coordinates of the image [rad].
+[[nodiscard]] Vec2 line_of_sight(const EyePlace& eye);
+
 /// A beam that enters the pupil, as far as it does not depend on the focus.
 struct EnteringBeam {
     int zone = 0;

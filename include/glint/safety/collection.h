@@ -1,9 +1,7 @@
-// Collection: how much of each zone's light passes an aperture in front of the module.
+// Collection: how much of a beam passes an aperture in front of the module.
 #pragma once
 
-#include <glint/optics/far_field.h>
-
-#include <vector>
+#include <glint/optics/beam.h>
 
 namespace glint {
 
@@ -17,15 +15,5 @@ struct Aperture {
 /// Gaussian whose radius is the smaller one of the beam there (radius_at), which gathers most. Wide kernels: the
 /// integral of the intensity over the disc by seven points, exact to the fifth degree.
 [[nodiscard]] double collected_share(const Beam& beam, const Aperture& aperture);
-
-/// Energy of one zone through the aperture, per shot.
-struct ZoneEnergy {
-    int zone = 0;
-    double energy = 0;  ///< [J]
-};
-
-/// Zones with more than nothing, by number. `pulse_width` in s.
-[[nodiscard]] std::vector<ZoneEnergy> collected_energies(const FarField& field, const Aperture& aperture,
-                                                         double pulse_width);
 
 }  // namespace glint

@@ -53,20 +53,19 @@ struct EyeQuestion {
     const FarField& field;  ///< not merged
     Condition condition = Condition::naked_eye;
     double closest_access = 0;  ///< of the eye to the chip [m]
+    double enough = 1e300;      ///< ratio, the allowance not included, beyond which the search may stop
 };
 
 /// Searches all places in front of the module from the closest the condition and the access allow (100 mm or 2 m from
 /// the chip) outward, each with every vergence of vergences(), for cases worse than known `before`. Places form a raster
 /// in direction, half a pupil radius apart or a fifth of the beams' radius there, whichever is more, and at most 0.06
-/// rad; distances grow by 1.2 until all that enters, taken as a point, is below what was found.
+/// rad; distances grow by 1.2 until all that enters, taken as a point, is below what was found. Around the worst it
+/// looks in ever smaller steps of place, distance and focus.
 /// The result is the same for any number of threads.
 [[nodiscard]] EyeSearch search_eyes(const EyeQuestion& question, EyeSearch before, const Progress& progress = {});
 
 /// The same for given places of the eye, module frame [m].
 [[nodiscard]] EyeSearch search_eyes_at(const EyeQuestion& question, std::span<const Vec3> places, EyeSearch before,
                                        const Progress& progress = {});
-
-/// Looks in ever smaller steps of place and focus around the worst case of all, which must belong to the question.
-[[nodiscard]] EyeSearch refine(const EyeQuestion& question, EyeSearch before, const Progress& progress = {});
 
 }  // namespace glint

@@ -67,7 +67,7 @@ using Ratios = std::array<double, 4>;
 
 /// Largest AE/AEL over every emission duration and start, for each criterion of IEC 60825-1:2014, 4.3 f).
 /// single: the strongest pulse. group: the most that starts within Ti. train: the stricter of both over C5, with N
-/// every group in min(T2, time base). average: two shots of a dwell; every stretch from the first pulse of one dwell to
+/// every group in min(T2, time base), frames counted upward. average: two shots of a dwell; every stretch from the first pulse of one dwell to
 /// the last of another, with or without whole frames before it; the shortest duration that the side of the part allows;
 /// 10 s, T2 and the time base. What starts and ends within dwells is never worse than one of these (the ratio is
 /// quasi-convex in how much of a dwell is cut off). The train is for retinal limits only. An average not above `known` may come back as 0.
