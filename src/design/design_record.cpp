@@ -101,7 +101,16 @@ Record drive() {
 
 Record firing() {
     return Describe<Firing>("firing", "When which zone fires")
-        .choice("order", &Firing::order, {"raster"}, "Order of the zones in a frame")
+        .choice("order", &Firing::order,
+                {"raster", "serpentine", "stride", "bit_reversed", "farthest_next", "shuffled"},
+                "Order of the zones in a frame. raster: row by row; serpentine: every other row backwards; "
+                "stride: every n-th, then those next to them; bit_reversed: by the reversed bits of their numbers; "
+                "farthest_next: the one farthest from all that have fired; shuffled: random")
+        .integer("stride", &Firing::stride, from_to(1, 1e6), "Zones from one that fires to the next")
+        .required()
+        .when("order", {"stride"})
+        .integer("seed", &Firing::seed, from_to(0, 1e9), "Seed of the random order")
+        .when("order", {"shuffled"})
         .integer("zones_at_once", &Firing::zones_at_once, from_to(1, 1e6), "Zones that fire together")
         .integer("shots", &Firing::shots, from_to(1, 1e8), "Shots of a dwell")
         .quantity("repetition", &Firing::repetition, K::frequency, from_to(0.01, 1e9),

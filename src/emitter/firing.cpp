@@ -2,23 +2,13 @@
 #include <glint/core/error.h>
 #include <glint/core/quantity.h>
 #include <glint/emitter/firing.h>
+#include <glint/emitter/firing_order.h>
 
 #include <fmt/format.h>
 #include <algorithm>
-#include <numeric>
 
 namespace glint {
 namespace {
-
-std::vector<int> order_zones(FiringOrder order, int zones) {
-    std::vector<int> sequence(static_cast<std::size_t>(zones));
-    switch (order) {
-        case FiringOrder::raster:
-            std::iota(sequence.begin(), sequence.end(), 0);
-            break;
-    }
-    return sequence;
-}
 
 // A matrix drives the crossings of some row lines with some column lines, and nothing else: the zones of a
 // dwell must be exactly such a product.
@@ -46,7 +36,7 @@ FiringPlan plan_firing(const Design& design, const EmitterArray& array) {
             .what = fmt::format("{} zones at once, but there are only {}", firing.zones_at_once, array.zones),
             .accepted = fmt::format("1 to {}", array.zones),
             .path = "firing/zones_at_once"});
-    FiringPlan plan{.zones = order_zones(firing.order, array.zones),
+    FiringPlan plan{.zones = order_zones(firing, array),
                     .start = {},
                     .zones_at_once = firing.zones_at_once,
                     .shots = firing.shots,

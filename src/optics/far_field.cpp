@@ -11,9 +11,10 @@
 namespace glint {
 namespace {
 
+// Same but for the origin, the zone and the power.
 bool same_pattern(const Beam& a, const Beam& b) {
     const Kernel &k = a.kernel, &l = b.kernel;
-    return a.zone == b.zone && a.axis == b.axis && a.right == b.right && k.shape == l.shape && k.a == l.a &&
+    return a.axis == b.axis && a.right == b.right && k.shape == l.shape && k.a == l.a &&
            k.b == l.b && k.edge == l.edge && k.exponent == l.exponent;
 }
 
@@ -54,6 +55,10 @@ FarField far_field(const Beams& beams, Merge merge) {
         field.spread = std::max(field.spread, beam.origin.norm());
         field.widest_exit = std::max(field.widest_exit, beam.exit_radius);
     }
+    field.alike = std::ranges::all_of(field.beams, [&](const Beam& beam) {
+        const Beam& first = field.beams.front();
+        return same_pattern(first, beam) && beam.exit_radius == first.exit_radius && beam.curvature == first.curvature && beam.origin.x() == first.origin.x();
+    });
     field.reach = std::min(field.reach, 2.0);  // no two points of the raster are farther apart along an axis
     field.cells = std::clamp(static_cast<int>(2 / std::max(field.reach, 1e-9)), 1, 1024);
     const auto cell = [&](const Beam& beam) {

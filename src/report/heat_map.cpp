@@ -60,6 +60,34 @@ void draw_group(Canvas& canvas, const HeatMap& map, const PageBox& plot, const C
             }
 }
 
+/// Outlines the rectangle or rings the place, and writes the word where the plot has room.
+void draw_mark(Canvas& canvas, const Frame& frame, const MapMark& mark) {
+    const Vec2 low = frame.place({mark.low.x(), mark.high.y()}),
+               high = frame.place({mark.high.x(), mark.low.y()});
+    const PageBox box{low.x(), low.y(), high.x(), high.y()};
+    const bool place = mark.low == mark.high;
+    constexpr double ring = 6, gap = 4;
+    for (const Pen& pen : {Pen{.colour = with_alpha(palette::background, 0.9), .width = 4.4, .dashes = {}},
+                           Pen{.colour = palette::ink, .width = 1.8, .dashes = {}}}) {
+        if (place)
+            canvas.circle(box.centre(), ring, pen);
+        else
+            canvas.polyline(box.grown(2.2).corners(), pen, true);  // what is inside stays visible
+    }
+    const TextStyle style{.size = 12.5, .weight = Weight::semibold, .align = Align::centre};
+    const FontHeights heights = font_heights(style.size);
+    const PageBox around = box.grown((place ? ring : 0) + 2 * gap);
+    const bool over = around.top - heights.ascent > frame.plot.top + gap;
+    const double half = text_width(mark.text, style.size, style.weight) / 2 + 2 * gap;
+    const double left = frame.plot.left + half, right = frame.plot.right - half;
+    if (left > right) return;
+    const Vec2 at{std::clamp(box.centre().x(), left, right),
+                  std::min(over ? around.top : around.bottom + heights.capital,
+                           frame.plot.bottom - heights.descent - gap)};
+    canvas.fill_box(text_box(at, mark.text, style).grown(2), with_alpha(palette::background, 0.9));
+    canvas.text(at, mark.text, style);
+}
+
 }  // namespace
 
 Canvas draw(const HeatMap& map) {
@@ -93,6 +121,7 @@ Canvas draw(const HeatMap& map) {
                 fill_hatch(canvas, {cell.corners()});
         }
     for (const CellGroup& group : map.groups) draw_group(canvas, map, plot, group);
+    for (const MapMark& mark : map.marks) draw_mark(canvas, frame, mark);
     canvas.clip(std::nullopt);
     draw_surround(canvas, frame);
     return canvas;

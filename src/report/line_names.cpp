@@ -88,6 +88,7 @@ std::pair<Vec2, Vec2> ends_of(const ReferenceLine& line, const Frame& frame) {
 std::vector<std::optional<Vec2>> reference_places(const LinePlot& plot, const Frame& frame) {
     std::vector<std::optional<Vec2>> places;
     std::vector<PageBox> taken;
+    const std::vector<EndName> ends = end_names(plot, frame);
     for (const ReferenceLine& line : plot.references) {
         const TextStyle style = style_of(line);
         const auto [from, to] = ends_of(line, frame);
@@ -108,6 +109,9 @@ std::vector<std::optional<Vec2>> reference_places(const LinePlot& plot, const Fr
                 int count = crossings(plot, frame, box);
                 for (const ReferenceLine& other : plot.references)
                     count += crosses(box, ends_of(other, frame).first, ends_of(other, frame).second);
+                // Lines that lead to names beside the plot.
+                for (const EndName& name : ends)
+                    count += crosses(box, name.end, {frame.plot.right, name.height});
                 if (count < least) least = count, best = place;
             }
         places.push_back(best);

@@ -4,6 +4,7 @@
 #include <glint/optics/receiver.h>
 #include <glint/report/point_view.h>
 #include <glint/report/previews.h>
+#include <glint/report/safety_pictures.h>
 #include <glint/report/zone_map.h>
 
 #include <fmt/format.h>
@@ -123,7 +124,19 @@ std::vector<Vec2> zone_outline(std::span<const Beam* const> beams) {
 std::span<const View> views() {
     static const std::array list{
         View{"points", "the points of one frame in space, coloured by range", points_picture},
-        View{"zones", "the zones over the field, coloured by when they fire", zones_picture}};
+        View{"zones", "the zones over the field, coloured by when they fire", zones_picture},
+        View{"retinal-image", "what the eye sees in the case that governs eye safety",
+             [](const Design& design, const Assessment& assessment) {
+                 return retinal_image_picture(design, assessment.safety);
+             }},
+        View{"emission-limits", "emission and limit over time in that case",
+             [](const Design& design, const Assessment& assessment) {
+                 return emission_limits_picture(design, assessment.safety);
+             }},
+        View{"safety-map", "emission over limit, over the field",
+             [](const Design& design, const Assessment& assessment) {
+                 return safety_map_picture(design, assessment.safety);
+             }}};
     return list;
 }
 

@@ -3,6 +3,7 @@
 #include <glint/safety/apparent_source.h>
 
 #include <algorithm>
+#include <array>
 #include <cmath>
 
 namespace glint {
@@ -50,6 +51,53 @@ Moments moments(const EnteringBeam& beam, double vergence) {
     return {w2 * grown * grown + l * l * s2, w2 * turned * turned + s2 * seen * seen, w2 * grown * turned + s2 * l * seen};
 }
 
+constexpr double wide = 0.15;  // tangent: beams that reach farther change little over an array
+
+// The share of alike, wide beams over their origins: worked out at 5 x 5 places around the array and interpolated. Beams change
+// over tens of millimetres at the nearest eye, arrays are a few millimetres wide.
+class LocalShare {
+public:
+    static constexpr int nodes = 5;
+
+    static bool serves(const FarField& field, double distance) {
+        if (!field.alike || field.beams.size() <= nodes * nodes || field.beams.front().kernel.reach <= wide) return false;
+        return std::ranges::all_of(field.beams, [&](const Beam& beam) { return across(beam.origin).norm() < 0.05 * distance; });
+    }
+
+    LocalShare(const FarField& field, const Aperture& aperture) {
+        Vec2 high = across(field.beams.front().origin);
+        low_ = high;
+        for (const Beam& beam : field.beams) low_ = low_.cwiseMin(across(beam.origin)), high = high.cwiseMax(across(beam.origin));
+        step_ = ((high - low_) / (nodes - 1)).cwiseMax(1e-9);
+        Beam probe = field.beams.front();
+        for (int i = 0; i < nodes; ++i)
+            for (int k = 0; k < nodes; ++k) {
+                probe.origin.y() = low_.x() + i * step_.x(), probe.origin.z() = low_.y() + k * step_.y();
+                share_[i][k] = collected_share(probe, aperture);
+            }
+    }
+
+    double operator()(const Vec3& origin) const {
+        const auto weights = [](double at) {  // Lagrange's polynomials of degree 4 at 0, 1, 2, 3, 4
+            std::array<double, nodes> w;
+            w.fill(1);
+            for (int i = 0; i < nodes; ++i)
+                for (int k = 0; k < nodes; ++k)
+                    if (k != i) w[i] *= (at - k) / (i - k);
+            return w;
+        };
+        const auto u = weights((origin.y() - low_.x()) / step_.x()), v = weights((origin.z() - low_.y()) / step_.y());
+        double sum = 0;
+        for (int i = 0; i < nodes; ++i)
+            for (int k = 0; k < nodes; ++k) sum += u[i] * v[k] * share_[i][k];
+        return std::max(0.0, sum);
+    }
+
+private:
+    Vec2 low_, step_;
+    double share_[nodes][nodes];
+};
+
 // Metric of direction over slopes: d(angle)^2 = (1 + q^2) dp^2 / (1 + p^2 + q^2)^2 along p.
 Vec2 angle_per_slope(const Vec2& slope) {
     return Vec2(std::sqrt(1 + slope.y() * slope.y()), std::sqrt(1 + slope.x() * slope.x())) / (1 + slope.squaredNorm());
@@ -69,15 +117,21 @@ EnteringLight entering_light(const FarField& field, const EyePlace& eye, double 
     light.cosine = 1 / std::sqrt(1 + slope.squaredNorm());
     light.scale = angle_per_slope(slope);
     const Aperture aperture{.centre = eye.place, .radius = eye.pupil_radius};
-    const double beside = (eye.pupil_radius + field.spread + 3 * field.widest_exit) / distance;
-    const double reach = beside < 1 ? field.reach + std::asin(beside) : 2;
-    beams_near(field, eye.place / distance, reach, [&](const Beam& beam) {
-        if (beam.origin.x() >= eye.place.x()) return;
-        const double energy = collected_share(beam, aperture) * beam.power * pulse_width;
-        if (energy <= 0) return;
+    const auto enter = [&](const Beam& beam, double share) {
+        const double energy = share * beam.power * pulse_width;
+        if (beam.origin.x() >= eye.place.x() || energy <= 0) return;
         light.beams.push_back(entering_beam(beam, eye, energy));
         light.passed += energy;
-    });
+    };
+    if (LocalShare::serves(field, distance)) {
+        const LocalShare share(field, aperture);
+        light.beams.reserve(field.beams.size());
+        for (const Beam& beam : field.beams) enter(beam, share(beam.origin));
+        return light;
+    }
+    const double beside = (eye.pupil_radius + field.spread + 3 * field.widest_exit) / distance;
+    const double reach = beside < 1 ? field.reach + std::asin(beside) : 2;
+    beams_near(field, eye.place / distance, reach, [&](const Beam& beam) { enter(beam, collected_share(beam, aperture)); });
     return light;
 }
 
@@ -106,7 +160,10 @@ std::vector<Spot> retinal_image(const EnteringLight& light, double vergence) {
 
 std::vector<double> vergences(const EnteringLight& light) {
     std::vector<double> list;
-    for (double v = 0; v <= most_vergence; v += 0.5) list.push_back(v);
+    // Beams so wide that the pupil alone shapes them come from where they start, whatever the focus: only their size
+    // changes, and that steadily away from the focus on their origin.
+    const bool steady = std::ranges::all_of(light.beams, [&](const EnteringBeam& beam) { return beam.spread * beam.path > 3 * light.eye.pupil_radius; });
+    for (double v = 0; v <= most_vergence; v += steady ? 5 : 0.5) list.push_back(v);
     if (light.beams.empty()) return list;
     const auto add = [&](double along_axis) {
         const double v = along_axis * light.cosine;

@@ -10,7 +10,7 @@ namespace {
 
 constexpr double end_of_small_aperture = 0.35;  // s, from 1400 nm on
 
-ExposureCase in_words(const EyeCase& found, PulseCriterion criterion) {
+ExposureCase in_words(const EyeCase& found, PulseCriterion criterion, double allowance) {
     const TimedRatio& worst = found.part.worst;
     const bool retinal = found.mechanism == Mechanism::retinal_thermal;
     ExposureCase each{.criterion = criterion,
@@ -19,7 +19,7 @@ ExposureCase in_words(const EyeCase& found, PulseCriterion criterion) {
                       .duration = worst.duration,
                       .pulses = worst.pulses,
                       .C5 = worst.C5,
-                      .ae = worst.ae * search_allowance,
+                      .ae = worst.ae * allowance,
                       .ael = worst.ael,
                       .eye = found.eye.place,
                       .focus = found.vergence > 0 ? 1 / found.vergence : std::numeric_limits<double>::infinity(),
@@ -42,6 +42,8 @@ LightSource light_source(const Design& design, const EmitterArray& array, const 
             .wavelength = design.emitters.wavelength,
             .closest_access = design.eye_safety.closest_access};
 }
+
+double limit_of_search(const LightSource& light) { return 1 / allowance_for(slack_for(light.field)); }
 
 std::vector<TimePattern> patterns_of(const LightSource& light, LaserClass laser_class, double time_base) {
     std::vector<TimePattern> patterns;
@@ -75,7 +77,7 @@ EyeSearch search_exposure(const LightSource& light, const ExposureQuestion& ques
 std::vector<ExposureCase> exposure_cases(const EyeSearch& found) {
     std::vector<ExposureCase> cases;
     for (std::size_t c = 0; c < found.worst.size(); ++c)
-        if (found.worst[c].part.worst.ratio > 0) cases.push_back(in_words(found.worst[c], static_cast<PulseCriterion>(c)));
+        if (found.worst[c].part.worst.ratio > 0) cases.push_back(in_words(found.worst[c], static_cast<PulseCriterion>(c), allowance_for(found.slack)));
     std::ranges::stable_sort(cases, std::greater{}, [](const ExposureCase& each) { return each.ratio(); });
     return cases;
 }

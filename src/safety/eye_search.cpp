@@ -5,6 +5,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <iterator>
 
 namespace glint {
 namespace {
@@ -13,11 +14,13 @@ constexpr double growth_of_distance = 1.2;
 constexpr double farthest = 1e4;  // m
 constexpr std::size_t single = static_cast<std::size_t>(PulseCriterion::single), group = static_cast<std::size_t>(PulseCriterion::group), train = static_cast<std::size_t>(PulseCriterion::train);
 constexpr std::size_t batch = 64;
+constexpr std::size_t many_beams = 1024;
 
 // A place of the eye and what enters there.
 struct Place {
-    EnteringLight light;
-    TimedRatios as_point{};  // all of it taken as a point: no part of any image gives more
+    EyePlace eye;
+    std::size_t beams = 0;   // that enter
+    TimedRatios as_point{};  // all that enters taken as a point: no part of any image gives more
 };
 
 // A place and a focus, with a bound on what its image can give.
@@ -49,9 +52,10 @@ public:
     Search(const EyeQuestion& question, EyeSearch before, const Progress& progress)
         : pattern_(question.pattern), question_(question), progress_(progress), found_(std::move(before)),
           dwell_of_zone_(static_cast<std::size_t>(question.field.zones), 0),
-          retinal_(question.pattern.curve.mechanism == Mechanism::retinal_thermal) {
+          slack_(slack_for(question.field)), retinal_(question.pattern.curve.mechanism == Mechanism::retinal_thermal) {
         for (int dwell = 0; dwell < pattern_.plan.dwells(); ++dwell)
             for (const int zone : pattern_.plan.zones_of(dwell)) dwell_of_zone_[zone] = dwell;
+        found_.slack = std::max(found_.slack, slack_);
         const MeasurementCondition at =
             measurement(question.condition, pattern_.rules.wavelength, std::min(pattern_.rules.durations.to, 10.0));
         radius_ = at.aperture / 2;
@@ -62,7 +66,7 @@ public:
     void everywhere() {
         if (nothing_at_all()) return;
         // A few places first: the more is known, the less has to be looked at.
-        for (double distance = nearest_; distance < farthest; distance *= growth_of_distance)
+        for (double distance = nearest_; distance < farthest && !question_.field.alike; distance *= growth_of_distance)
             if (!look(few_places(distance)) || enough()) break;
         if (worst_is_ours()) closer();
         // Beyond some distance even all the light, taken as a point, is less than what was found nearer.
@@ -83,14 +87,20 @@ public:
         parallel_for(where.size(), "looking for the worst place of the eye", progress_,
                      [&](std::size_t i) { places[i] = place_at(where[i]); });
         found_.work.places += where.size();
-        bool any = false;
-        for (const Place& place : places) {
-            if (promise_of(ratios_of(place.as_point), found_.known) <= 1 + (retinal_ ? search_slack : 0)) continue;
-            any = true;
-            if (!retinal_) keep(whole(place), place.light.eye, 0);
+        std::erase_if(places, [&](const Place& place) { return promise_of(ratios_of(place.as_point), found_.known) <= 1 + (retinal_ ? slack_ : 0); });
+        if (places.empty()) return false;
+        if (!retinal_) keep_whole(places);
+        else {
+            std::vector<Place> alike;
+            if (question_.field.alike) {
+                const auto full = [&](const Place& place) { return place.beams == question_.field.beams.size(); };
+                std::ranges::copy_if(places, std::back_inserter(alike), full);
+                std::erase_if(places, full);
+            }
+            search_alike(std::move(alike));
+            search_items(places, items_of(places));
         }
-        if (any && retinal_) search_items(places, items_of(places));
-        return any;
+        return true;
     }
 
 private:
@@ -110,22 +120,24 @@ private:
     }
 
     [[nodiscard]] TimedRatios as_point(const EnteringLight& light) const {
+        std::vector<double> energy(static_cast<std::size_t>(pattern_.plan.dwells()), 0.0);
+        for (const EnteringBeam& beam : light.beams) energy[dwell_of_zone_[beam.zone]] += beam.energy;
         std::vector<DwellEnergy> dwells;
-        std::vector<std::pair<int, double>> entering;
-        for (const EnteringBeam& beam : light.beams) entering.emplace_back(dwell_of_zone_[beam.zone], beam.energy);
-        std::ranges::sort(entering);
-        for (const auto& [dwell, energy] : entering) {
-            if (dwells.empty() || dwells.back().dwell != dwell) dwells.push_back({dwell, 0});
-            dwells.back().energy += energy;
-        }
+        for (std::size_t dwell = 0; dwell < energy.size(); ++dwell)
+            if (energy[dwell] > 0) dwells.push_back({static_cast<int>(dwell), energy[dwell]});
         return worst_over_time(pattern_, dwells, anything_as_point);
     }
 
+    [[nodiscard]] EnteringLight light_at(const EyePlace& eye) const { return entering_light(question_.field, eye, pattern_.plan.pulse_width); }
+
     [[nodiscard]] Place place_at(const Vec3& where) const {
-        Place place;
-        place.light = entering_light(question_.field, {.place = where, .pupil_radius = radius_}, pattern_.plan.pulse_width);
-        if (!place.light.beams.empty()) place.as_point = as_point(place.light);
-        return place;
+        const EyePlace eye{.place = where, .pupil_radius = radius_};
+        const EnteringLight light = light_at(eye);
+        return {eye, light.beams.size(), as_point(light)};
+    }
+
+    [[nodiscard]] WindowSearch search(std::span<const Spot> image, double slack) const {
+        return search_windows(pattern_, image, dwell_of_zone_, found_.known, slack);
     }
 
     // Directions that any light goes to, as a square of (y, z) of the unit direction, and the raster's step there.
@@ -169,16 +181,72 @@ private:
         return places;
     }
 
-    // All that enters, as the part that each criterion judges.
-    static WorstImageParts whole(const Place& place) {
+    // For limits without an angle all that enters is the part that each criterion judges.
+    [[nodiscard]] WorstImageParts whole(const Place& place) const {
         WorstImageParts parts;
-        for (std::size_t c = 0; c < 4; ++c) {
-            parts[c].worst = place.as_point[c];
-            for (const EnteringBeam& beam : place.light.beams) parts[c].zones.push_back(beam.zone);
-            std::ranges::sort(parts[c].zones);
-            parts[c].zones.erase(std::ranges::unique(parts[c].zones).begin(), parts[c].zones.end());
-        }
+        std::vector<int> zones;
+        for (const EnteringBeam& beam : light_at(place.eye).beams) zones.push_back(beam.zone);
+        std::ranges::sort(zones);
+        zones.erase(std::ranges::unique(zones).begin(), zones.end());
+        for (std::size_t c = 0; c < 4; ++c) parts[c].worst = place.as_point[c], parts[c].zones = zones;
         return parts;
+    }
+
+    void keep_whole(std::span<const Place> places) {
+        for (const Place& place : places)
+            if (promise_of(ratios_of(place.as_point), found_.known) > 1) keep(whole(place), place.eye, 0);
+    }
+
+    // Beams that are alike make images that differ between places in size and brightness only. So the worst of many
+    // places is at most that of the brightest of each beam in the smallest of their images: places are looked at
+    // all together, and divided only when that is too much.
+    void search_alike(std::vector<Place> places) {
+        std::ranges::stable_sort(places, std::greater{}, [&](const Place& place) { return promise_of(ratios_of(place.as_point), found_.known); });
+        if (places.empty()) return;
+        if (std::ranges::all_of(found_.known, [](double known) { return known <= 0; })) search_set(std::span(places).first(1));
+        search_set(places);
+    }
+
+    void search_set(std::span<const Place> places) {
+        if (enough()) return;
+        const EnteringLight light = light_at(places.front().eye);
+        std::vector<double> foci = vergences(light);
+        // The sharpest image first: it is often the worst, and makes short work of the others.
+        std::ranges::sort(foci, {}, [&](double vergence) { return spot_of(light.beams.front(), light, vergence).half.sum(); });
+        bool more = false;
+        for (std::size_t first = 0, count = 1; first < foci.size(); first += count, count = foci.size() - first) {
+            std::vector<WindowSearch> results(count);
+            parallel_for(count, "looking for the worst part of the image", progress_, [&](std::size_t i) { results[i] = search(worst_image(places, foci[first + i]), slack_); });
+            for (std::size_t i = 0; i < count; ++i) {
+                ++found_.work.images;
+                found_.work.families += results[i].nodes;
+                for (const ImagePart& part : results[i].parts) more = more || part.worst.ratio > 0;
+                if (places.size() == 1) keep(results[i].parts, places.front().eye, foci[first + i]);
+            }
+        }
+        if (!more || places.size() == 1) return;
+        search_set(places.first(places.size() / 2));
+        search_set(places.subspan(places.size() / 2));
+    }
+
+    // The image of the first place, each spot as bright as at any of the places, all of it as small.
+    [[nodiscard]] std::vector<Spot> worst_image(std::span<const Place> places, double vergence) const {
+        std::vector<Spot> worst = retinal_image(light_at(places.front().eye), vergence);
+        const auto size_of = [](std::span<const Spot> image) {
+            Vec2 low = image.front().middle - image.front().half, high = image.front().middle + image.front().half;
+            for (const Spot& spot : image) low = low.cwiseMin(spot.middle - spot.half), high = high.cwiseMax(spot.middle + spot.half);
+            return Vec2(high - low);
+        };
+        const Vec2 size = size_of(worst);
+        Vec2 least = size, spot_half = worst.front().half;
+        for (const Place& place : places.subspan(1)) {
+            const std::vector<Spot> image = retinal_image(light_at(place.eye), vergence);
+            least = least.cwiseMin(size_of(image)), spot_half = spot_half.cwiseMin(image.front().half);
+            for (std::size_t i = 0; i < image.size(); ++i) worst[i].energy = std::max(worst[i].energy, image[i].energy);
+        }
+        const Vec2 scale = least.cwiseQuotient(size);
+        for (Spot& spot : worst) spot.middle = spot.middle.cwiseProduct(scale), spot.half = spot_half;
+        return worst;
     }
 
     // Places and foci that may be worse than what is known, most promising first.
@@ -194,14 +262,14 @@ private:
 
     [[nodiscard]] std::vector<Item> items_at(std::size_t index, const Place& place) const {
         LightRatios ratios{.as_point = ratios_of(place.as_point), .per_energy = per_energy_};
-        if (place.light.beams.empty() || promise_of(ratios.as_point, found_.known) <= 1 + search_slack) return {};
+        const EnteringLight light = light_at(place.eye);
         // C5 falls with the number of pulses: that of all beams together is the least.
         ratios.per_energy[train] = std::max(per_energy_[single], per_energy_[group]) / place.as_point[train].C5;
         std::vector<Item> items;
-        for (const double vergence : vergences(place.light)) {
-            Item item{.place = index, .vergence = vergence, .bound = image_bound(retinal_image(place.light, vergence), ratios, found_.known), .promise = 0};
+        for (const double vergence : vergences(light)) {
+            Item item{.place = index, .vergence = vergence, .bound = image_bound(retinal_image(light, vergence), ratios, found_.known), .promise = 0};
             item.promise = promise_of(item.bound, found_.known);
-            if (item.promise > 1 + search_slack) items.push_back(item);
+            if (item.promise > 1 + slack_) items.push_back(item);
         }
         return items;
     }
@@ -214,15 +282,14 @@ private:
             std::vector<WindowSearch> results(count);
             parallel_for(count, "looking for the worst part of the image", progress_, [&](std::size_t i) {
                 const Item& item = items[first + i];
-                if (promise_of(item.bound, found_.known) <= 1 + search_slack) return;
-                results[i] = search_windows(pattern_, retinal_image(places[item.place].light, item.vergence), dwell_of_zone_,
-                                            found_.known, search_slack);
+                if (promise_of(item.bound, found_.known) <= 1 + slack_) return;
+                results[i] = search(retinal_image(light_at(places[item.place].eye), item.vergence), slack_);
             });
             for (std::size_t i = 0; i < count; ++i) {
                 const Item& item = items[first + i];
                 (results[i].nodes > 0 ? found_.work.images : found_.work.skipped) += 1;
                 found_.work.families += results[i].nodes;
-                keep(results[i].parts, places[item.place].light.eye, item.vergence);
+                keep(results[i].parts, places[item.place].eye, item.vergence);
             }
         }
     }
@@ -258,10 +325,8 @@ private:
         }
         std::vector<WorstImageParts> parts(trials.size());
         parallel_for(trials.size(), "looking closer", progress_, [&](std::size_t i) {
-            const Place place = place_at(trials[i].eye.place);
-            if (place.light.beams.empty()) return;
-            parts[i] = retinal_ ? search_windows(pattern_, retinal_image(place.light, trials[i].vergence), dwell_of_zone_, found_.known, 0).parts
-                                : whole(place);
+            if (retinal_) parts[i] = search(retinal_image(light_at(trials[i].eye), trials[i].vergence), slack_ > search_slack ? slack_ : 0).parts;
+            else parts[i] = whole(place_at(trials[i].eye.place));
         });
         found_.work.images += trials.size();
         for (std::size_t i = 0; i < trials.size(); ++i) keep(parts[i], trials[i].eye, trials[i].vergence);
@@ -272,6 +337,7 @@ private:
     const Progress& progress_;
     EyeSearch found_;
     std::vector<int> dwell_of_zone_;
+    double slack_;
     bool retinal_;
     Ratios per_energy_{};
     double radius_ = 0;
@@ -279,6 +345,10 @@ private:
 };
 
 }  // namespace
+
+double slack_for(const FarField& field) {
+    return field.alike && field.beams.size() > many_beams ? search_slack_of_many : search_slack;
+}
 
 double EyeSearch::worst_ratio() const {
     double largest = 0;

@@ -10,7 +10,6 @@
 namespace glint {
 namespace {
 
-constexpr double limit = 1 / search_allowance;
 constexpr double precision = 1.02;
 
 template <class... Visitors>
@@ -79,6 +78,7 @@ struct Judge {
     // Whether a case that is too much over a longer time still is within a shorter one.
     [[nodiscard]] bool too_much(const EyeCase& found, double within) const {
         const LightSource source = light(within);
+        const double limit = limit_of_search(source);
         EyeSearch before;
         before.known.fill(limit);
         const std::array places{found.eye.place};
@@ -98,6 +98,7 @@ const EyeCase& worst_of(const EyeSearch& found) {
 // be at its place, and looks everywhere again.
 std::optional<double> reaction_time(const Judge& judge, EyeCase worst, double too_long) {
     const double one_shot = judge.light(too_long).plan.pulse_width < too_long ? judge.light(too_long).plan.pulse_width : 1e-9;
+    const double limit = limit_of_search(judge.light(too_long));
     Ratios from_the_limit;
     from_the_limit.fill(limit);
     for (int round = 0; round < 40; ++round) {
@@ -150,7 +151,7 @@ FaultVerdict judge_fault(const Design& design, const EmitterArray& array, const 
     const double time_base = design.eye_safety.time_base;
     FaultVerdict verdict{.name = name_of(fault), .reaction_time = {}, .governing = {}};
     const EyeSearch found = judge.everywhere(time_base, 1e300, {});
-    verdict.worst_ratio = found.worst_ratio() * search_allowance;
+    verdict.worst_ratio = found.bound();
     const std::vector<ExposureCase> cases = exposure_cases(found);
     if (!cases.empty()) verdict.governing = cases.front();
     verdict.holds = verdict.worst_ratio <= 1;

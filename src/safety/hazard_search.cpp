@@ -30,7 +30,7 @@ std::vector<Vec3> in_front_of_beams(const LightSource& light, double distance, c
 }  // namespace
 
 double search_hazard_distance(const LightSource& light, Condition condition, double time_base, const Vec3& also, const Progress& progress) {
-    constexpr double limit = 1 / search_allowance;
+    const double limit = limit_of_search(light);
     const std::vector<TimePattern> patterns = patterns_of(light, LaserClass::class_1, time_base);
     const auto exceeds = [&](double distance) {
         const std::vector<Vec3> places = in_front_of_beams(light, distance, also);

@@ -50,28 +50,40 @@ struct Within {
     double energy = 0, pulses = 0;
 };
 
-// The most that starts within a stretch: the stretch opens with the first shot of a dwell or closes with the last shot
-// of one, because between such moments the energy changes at a constant rate.
+// The most that starts within a stretch shorter than a frame: the stretch opens with the first shot of a dwell or closes with the last shot
+// of one, because between such moments the energy changes at a constant rate. Dwells do not overlap, so all but one of
+// those that it reaches are whole.
 Within most_within(const TimePattern& pattern, std::span<const DwellEnergy> dwells, double stretch) {
-    const double last_shot = (pattern.plan.shots - 1) * pattern.plan.shot_period;
+    const FiringPlan& plan = pattern.plan;
+    const double last_shot = (plan.shots - 1) * plan.shot_period, slack = 1e-12 * plan.frame_period;
     const std::size_t count = dwells.size();
+    const auto time = [&](std::size_t i) { return start_of(pattern, dwells[i % count]) + (i >= count ? plan.frame_period : 0); };
     Within most;
+    const auto consider = [&](double whole, std::size_t number, double part, double energy) {
+        const Within found{whole * plan.shots + part * energy, static_cast<double>(number) * plan.shots + part};
+        if (found.energy > most.energy) most = found;
+    };
+    // Opened by dwell `first`: those up to `next` are whole.
+    double sum = 0;
+    std::size_t next = 0;
     for (std::size_t first = 0; first < count; ++first) {
-        Within opening, closing;
-        for (std::size_t next = 0; next < count; ++next) {
-            const std::size_t ahead = (first + next) % count, behind = (first + count - next) % count;
-            const double wrap_ahead = first + next >= count ? pattern.plan.frame_period : 0;
-            const double wrap_behind = next > first ? pattern.plan.frame_period : 0;
-            const double later = wrap_ahead + start_of(pattern, dwells[ahead]) - start_of(pattern, dwells[first]);
-            const double earlier = wrap_behind + start_of(pattern, dwells[first]) - start_of(pattern, dwells[behind]);
-            const double opened = shots_within(pattern, stretch - later), closed = shots_within(pattern, stretch - earlier);
-            if (opened == 0 && closed == 0) break;
-            opening.energy += opened * dwells[ahead].energy, opening.pulses += opened;
-            closing.energy += closed * dwells[behind].energy, closing.pulses += closed;
-        }
-        if (opening.energy > most.energy) most = opening;
-        if (closing.energy > most.energy) most = closing;
-        if (stretch >= last_shot && count == 1) break;
+        if (next < first) next = first, sum = 0;
+        while (next < first + count && time(next) + last_shot - time(first) <= stretch + slack) sum += dwells[next++ % count].energy;
+        const double part = next < first + count ? shots_within(pattern, stretch - (time(next) - time(first))) : 0;
+        consider(sum, next - first, part, dwells[next % count].energy);
+        if (next > first) sum -= dwells[first].energy;
+    }
+    // Closed by dwell `last`, counted in the second of two frames: those from `first` on are whole.
+    sum = 0;
+    std::size_t first = 1;
+    for (std::size_t i = 1; i < count; ++i) sum += dwells[i].energy;
+    for (std::size_t last = count; last < 2 * count; ++last) {
+        sum += dwells[last - count].energy;
+        while (first <= last && time(last) + last_shot - time(first) > stretch + slack) sum -= dwells[first++ % count].energy;
+        const std::size_t before = first - 1;  // reached in part, unless it is `last` of the frame before
+        const double part = before + count > last ? shots_within(pattern, stretch - (time(last) - time(before))) : 0;
+        consider(sum, last + 1 - first, std::min<double>(part, plan.shots), dwells[before % count].energy);
+        if (first + count == last + 1) sum -= dwells[first++ % count].energy;
     }
     return most;
 }
@@ -143,6 +155,8 @@ TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> 
     return worst;
 }
 
+constexpr double coarse = 1.02;  // classes of duration that need no closer look when a bound is enough
+
 // The most that one stretch of whole dwells holds, over all durations. Stretches are sorted into classes of duration; a
 // class whose most energy over its least limit is not above what is known is dropped, others are halved.
 class AverageSearch {
@@ -205,7 +219,8 @@ private:
     void at(double duration) {
         if (duration < std::max(shortest_, pattern_.plan.pulse_width) || !counts(pattern_, duration)) return;
         const double frames = std::floor(duration / pattern_.plan.frame_period * (1 + 1e-12));
-        if ((frames + 1) * frame_energy_ <= known_ * limit(duration)) return;
+        const double least = known_ * limit(duration) - frames * frame_energy_;
+        if (frame_energy_ <= least) return;
         const Within rest = most_within(pattern_, dwells_, std::max(0.0, duration - frames * pattern_.plan.frame_period));
         const double pulses = frames * static_cast<double>(dwells_.size()) * pattern_.plan.shots + rest.pulses;
         consider(duration, frames * frame_energy_ + rest.energy, pulses);
@@ -213,22 +228,41 @@ private:
 
     // Whole frames and a stretch from the first pulse of a dwell to the last of one, its length within `range`.
     void stretches(double frames, Interval range) {
+        range.to = std::min(range.to, pattern_.rules.time_base - frames * pattern_.plan.frame_period);
+        search(frames, range, most_over_least(frames, range));
+    }
+
+    // Most energy over the least limit of such stretches.
+    [[nodiscard]] double most_over_least(double frames, const Interval& range) const {
+        const double before = frames * pattern_.plan.frame_period, shorter = std::max(before + range.from, shortest_);
+        if (range.from > range.to || before + range.to < shortest_) return 0;
+        const double least = least_limit(shorter, before + range.to);
+        if ((frames + 1) * frame_energy_ <= known_ * least) return 0;
+        return (frames * frame_energy_ + most_in(range.to)) / least;
+    }
+
+    void search(double frames, const Interval& range, double bound) {
+        if (bound <= known_) return;
         const double before = frames * pattern_.plan.frame_period;
-        const double shorter = std::max(before + range.from, shortest_);
-        range.to = std::min(range.to, pattern_.rules.time_base - before);
-        if (range.from > range.to || before + range.to < shortest_ || shorter > pattern_.rules.time_base) return;
-        const double least = known_ * least_limit(shorter, before + range.to) - frames * frame_energy_;
-        if (frame_energy_ <= least || most_in(range.to) <= least) return;
-        if (range.to > 1.1 * range.from && range.to - range.from > 0.01 * (before + range.from)) {
-            const double middle = std::sqrt(range.from * range.to);
-            stretches(frames, {range.from, middle});
-            stretches(frames, {middle, range.to});
+        if (size_.family && before + range.to <= coarse * std::max(before + range.from, shortest_)) {
+            worst_ = {.ratio = bound, .duration = before + range.to}, known_ = bound;
             return;
         }
-        each_stretch(range, [&](double duration, double energy, std::size_t count) {
-            const double dwells = frames * static_cast<double>(dwells_.size()) + static_cast<double>(count);
-            consider(before + duration, frames * frame_energy_ + energy, dwells * pattern_.plan.shots);
-        });
+        if (range.to <= 1.05 * range.from || range.to - range.from <= 0.01 * (before + range.from)) {
+            const double least = least_limit(std::max(before + range.from, shortest_), before + range.to);
+            each_stretch(range, [&](double duration, double energy, std::size_t count) {
+                if (frames * frame_energy_ + energy <= known_ * least) return;
+                const double dwells = frames * static_cast<double>(dwells_.size()) + static_cast<double>(count);
+                consider(before + duration, frames * frame_energy_ + energy, dwells * pattern_.plan.shots);
+            });
+            return;
+        }
+        const double middle = std::sqrt(range.from * range.to);
+        const Interval shorter{range.from, middle}, longer{middle, range.to};
+        const double of_shorter = most_over_least(frames, shorter), of_longer = most_over_least(frames, longer);
+        if (of_shorter > of_longer) search(frames, shorter, of_shorter);
+        search(frames, longer, of_longer);
+        if (of_shorter <= of_longer) search(frames, shorter, of_shorter);
     }
 
     [[nodiscard]] double time(std::size_t i) const {
@@ -252,17 +286,23 @@ private:
         return most;
     }
 
+    // Stretches of whole dwells, none of them twice, whose length lies in the range.
     template <class Visit>
     void each_stretch(const Interval& range, const Visit& visit) const {
-        const double slack = 1e-12 * pattern_.plan.frame_period;
+        const double slack = 1e-12 * pattern_.plan.frame_period, length = pattern_.dwell_length;
+        double sum = 0;  // of dwells from `first` up to but not `next`, the first that makes the stretch long enough
+        std::size_t next = 0;
         for (std::size_t first = 0; first < dwells_.size(); ++first) {
-            double sum = 0;
-            for (std::size_t last = first; last < first + dwells_.size(); ++last) {
-                sum += energy(last);
-                const double duration = time(last) - time(first) + pattern_.dwell_length;
+            if (next < first) next = first, sum = 0;
+            while (next < first + dwells_.size() && time(next) - time(first) + length < range.from - slack) sum += energy(next++);
+            double energies = sum;
+            for (std::size_t last = next; last < first + dwells_.size(); ++last) {
+                energies += energy(last);
+                const double duration = time(last) - time(first) + length;
                 if (duration > range.to + slack) break;
-                if (duration >= range.from - slack) visit(duration, sum, last - first + 1);
+                visit(duration, energies, last - first + 1);
             }
+            if (next > first) sum -= energy(first);
         }
     }
 

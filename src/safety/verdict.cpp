@@ -57,7 +57,7 @@ SafetyVerdict judge_safety(const Design& design, const EmitterArray& array, cons
     verdict.corners = corners.size();
     verdict.work = found.work;
     verdict.criteria = exposure_cases(found);
-    verdict.worst_ratio = found.worst_ratio() * search_allowance;
+    verdict.worst_ratio = found.bound();
     verdict.margin = 1 - verdict.worst_ratio;
     verdict.laser_class = classify(verdict.light, found, time_base, progress);
 
@@ -67,7 +67,7 @@ SafetyVerdict judge_safety(const Design& design, const EmitterArray& array, cons
     verdict.asked_ratio = verdict.worst_ratio;
     if (verdict.asked != LaserClass::class_1) {
         const ExposureQuestion question{verdict.asked, time_base_of(verdict.asked, verdict.light.wavelength, time_base), conditions_of(verdict.asked)};
-        verdict.asked_ratio = search_exposure(verdict.light, question, {}, progress).worst_ratio() * search_allowance;
+        verdict.asked_ratio = search_exposure(verdict.light, question, {}, progress).bound();
     }
     if (verdict.asked_ratio > 0) {
         const double scale = (1 - asked.margin) / verdict.asked_ratio;

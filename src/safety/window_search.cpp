@@ -4,7 +4,7 @@
 
 #include <algorithm>
 #include <cmath>
-#include <queue>
+#include <iterator>
 
 namespace glint {
 namespace {
@@ -12,7 +12,8 @@ namespace {
 constexpr double widest_side = 100e-3;
 constexpr double short_side = 5e-3;  // alpha_max up to 625 us
 constexpr double snapping = 1e-3;    // of the side of a spot: edges closer than this are one
-constexpr std::size_t few_dwells = 64;
+constexpr std::size_t many_dwells = 64;
+constexpr std::size_t few_dwells = 16;
 
 // Spots as edges, sorted by dwell so that energies of a dwell are summed in one run.
 struct Box {
@@ -87,15 +88,17 @@ std::vector<Interval1> candidate_sides(const std::vector<Box>& boxes, double Box
     return sides;
 }
 
-// alpha_max of every stretch of time that the dwells of an image can make, those within half a percent as the smallest.
+// alpha_max of every stretch of time that the dwells of an image can make, those within half a percent (with many dwells
+// one percent) as the smallest.
 std::vector<double> side_limits(const TimePattern& pattern, const std::vector<Box>& boxes) {
-    constexpr double apart = 1.005;
+    double apart = 1.005;
     std::vector<double> limits{alpha_max(pattern.plan.pulse_width), short_side, widest_side};
     std::vector<double> starts;
     for (const Box& box : boxes) starts.push_back(pattern.plan.start[box.dwell]);
     starts = distinct(std::move(starts));
     const double period = pattern.plan.frame_period;
     if (starts.size() > few_dwells || period < 5e-3) {
+        if (starts.size() > many_dwells) apart = 1.01;
         for (double limit = short_side; limit < widest_side; limit *= apart) limits.push_back(limit);
     } else {
         for (double frames = 0; frames * period < 0.25; ++frames)
@@ -174,6 +177,14 @@ double overlap(double low, double high, double from, double to, double longest) 
     return both >= high - low ? 1 : both / (high - low);
 }
 
+// Bounds on the size of a family of windows.
+PartSize size_of_family(double shortest_u, double longest_u, double shortest_v, double longest_v, double whole) {
+    return {.subtense = (clamped(shortest_u) + clamped(shortest_v)) / 2,
+            .largest_subtense = (std::max(longest_u, alpha_min) + std::max(longest_v, alpha_min)) / 2,
+            .side = std::max(shortest_u, shortest_v),
+            .whole_subtense = whole};
+}
+
 // A family of windows: a node of each tree, and the boxes that its windows can touch.
 struct Family {
     int side_u, side_v;
@@ -194,12 +205,22 @@ public:
     WindowSearch run() {
         Family root{.side_u = 0, .side_v = 0, .members = std::vector<int>(boxes_.size()), .excess = 0, .bound = {}};
         for (std::size_t i = 0; i < boxes_.size(); ++i) root.members[i] = static_cast<int>(i);
-        push(std::move(root));
+        if (weigh(root)) open_.push_back(std::move(root));
+        // Straight down to a good window of each criterion: with something known most families are dropped at once.
+        for (std::size_t c = 0; c < 4; ++c) dive(c);
+        std::ranges::make_heap(open_, LessPromising{});
         while (!open_.empty()) {
-            const Family family = open_.top();
-            open_.pop();
-            if (promise(family.bound) <= 1 + slack_) drop(family.bound);
-            else split(family);
+            std::ranges::pop_heap(open_, LessPromising{});
+            const Family family = std::move(open_.back());
+            open_.pop_back();
+            if (promise(family.bound) <= 1 + slack_) {
+                drop(family.bound);
+                continue;
+            }
+            for (Family& half : halves(family)) {
+                open_.push_back(std::move(half));
+                std::ranges::push_heap(open_, LessPromising{});
+            }
         }
         return std::move(found_);
     }
@@ -223,25 +244,39 @@ private:
         for (std::size_t c = 0; c < 4; ++c) found_.bound[c] = std::max(found_.bound[c], bound[c]);
     }
 
-    void push(Family family) {
+    // Bounds a family; false when it need not be looked into any more, or is a single window, which is then kept.
+    bool weigh(Family& family) {
         const SideTree::Node u = tree_u_[family.side_u], v = tree_v_[family.side_v];
         ++found_.nodes;
         gather(family.members, u, v);
-        if (energies_.empty()) return;
-        const Window around{u.low, u.high, v.low, v.high};
-        const PartSize size{.subtense = (clamped(u.shortest) + clamped(v.shortest)) / 2,
-                            .largest_subtense = (std::max(u.longest, alpha_min) + std::max(v.longest, alpha_min)) / 2,
-                            .side = std::max(u.shortest, v.shortest),
-                            .whole_subtense = whole_};
+        if (energies_.empty()) return false;
+        PartSize size = size_of_family(u.shortest, u.longest, v.shortest, v.longest, whole_);
+        size.family = u.count > 1 || v.count > 1;
         const TimedRatios ratios = worst_over_time(pattern_, energies_, size, known_);
         if (u.count == 1 && v.count == 1) {
-            keep(around, ratios, size.subtense);
-            return;
+            keep({u.low, u.high, v.low, v.high}, ratios, size.subtense);
+            return false;
         }
         for (std::size_t c = 0; c < 4; ++c) family.bound[c] = ratios[c].ratio;
         family.excess = promise(family.bound);
-        if (family.excess <= 1 + slack_) drop(family.bound);
-        else open_.push(std::move(family));
+        if (family.excess > 1 + slack_) return true;
+        drop(family.bound);
+        return false;
+    }
+
+    void dive(std::size_t c) {
+        if (open_.empty()) return;
+        const auto best = std::ranges::max_element(open_, {}, [c](const Family& family) { return family.bound[c]; });
+        Family family = std::move(*best);
+        open_.erase(best);
+        while (true) {
+            std::vector<Family> pair = halves(family);
+            if (pair.empty()) return;
+            std::ranges::sort(pair, {}, [c](const Family& half) { return half.bound[c]; });
+            family = std::move(pair.back());
+            pair.pop_back();
+            std::ranges::move(pair, std::back_inserter(open_));
+        }
     }
 
     // Most energy by dwell, in time order, that a window of the family can hold, as if its limit were that of the
@@ -277,12 +312,13 @@ private:
         }
     }
 
-    // Splits the side whose family is wider than its windows by more.
-    void split(const Family& family) {
+    // Divides the side whose family is wider than its windows by more; halves that need not be looked into are left out.
+    std::vector<Family> halves(const Family& family) {
         const SideTree::Node u = tree_u_[family.side_u], v = tree_v_[family.side_v];
         const double loose_u = u.count == 1 ? -1 : (u.high - u.low) / u.shortest, loose_v = v.count == 1 ? -1 : (v.high - v.low) / v.shortest;
         const bool along_u = loose_u >= loose_v;
         const int left = along_u ? tree_u_.children(family.side_u) : tree_v_.children(family.side_v);
+        std::vector<Family> pair;
         for (const int child : {left, left + 1}) {
             Family half{.side_u = along_u ? child : family.side_u, .side_v = along_u ? family.side_v : child, .members = {}, .excess = 0, .bound = {}};
             const SideTree::Node &hu = tree_u_[half.side_u], &hv = tree_v_[half.side_v];
@@ -290,8 +326,9 @@ private:
                 const Box& box = boxes_[i];
                 if (box.high_u > hu.low && box.low_u < hu.high && box.high_v > hv.low && box.low_v < hv.high) half.members.push_back(i);
             }
-            if (!half.members.empty()) push(std::move(half));
+            if (!half.members.empty() && weigh(half)) pair.push_back(std::move(half));
         }
+        return pair;
     }
 
     const TimePattern& pattern_;
@@ -302,14 +339,39 @@ private:
     Ratios known_;
     WindowSearch found_;
     std::vector<DwellEnergy> energies_;
-    std::priority_queue<Family, std::vector<Family>, LessPromising> open_;
+    std::vector<Family> open_;  // a heap once the search has begun
 };
+
+// Whether all of an image, over the limit of the smallest part, exceeds what is known.
+bool matters(const TimePattern& pattern, const std::vector<Box>& boxes, const Ratios& floor, double slack) {
+    double low_u = 1e9, high_u = -1e9, low_v = 1e9, high_v = -1e9;
+    for (const Box& box : boxes) {
+        low_u = std::min(low_u, box.low_u), high_u = std::max(high_u, box.high_u);
+        low_v = std::min(low_v, box.low_v), high_v = std::max(high_v, box.high_v);
+    }
+    const auto longest = [](double extent) { return std::clamp(extent, alpha_min, widest_side); };
+    const double longest_u = longest(high_u - low_u), longest_v = longest(high_v - low_v);
+    std::vector<DwellEnergy> energies;
+    for (const Box& box : boxes) {
+        const double share = std::min(1.0, longest_u / (box.high_u - box.low_u)) * std::min(1.0, longest_v / (box.high_v - box.low_v));
+        const double best_u = std::clamp(box.high_u - box.low_u, alpha_min, longest_u), best_v = std::clamp(box.high_v - box.low_v, alpha_min, longest_v);
+        const double factor = growth_of_limit(alpha_min) / growth_of_limit((best_u + best_v) / 2);
+        if (energies.empty() || energies.back().dwell != box.dwell) energies.push_back({box.dwell, 0});
+        energies.back().energy += share * factor * box.energy;
+    }
+    const double whole = (std::max(high_u - low_u, alpha_min) + std::max(high_v - low_v, alpha_min)) / 2;
+    const TimedRatios worst = worst_over_time(pattern, energies, size_of_family(alpha_min, longest_u, alpha_min, longest_v, whole), floor);
+    for (std::size_t c = 0; c < 4; ++c)
+        if (worst[c].ratio > floor[c] * (1 + slack)) return true;
+    return false;
+}
 
 }  // namespace
 
 WindowSearch search_windows(const TimePattern& pattern, std::span<const Spot> spots, std::span<const int> dwell_of_zone, const Ratios& floor, double slack) {
     if (spots.empty()) return {};
     std::vector<Box> boxes = boxes_of(spots, dwell_of_zone);
+    if (!matters(pattern, boxes, floor, slack)) return {};
     snap_edges(boxes);
     WindowSearch found = Search(pattern, boxes, floor, slack).run();
     for (ImagePart& part : found.parts) {

@@ -48,6 +48,18 @@ TEST_CASE("several zones at once share dwells, the last may hold fewer") {
     CHECK(std::set<int>(fired.begin(), fired.end()).size() == 16);
 }
 
+TEST_CASE("the zones of a dwell are neighbours in the firing order, not in number") {
+    Design design = small_design();
+    design.firing.order = FiringOrder::stride;
+    design.firing.stride = 5;
+    design.firing.zones_at_once = 3;
+    const FiringPlan plan = plan_of(design);
+    CHECK(plan.zones == std::vector<int>{0, 5, 10, 15, 1, 6, 11, 2, 7, 12, 3, 8, 13, 4, 9, 14});
+    CHECK(plan.zones_of(1)[0] == 15);
+    CHECK(plan.zones_of(1)[1] == 1);
+    CHECK(plan.zones_of(1)[2] == 6);
+}
+
 TEST_CASE("average power is energy a frame over the frame period") {
     const Design design = small_design();
     const EmitterArray array = build_array(design.emitters, FieldSense::upright, "");
@@ -75,4 +87,10 @@ TEST_CASE("a matrix fires only products of rows and columns") {
         design.firing.zones_at_once = at_once;
         CHECK(plan_of(design).dwells() == 16 / at_once);
     }
+    design.firing.zones_at_once = 2;
+    design.firing.order = FiringOrder::serpentine;  // 0 1, 2 3, 7 6, ...: pairs in one row
+    CHECK(plan_of(design).dwells() == 8);
+    design.firing.order = FiringOrder::farthest_next;  // opposite corners need two row and two column lines
+    CHECK_THROWS_WITH_AS((void)plan_of(design), doctest::Contains("cannot fire the 2 zones of dwell 0 alone"),
+                         Error);
 }

@@ -1,327 +1,316 @@
-// The independent evaluator: time, parts and criteria by plain loops.
+// The independent evaluator: parts and criteria by plain loops.
 #include "brute_force.h"
+#include "brute_limits.h"
 
 #include <fmt/format.h>
 #include <algorithm>
 #include <array>
 #include <cmath>
-#include <set>
 
 namespace glint::test {
 namespace {
 
-constexpr double mrad = 1e-3;
-constexpr double smallest_side = 1.5 * mrad, largest_side = 100 * mrad;  // alpha_min; alpha_max from 0.25 s on
-constexpr double equal = 1e-9;  // share by which times and sides may differ and still be the same
 // Beyond so many frames a part of a frame is less than 2e-4 of all energy, and only fixed durations are tried.
 constexpr double many_frames = 5000;
+constexpr double largest_of_pulses = 5e-3;  // alpha_max of single pulses and groups [rad]
 
-double nanometres(double wavelength) { return wavelength * 1e9; }
-
-double alpha_max_of(double t) { return std::clamp(200 * std::sqrt(t), 5.0, 100.0) * mrad; }
-
-double shortest_of(double side) {
-    const double longest = std::max(0.0, side * (1 - equal) / (200 * mrad));
-    return side <= 5 * mrad * (1 + equal) ? 0 : longest * longest;
-}
-
-double T2_of(double subtense) {
-    return 10 * std::pow(10.0, (std::clamp(subtense / mrad, 1.5, 100.0) - 1.5) / 98.5);
-}
-
-double Ti_of(double wavelength) { return nanometres(wavelength) < 1050 ? 5e-6 : 13e-6; }
-
-// Coefficients of the Class 1 cells for a point: below Ti [J], times t^0.75 to 10 s [J], beyond for a point [W].
-struct Cells {
-    double flat, rising, watt;
-};
-
-Cells cells_of(double wavelength) {
-    const double nm = nanometres(wavelength);
-    const double C4 = nm < 700 ? 1 : nm < 1050 ? std::pow(10.0, 0.002 * (nm - 700)) : 5;
-    const double C7 = nm < 1150   ? 1
-                      : nm < 1200 ? std::pow(10.0, 0.018 * (nm - 1150))
-                                  : 8 + std::pow(10.0, 0.04 * (nm - 1250));
-    if (nm < 1050) return {7.7e-8 * C4, 7e-4 * C4, 3.9e-4 * C4};
-    return {7.7e-7 * C7, 3.5e-3 * C7, 3.9e-4 * C4 * C7};
-}
-
-double power_075(double t) { return std::sqrt(t) * std::sqrt(std::sqrt(t)); }
-
-// 1e-11 s and longer.
-double limit_of(const Cells& cells, double Ti, double t, double subtense) {
-    const double C6 = std::max(1.0, subtense / smallest_side);
-    if (t < Ti * (1 - equal)) return cells.flat * C6;
-    const double rising = cells.rising * power_075(t) * C6;
-    if (t <= Ti * (1 + equal)) return std::min(cells.flat * C6, rising);
-    if (t < 10 * (1 - equal)) return rising;
-    double limit = t <= 10 * (1 + equal) ? rising : 1e300;
-    if (subtense <= smallest_side * (1 + equal)) return std::min(limit, cells.watt * t);
-    const double T2 = T2_of(subtense);
-    if (t <= T2) return rising;
-    return std::min(limit, cells.rising * C6 * t / std::sqrt(std::sqrt(T2)));
-}
-
-// One stretch of the axis across or up, and how much of each spot it covers.
-struct Stretch {
+// One piece of the axis across or up, and how much of each spot it covers.
+struct Piece {
     double from, to;
     std::vector<double> covered;
     [[nodiscard]] double side() const { return std::max(smallest_side, to - from); }
 };
 
-// Every stretch that begins and ends at an edge of a spot or at one of a few places between, and those that have one
-// end there and one of the given lengths. What is shorter than alpha_min lies in one that is as long.
-std::vector<Stretch> stretches(const std::vector<BruteSpot>& image, int axis, const std::vector<double>& lengths) {
-    std::vector<double> places;
+// Every piece that begins and ends at an edge of a spot or at one of a few places between, and those that have one end
+// there and one of the given lengths. What is shorter than alpha_min lies in one that is as long.
+std::vector<Piece> pieces(const std::vector<BruteSpot>& image, int axis, const std::vector<double>& lengths) {
+    std::vector<double> begins, ends;
     double narrowest = 1e300;
     for (const BruteSpot& spot : image) {
-        places.push_back(spot.low[axis]), places.push_back(spot.high[axis]);
+        begins.push_back(spot.low[axis]), ends.push_back(spot.high[axis]);
         narrowest = std::min(narrowest, spot.high[axis] - spot.low[axis]);
     }
-    std::ranges::sort(places);
-    const double first = places.front(), last = places.back(), whole = last - first;
-    const auto thin_out = [&](double apart) {
-        std::ranges::sort(places);
-        places.erase(std::unique(places.begin(), places.end(), [&](double a, double b) { return b - a < apart; }),
-                     places.end());
-    };
-    thin_out(2e-4 * narrowest);
-    for (int i = 1; i < 5; ++i) places.push_back(first + whole * i / 5);
-    std::ranges::sort(places);
+    const double first = *std::ranges::min_element(begins), last = *std::ranges::max_element(ends), whole = last - first;
+    // Of many spots, parts that begin where a spot ends, or end where one begins, are left out.
+    if (image.size() <= 16) {
+        begins.insert(begins.end(), ends.begin(), ends.end());
+        ends = begins;
+    }
+    for (std::vector<double>* places : {&begins, &ends}) {
+        for (int i = 0; i <= 5; ++i) places->push_back(first + whole * i / 5);
+        std::ranges::sort(*places);
+        const auto same = [&](double p, double q) { return q - p < 2e-4 * narrowest; };
+        places->erase(std::unique(places->begin(), places->end(), same), places->end());
+    }
 
-    std::vector<Stretch> found;
+    std::vector<Piece> found;
     const auto add = [&](double from, double to) { found.push_back({from, to, {}}); };
-    for (const double from : places)
-        for (const double to : places)
-            if (to - from >= smallest_side && to - from <= largest_side) add(from, to);
-    std::set<double> tried;
+    for (const double from : begins)
+        for (const double to : ends)
+            if (to - from >= smallest_side && to - from <= brute_alpha_max(1)) add(from, to);
     for (const double length : lengths) {
-        if (!tried.insert(length).second) continue;
         if (length >= whole) {
             add(first, first + length);
             break;  // longer ones hold nothing more
         }
-        for (const double at : places) {
-            if (at + length <= last) add(at, at + length);
-            if (at - length >= first) add(at - length, at);
-        }
+        for (const double from : begins)
+            if (from + length <= last + 1e-9 * whole) add(from, from + length);
+        for (const double to : ends)
+            if (to - length >= first - 1e-9 * whole) add(to - length, to);
     }
-    std::ranges::sort(found, [](const Stretch& a, const Stretch& b) {
-        return a.from != b.from ? a.from < b.from : a.to < b.to;
-    });
-    found.erase(std::unique(found.begin(), found.end(),
-                            [](const Stretch& a, const Stretch& b) { return a.from == b.from && a.to == b.to; }),
-                found.end());
-    for (Stretch& stretch : found)
-        for (const BruteSpot& spot : image)
-            stretch.covered.push_back(std::clamp((std::min(stretch.to, spot.high[axis]) -
-                                                  std::max(stretch.from, spot.low[axis])) /
-                                                     (spot.high[axis] - spot.low[axis]),
-                                                 0.0, 1.0));
+    const auto both_ends = [](const Piece& piece) { return std::pair(piece.from, piece.to); };
+    std::ranges::sort(found, {}, both_ends);
+    const auto repeated = std::ranges::unique(found, {}, both_ends);
+    found.erase(repeated.begin(), repeated.end());
+    for (Piece& piece : found)
+        for (const BruteSpot& spot : image) {
+            const double inside = std::min(piece.to, spot.high[axis]) - std::max(piece.from, spot.low[axis]);
+            piece.covered.push_back(std::max(0.0, inside) / (spot.high[axis] - spot.low[axis]));
+        }
     return found;
 }
 
-// What a part holds.
 struct Part {
-    const Stretch *across, *up;
-    double subtense, shortest;      // [rad], [s]
-    double strongest = 0, all = 0;  // energy of a pulse of the strongest dwell, of all pulses of a frame [J]
-    double bound = 0;
+    const Piece *across, *up;
+    double bound = 0;  // no criterion reaches more
+};
+
+struct Pulse {
+    double start, energy;
 };
 
 class Judge {
 public:
     Judge(const BrutePlan& plan, const std::vector<BruteSpot>& image)
-        : plan_(plan), image_(image), cells_(cells_of(plan.wavelength)), dwell_energy_(plan.groups_of_dwell.size()),
-          shots_(plan.groups_of_dwell.size()) {
+        : plan_(plan), image_(image), cells_(brute_cells(plan.wavelength)), energies_(plan.shots_of_dwell.size()) {
         Vec2 low = image.front().low, high = image.front().high;
         for (const BruteSpot& spot : image) low = low.cwiseMin(spot.low), high = high.cwiseMax(spot.high);
-        const Vec2 sides = (high - low).cwiseMax(smallest_side);
-        whole_subtense_ = sides.mean();
-        for (const BrutePlan::Pulse& pulse : plan.pulses) ++shots_[pulse.dwell];
-        most_in_group_ = most_within(plan.pulses, plan.group_time);
-        double N = 0;
-        for (const int groups : plan.groups_of_dwell) N += groups;
-        N *= std::ceil(std::min(100.0, plan.time_base) / plan.frame);
-        // Parts of single pulses are at most 5 mrad.
-        least_C5_ = std::min(C5(5 * mrad, N), C5(whole_subtense_, N));
+        whole_subtense_ = (high - low).cwiseMax(smallest_side).mean();
+#ifdef PAD
+        low = high = (image.front().low + image.front().high) / 2;
+        for (const BruteSpot& spot : image) { Vec2 m = (spot.low+spot.high)/2, h = (spot.high-spot.low).cwiseMax(smallest_side)/2; low = low.cwiseMin(m-h), high = high.cwiseMax(m+h); }
+        whole_subtense_ = (high - low).mean();
+#endif
     }
 
-    [[nodiscard]] BruteWorst worst() {
-        const std::vector<Stretch> across = stretches(image_, 0, plan_.lengths);
-        const std::vector<Stretch> up = stretches(image_, 1, plan_.lengths);
-        std::vector<Part> parts;
-        for (const Stretch& a : across)
-            for (const Stretch& u : up) parts.push_back(part(a, u));
-        std::ranges::sort(parts, std::greater{}, &Part::bound);
-        for (const Part& p : parts) {
-            if (p.bound <= worst_.ratio) break;  // and so are all that follow
-            ++worst_.windows;
-            judge(p);
+    // Parts in the order of what they could reach at most: first all of one piece across, then one by one.
+    BruteWorst worst() {
+        const std::vector<Piece> across = pieces(image_, 0, plan_.lengths), up = pieces(image_, 1, plan_.lengths);
+        const Piece any{0, 0, std::vector<double>(image_.size(), 1.0)};
+        worst_.parts = static_cast<long>(across.size() * up.size());
+        std::vector<Part> families, parts;
+        for (const Piece& a : across) families.push_back({&a, &any, bound(a, any, largest_of_pulses)});
+        std::ranges::sort(families, std::greater{}, &Part::bound);
+        for (const Part& family : families) {
+            if (family.bound <= worst_.ratio) break;
+            parts.clear();
+            for (const Piece& u : up) parts.push_back({family.across, &u, bound(*family.across, u, 0)});
+            std::ranges::sort(parts, std::greater{}, &Part::bound);
+            for (const Part& part : parts) {
+                if (part.bound <= worst_.ratio) break;
+                ++worst_.tried;
+                gather(*part.across, *part.up);
+                judge(part);
+            }
         }
         return worst_;
     }
 
 private:
-    [[nodiscard]] double C5(double subtense, double N) const {
-        return brute_C5(plan_.wavelength, plan_.pulse_width, subtense, N, plan_.time_base);
-    }
-    [[nodiscard]] double limit(double t, double subtense) const {
-        return limit_of(cells_, plan_.group_time, t, subtense);
-    }
-
-    static int most_within(const std::vector<BrutePlan::Pulse>& pulses, double time) {
-        int most = 0;
-        for (std::size_t i = 0, j = 0; i < pulses.size(); ++i) {
-            while (j < pulses.size() && pulses[j].start <= pulses[i].start + time * (1 + equal)) ++j;
-            most = std::max(most, static_cast<int>(j - i));
-        }
-        return most;
-    }
-
-    void gather(const Stretch& across, const Stretch& up) {
-        std::ranges::fill(dwell_energy_, 0.0);
+    // What the dwells send into a part, and how it counts.
+    void gather(const Piece& across, const Piece& up) {
+        subtense_ = (across.side() + up.side()) / 2;
+        shortest_ = brute_shortest(std::max(across.side(), up.side()));
+        std::ranges::fill(energies_, 0.0);
         for (std::size_t s = 0; s < image_.size(); ++s) {
             const double energy = image_[s].energy * across.covered[s] * up.covered[s];
             if (energy > 0)
-                for (const int dwell : plan_.dwells_of_zone[image_[s].zone]) dwell_energy_[dwell] += energy;
+                for (const int dwell : plan_.dwells_of_zone[image_[s].zone]) energies_[dwell] += energy;
         }
+        strongest_ = *std::ranges::max_element(energies_);
+        frame_ = 0;
+        for (std::size_t d = 0; d < energies_.size(); ++d) frame_ += energies_[d] * plan_.shots_of_dwell[d];
     }
 
-    Part part(const Stretch& across, const Stretch& up) {
-        Part p{&across, &up, (across.side() + up.side()) / 2, shortest_of(std::max(across.side(), up.side()))};
-        gather(across, up);
+    double limit(double t) const { return brute_limit(cells_, t, subtense_); }
+
+    // N of all dwells that send something into the part, over T2 of its subtense.
+    double pulses_counted(double subtense) const {
+        double groups = 0;
+        for (std::size_t d = 0; d < energies_.size(); ++d)
+            if (energies_[d] > 0) groups += plan_.groups_of_dwell[d];
+        return groups * std::ceil(std::min(brute_T2(subtense), plan_.time_base) / plan_.frame * (1 - equal_share));
+    }
+
+    double C5(double N) const {
+        const auto of = [&](double subtense) {
+            return brute_C5(plan_.wavelength, plan_.pulse_width, subtense, N, plan_.time_base);
+        };
+        return std::min(of(subtense_), of(whole_subtense_));
+    }
+
+    // What no emission of the part under test exceeds: pulses and groups; averages within a frame; longer ones. Nor of any
+    // larger part with the same energies, when N is counted for the largest subtense.
+    struct Bounds {
+        double pulse = 0, within = 0, longer = 0;
+    };
+    Bounds bounds(double largest_subtense) const {
+        if (strongest_ <= 0) return {};
+        const double C6 = subtense_ / smallest_side, F = plan_.frame;
         double one_shot = 0;
-        for (std::size_t d = 0; d < dwell_energy_.size(); ++d) {
-            p.strongest = std::max(p.strongest, dwell_energy_[d]);
-            one_shot += dwell_energy_[d];
-            p.all += dwell_energy_[d] * shots_[d];
-        }
-        const double C6 = p.subtense / smallest_side;
-        // Single, group and train.
-        if (p.shortest == 0)
-            p.bound = p.strongest *
-                      std::max(1 / limit(plan_.pulse_width, p.subtense),
-                               most_in_group_ / limit(plan_.group_time, p.subtense)) / least_C5_;
-        // Average within about a frame: bounds are sorted from the longest duration to the shortest.
-        const auto bound = std::ranges::partition_point(
-            plan_.bounds, [&](const BrutePlan::Bound& b) { return b.duration >= p.shortest * (1 - equal); });
-        if (bound != plan_.bounds.begin())
-            p.bound = std::max(p.bound, std::min(p.strongest * (bound - 1)->any_dwells,
-                                                 one_shot * (bound - 1)->one_dwell) / C6);
-        // Average over more than a frame: up to one frame more than T holds, over a limit that is nowhere less than 99 % of
-        // rising T^0.75 to T2. (1 + T/F)/T^0.75 is largest at an end.
-        const double ends[] = {std::max(plan_.frame, p.shortest), std::min(T2_of(p.subtense), plan_.time_base)};
-        for (const double T : ends)
-            p.bound = std::max(p.bound, p.all * (1 + T / plan_.frame) / (0.99 * cells_.rising * C6 * power_075(T)));
-        return p;
+        for (const double energy : energies_) one_shot += energy;
+        const auto most = [&](double all, double one) { return std::min(strongest_ * all, one_shot * one); };
+        Bounds bounds;
+        if (shortest_ == 0)
+            bounds.pulse = std::max(strongest_ / limit(plan_.pulse_width),
+                                    most(plan_.most_in_group, plan_.most_of_one_in_group) / limit(cells_.Ti)) /
+                           C5(pulses_counted(std::max(subtense_, largest_subtense)));
+        // From the longest stretch shorter than `shortest` on.
+        const auto above = std::ranges::lower_bound(plan_.stretches, shortest_ * (1 - equal_share), {},
+                                                    &BrutePlan::Stretch::duration);
+        if (above != plan_.stretches.end())
+            bounds.within = most(above->all_over_limit, above->one_over_limit) / C6;
+        if (above != plan_.stretches.begin())
+            bounds.within = std::max(bounds.within, most((above - 1)->all_dwells, (above - 1)->one_dwell) / limit(shortest_));
+        // At most one frame more than there is room for. The limit is nowhere below 99 % of rising t^0.75 to T2, and
+        // (1 + t/F)/t^0.75 is largest at an end.
+        for (const double t : {std::max(F, shortest_), std::max(F, std::min(brute_T2(subtense_), plan_.time_base))})
+            bounds.longer = std::max(bounds.longer, frame_ * (1 + t / F) / (0.99 * cells_.rising * C6 * std::pow(t, 0.75)));
+        return bounds;
     }
 
-    void found(const Part& p, double ae, double ael, PulseCriterion criterion, double duration, double N = 1,
+    double bound(const Piece& across, const Piece& up, double largest_subtense) {
+        gather(across, up);
+        const Bounds b = bounds(largest_subtense);
+        return std::max({b.pulse, b.within, b.longer});
+    }
+
+    void found(const Part& part, double ae, double ael, PulseCriterion criterion, double duration, double N = 1,
                double factor = 1) {
         if (!(ae > worst_.ratio * ael * factor)) return;
-        const long windows = worst_.windows;
-        worst_ = {.ratio = ae / (ael * factor), .criterion = criterion, .duration = duration, .N = N, .C5 = factor,
-                  .low = Vec2(p.across->from, p.up->from), .high = Vec2(p.across->to, p.up->to),
-                  .subtense = p.subtense, .windows = windows};
+        worst_ = {.ratio = ae / (ael * factor),
+                  .criterion = criterion,
+                  .duration = duration,
+                  .N = N,
+                  .C5 = factor,
+                  .low = Vec2(part.across->from, part.up->from),
+                  .high = Vec2(part.across->to, part.up->to),
+                  .subtense = subtense_,
+                  .parts = worst_.parts,
+                  .tried = worst_.tried};
     }
 
-    void judge(const Part& p) {
-        gather(*p.across, *p.up);
+    void judge(const Part& part) {
         pulses_.clear();
         for (const BrutePlan::Pulse& pulse : plan_.pulses)
-            if (dwell_energy_[pulse.dwell] > 0) pulses_.push_back({pulse.start, dwell_energy_[pulse.dwell]});
-        if (pulses_.empty()) return;
-        const std::size_t n = pulses_.size();
-        for (std::size_t i = 0; i < n; ++i) pulses_.push_back({pulses_[i].start + plan_.frame, pulses_[i].energy});
-        if (p.shortest == 0) pulse_criteria(p);
-        average(p, n);
+            if (energies_[pulse.dwell] > 0) pulses_.push_back({pulse.start, energies_[pulse.dwell]});
+        const std::size_t count = pulses_.size();
+        for (std::size_t i = 0; i < count; ++i)
+            pulses_.push_back({pulses_[i].start + plan_.frame, pulses_[i].energy});
+        if (shortest_ == 0) pulse_criteria(part);
+        const Bounds b = bounds(0);
+        if (std::max(b.within, b.longer) <= worst_.ratio) return;
+        fixed_durations(part);
+        stretches(part, b.longer > worst_.ratio);
     }
 
-    // Most that starts within a time shorter than a frame; pulses start at any pulse.
+    // Most that starts within a time, which begins with any pulse.
     struct Most {
-        double energy = 0;
-        long pulses = 0;
+        double energy = 0, pulses = 0;
     };
-    [[nodiscard]] Most most_energy(std::size_t n, double time) const {
+    Most most_within(double time) const {
+        const std::size_t count = pulses_.size() / 2;
+        const double frames = std::floor(time / plan_.frame);
         Most most;
-        for (std::size_t i = 0; i < n; ++i) {
-            Most here;
-            for (std::size_t j = i; j < i + n && pulses_[j].start <= pulses_[i].start + time * (1 + equal); ++j)
+        for (std::size_t i = 0; i < count; ++i) {
+            Most here{frames * frame_, frames * static_cast<double>(count)};
+            const double end = pulses_[i].start + (time - frames * plan_.frame) * (1 + equal_share);
+            for (std::size_t j = i; j < i + count && pulses_[j].start <= end; ++j)
                 here.energy += pulses_[j].energy, ++here.pulses;
             if (here.energy > most.energy) most = here;
         }
         return most;
     }
 
-    void pulse_criteria(const Part& p) {
-        const double single = p.strongest / limit(plan_.pulse_width, p.subtense);
-        found(p, single, 1, PulseCriterion::single, plan_.pulse_width);
-        double emitted = single;
-        const double frames = std::floor(plan_.group_time / plan_.frame);
-        Most group = most_energy(pulses_.size() / 2, plan_.group_time - frames * plan_.frame);
-        group.energy += frames * p.all, group.pulses += static_cast<long>(frames);
-        if (group.pulses > 1) {
-            const double ratio = group.energy / limit(plan_.group_time, p.subtense);
-            found(p, ratio, 1, PulseCriterion::group, plan_.group_time);
-            emitted = std::max(emitted, ratio);
+    void pulse_criteria(const Part& part) {
+        double ratio = strongest_ / limit(plan_.pulse_width);
+        found(part, ratio, 1, PulseCriterion::single, plan_.pulse_width);
+        if (const Most group = most_within(cells_.Ti); group.pulses > 1) {
+            found(part, group.energy, limit(cells_.Ti), PulseCriterion::group, cells_.Ti);
+            ratio = std::max(ratio, group.energy / limit(cells_.Ti));
         }
-        double N = 0;
-        for (std::size_t d = 0; d < dwell_energy_.size(); ++d)
-            if (dwell_energy_[d] > 0) N += plan_.groups_of_dwell[d];
-        N *= std::ceil(std::min(T2_of(p.subtense), plan_.time_base) / plan_.frame);
-        const double factor = std::min(C5(p.subtense, N), C5(whole_subtense_, N));
-        found(p, emitted, 1, PulseCriterion::train, plan_.pulse_width, N, factor);
+        const double N = pulses_counted(subtense_);
+        found(part, ratio, 1, PulseCriterion::train, plan_.pulse_width, N, C5(N));
     }
 
-    void average(const Part& p, std::size_t n) {
-        const double F = plan_.frame, T2 = T2_of(p.subtense);
-        const std::array bends{p.shortest, plan_.group_time, 10.0, T2, plan_.time_base};
-        // From the start of a pulse to the end of another, with whole frames between.
-        const auto hold = [&](double energy, double T) {
-            if (T >= p.shortest && T <= plan_.time_base * (1 + equal))
-                found(p, energy, limit(T, p.subtense), PulseCriterion::average, T);
+    // From the start of a pulse to the end of another, with whole frames between: the fewest, and as many as there are
+    // just before and after every bend of the limit.
+    void stretches(const Part& part, bool with_frames) {
+        const double F = plan_.frame;
+        const auto hold = [&](double energy, double t) {
+            if (t >= shortest_ && t <= plan_.time_base * (1 + equal_share))
+                found(part, energy, limit(t), PulseCriterion::average, t);
         };
-        for (std::size_t i = 0; i < n; ++i) {
+        const std::array bends{shortest_, cells_.Ti, 10.0, brute_T2(subtense_), plan_.time_base};
+        const std::size_t count = pulses_.size() / 2;
+        for (std::size_t i = 0; i < count; ++i) {
             double energy = 0;
-            for (std::size_t j = i; j < i + n; ++j) {
+            for (std::size_t j = i; j < i + count; ++j) {
                 energy += pulses_[j].energy;
-                const double T = pulses_[j].start + plan_.pulse_width - pulses_[i].start;
-                if (j > i) hold(energy, T);
-                for (int k = 1; k <= 3; ++k) hold(energy + k * p.all, T + k * F);
+                const double t = pulses_[j].start + plan_.pulse_width - pulses_[i].start;
+                if (j > i) hold(energy, t);
+                if (!with_frames) continue;
+                for (int k = 1; k <= 3; ++k) hold(energy + k * frame_, t + k * F);
                 for (const double bend : bends) {
-                    const double k = std::floor((bend - T) / F);
-                    if (k > many_frames) continue;
-                    if (k > 0) hold(energy + k * p.all, T + k * F);
-                    if (k > -1) hold(energy + (k + 1) * p.all, T + (k + 1) * F);
+                    const double k = std::floor((bend - t) / F);
+                    if (k < 0 || k > many_frames) continue;
+                    if (k > 3) hold(energy + k * frame_, t + k * F);
+                    if (k > 2) hold(energy + (k + 1) * frame_, t + (k + 1) * F);
                 }
             }
         }
-        // Fixed durations, and whole frames.
-        std::vector<double> fixed(bends.begin(), bends.end());
-        for (const double T : {10.0, T2, plan_.time_base}) fixed.push_back(F * std::floor(T / F));
-        for (const double T : fixed) {
-            if (!(T >= p.shortest && T > 0 && T <= plan_.time_base)) continue;
-            const double k = std::floor(T / F);
-            const Most most = most_energy(n, T - k * F);
-            if (most.pulses + k < 2) continue;  // the average starts with a pair
-            found(p, most.energy + k * p.all, limit(T, p.subtense), PulseCriterion::average, T);
-        }
     }
 
-    struct Emitted {
-        double start, energy;
-    };
+    void fixed_durations(const Part& part) {
+        const double F = plan_.frame;
+        for (const double bend : {shortest_, cells_.Ti, 10.0, brute_T2(subtense_), plan_.time_base})
+            for (const double t : {bend, F * std::floor(bend / F)}) {
+                if (!(t >= shortest_ && t > 0 && t <= plan_.time_base)) continue;
+                // A pulse counts whole, so the duration has to hold one.
+                if (t >= plan_.pulse_width)
+                    found(part, most_within(t).energy, limit(t), PulseCriterion::average, t);
+            }
+    }
+
     const BrutePlan& plan_;
     const std::vector<BruteSpot>& image_;
-    Cells cells_;
+    BruteCells cells_;
     double whole_subtense_ = 0;
-    double least_C5_ = 1;
-    int most_in_group_ = 1;
-    std::vector<double> dwell_energy_;
-    std::vector<int> shots_;
-    std::vector<Emitted> pulses_;  // that reach the part, two frames
     BruteWorst worst_;
+    // Of the part under test:
+    std::vector<double> energies_;                  // of a pulse of each dwell [J]
+    double strongest_ = 0, frame_ = 0;              // of a pulse, of a frame [J]
+    double subtense_ = smallest_side, shortest_ = 0;  // [rad], shortest duration its side allows [s]
+    std::vector<Pulse> pulses_;                     // of two frames
 };
 
 }  // namespace
+
+BruteWorst brute_force(const BrutePlan& plan, const std::vector<BruteSpot>& image) {
+    return image.empty() ? BruteWorst{} : Judge(plan, image).worst();
+}
+
+double brute_force_ratio(const Beams& beams, const FiringPlan& plan, const BruteEye& eye, double wavelength,
+                         double time_base) {
+    return brute_force(brute_plan(plan, wavelength, time_base), brute_image(beams, eye, plan.pulse_width)).ratio;
+}
+
+std::string describe(const BruteWorst& worst) {
+    return fmt::format("ratio {:.6g}, {}, {:.6g} s, N {}, C5 {:.4g}, {:.6g} mrad, part {:.6g} to {:.6g} by {:.6g} to {:.6g} mrad, "
+                       "{} of {} parts tried",
+                       worst.ratio, name_of(worst.criterion), worst.duration, worst.N, worst.C5, worst.subtense * 1e3,
+                       worst.low.x() * 1e3, worst.high.x() * 1e3, worst.low.y() * 1e3, worst.high.y() * 1e3,
+                       worst.tried, worst.parts);
+}
+
+}  // namespace glint::test

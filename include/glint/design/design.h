@@ -66,11 +66,13 @@ struct DriveSettings {
     bool operator==(const DriveSettings&) const = default;
 };
 
-enum class FiringOrder { raster };
+enum class FiringOrder { raster, serpentine, stride, bit_reversed, farthest_next, shuffled };
 
 /// When which zone fires.
 struct Firing {
     FiringOrder order = FiringOrder::raster;
+    int stride = 1;  ///< stride: zones from one that fires to the next
+    int seed = 1;    ///< shuffled
     int zones_at_once = 1;
     int shots = 1;                       ///< per dwell
     double repetition = 0;               ///< of the shots of a dwell [Hz]

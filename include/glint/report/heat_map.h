@@ -16,6 +16,12 @@ struct CellGroup {
     Colour colour = palette::ink;
 };
 
+/// A rectangle, or a place when low = high, with a word beside it.
+struct MapMark {
+    Vec2 low = Vec2::Zero(), high = Vec2::Zero();  ///< axis units; cut at the edge of the map
+    std::string text;                              ///< over it, or under it without room there
+};
+
 struct HeatMap {
     Heading heading;
     std::size_t rows = 0, columns = 0;
@@ -24,6 +30,7 @@ struct HeatMap {
     Axis vertical;               ///< range: bottom edge of the last row to top edge of row 0
     ColourScale colours;
     std::vector<CellGroup> groups;
+    std::vector<MapMark> marks;
     std::string no_data = "no data";  ///< legend text, shown when a value is NaN
     bool equal_units = false;         ///< one unit is as long across as up
     PageSize size;

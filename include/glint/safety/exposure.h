@@ -19,6 +19,9 @@ struct LightSource {
 /// Light of an array through its optics. Errors: those of project().
 [[nodiscard]] LightSource light_source(const Design& design, const EmitterArray& array, const FiringPlan& plan);
 
+/// Ratio that a search may find while no place, focus or part exceeds the limit.
+[[nodiscard]] double limit_of_search(const LightSource& light);
+
 /// Against what the light is held.
 struct ExposureQuestion {
     LaserClass laser_class = LaserClass::class_1;  ///< not Class 4

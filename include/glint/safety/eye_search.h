@@ -33,18 +33,28 @@ struct SearchWork {
 
 /// Share by which what a search drops may exceed what it found.
 inline constexpr double search_slack = 0.01;
-/// Factor on every ratio found, so that no place, focus or part gives more: the slack of the search, and half a percent
-/// for places between those of the raster and for edges of spots taken as one.
-inline constexpr double search_allowance = 1 + search_slack + 0.005;
+/// The same for arrays of more than 1024 beams that all go the same way: their images hold every beam, and searching them
+/// as closely would take minutes.
+inline constexpr double search_slack_of_many = 0.1;
+/// Factor on a ratio found, so that no place, focus or part gives more: the slack of the search, and half a percent for
+/// places between those of the raster and for edges of spots taken as one.
+[[nodiscard]] constexpr double allowance_for(double slack) { return 1 + slack + 0.005; }
+/// Slack of a search of a field.
+[[nodiscard]] double slack_for(const FarField& field);
+/// The usual factor.
+inline constexpr double search_allowance = allowance_for(search_slack);
 
 /// What has been found so far, by one search or by several that build on each other.
 struct EyeSearch {
     EyeCases worst;
     Ratios known{};  ///< ratios that need not be found again; as found, without the allowance
+    double slack = search_slack;
     SearchWork work;
 
     /// Largest ratio of all criteria, without the allowance.
     [[nodiscard]] double worst_ratio() const;
+    /// Largest ratio that any place, focus and part can give.
+    [[nodiscard]] double bound() const { return worst_ratio() * allowance_for(slack); }
 };
 
 /// Where and against what to look.
