@@ -15,7 +15,7 @@ constexpr double narrowest_view = 6e-3, widest_view = 110e-3;  // rad
 constexpr double least_cells = 320, most_cells = 480;          // of the image, along its longer side
 constexpr double cells_of_spot = 6;                            // along the narrowest spot, where they suffice
 constexpr int curve_points = 600;
-constexpr double most_cells_of_map = 61, fewest_cells_of_map = 25;  // along its longer side
+constexpr double most_cells_of_map = 61, fewest_cells_of_map = 13;  // along its longer side
 constexpr double many_beams = 100;     // in an image: beyond them the map is coarser, to save time
 constexpr double coarse_cells = 40;    // of a first look at where light goes
 constexpr double least_of_map = 0.01;  // of the governing ratio: not looked for; of the light: not shown

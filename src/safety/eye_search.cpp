@@ -61,6 +61,8 @@ public:
         radius_ = at.aperture / 2;
         nearest_ = std::max(at.distance, question.closest_access);
         per_energy_ = ratios_of(worst_over_time(pattern_, std::array{DwellEnergy{.dwell = 0, .energy = 1}}, anything_as_point));
+        // A pulse alone makes no group, but it adds to one.
+        per_energy_[group] = std::max(per_energy_[group], 1 / pattern_.group_limit);
     }
 
     void everywhere() {

@@ -97,8 +97,11 @@ TimedRatio worst_single(const TimePattern& pattern, std::span<const DwellEnergy>
 }
 
 TimedRatio worst_group(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size) {
-    if (size.side > alpha_max(pattern.group_time) || pattern.plan.pulse_width > pattern.group_time || !counts(pattern, pattern.group_time)) return {};
-    const Within most = most_within(pattern, dwells, pattern.group_time);
+    if (shortest_duration(size.side) > pattern.group_time || pattern.plan.pulse_width > pattern.group_time || !counts(pattern, pattern.group_time)) return {};
+    const double frames = std::floor(pattern.group_time / pattern.plan.frame_period * (1 + 1e-12));
+    Within most = most_within(pattern, dwells, std::max(0.0, pattern.group_time - frames * pattern.plan.frame_period));
+    for (const DwellEnergy& dwell : dwells)
+        most.energy += frames * pattern.plan.shots * dwell.energy, most.pulses += frames * pattern.plan.shots;
     if (most.pulses <= 1) return {};
     return emission(pattern.group_time, most.pulses, most.energy, part_limit(pattern, pattern.group_time, pattern.group_limit, size.subtense, small_t2));
 }
@@ -155,6 +158,7 @@ TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> 
     return worst;
 }
 
+constexpr std::size_t few = 64;
 constexpr double coarse = 1.02;  // classes of duration that need no closer look when a bound is enough
 
 // The most that one stretch of whole dwells holds, over all durations. Stretches are sorted into classes of duration; a
@@ -170,22 +174,23 @@ public:
         if (!(shortest_ <= pattern_.rules.time_base)) return {};
         const double period = pattern_.plan.frame_period, length = pattern_.dwell_length;
         pairs_of_shots();
-        at(shortest_);
         stretches(0, {length, period + length});
-        // With more than a frame the ratio is quasi-convex in the number of frames: worst with the fewest that the
-        // side allows, or with the most that end by 10 s, by T2 or by the time base, where the limit bends.
-        const double fewest = std::max(1.0, std::floor((shortest_ - length) / period));
-        stretches(fewest, {length, period + length});
-        for (const double bend : pattern_.curve.bends)
-            if (bend < small_t2) at(bend);
+        // Between bounds the ratio is quasi-convex in the number of frames, and in how much of a dwell is cut off: worst
+        // just before a bound or just beyond it.
         const double base = pattern_.rules.time_base;
-        for (const double end : {std::min(small_t2, base), std::min(t2_, base), base}) {
-            at(end);
-            const double frames = std::floor(end / period);
-            if (frames <= fewest) continue;
-            stretches(frames, {length, end - frames * period});
-            stretches(frames - 1, {end - frames * period, period + length});
-        }
+        const auto around = [&](double bound) {
+            if (!(bound > 0) || bound > base) return;
+            at(bound);
+            beside(bound, false);
+            beside(bound, true);
+            const double frames = std::floor(bound / period);
+            for (const double n : {frames - 1, frames, frames + 1})
+                stretches(n, {bound - (n + 1) * period, std::min(period + length, bound + period - n * period)});
+        };
+        around(shortest_);
+        for (const double bend : pattern_.curve.bends)
+            if (bend < small_t2) around(bend);
+        for (const double end : {std::min(small_t2, base), std::min(t2_, base), base}) around(end);
         return worst_;
     }
 
@@ -226,8 +231,40 @@ private:
         consider(duration, frames * frame_energy_ + rest.energy, pulses);
     }
 
+    // The longest windows of at most a duration, or the shortest of at least it: opened by the first shot of a dwell or
+    // closed by the last shot of one. Among many dwells a part of one matters little.
+    void beside(double duration, bool beyond) {
+        const FiringPlan& plan = pattern_.plan;
+        if ((!beyond && duration < plan.pulse_width) || dwells_.size() > few) return;
+        const double last_shot = (plan.shots - 1) * plan.shot_period, apart = std::max(0.0, duration - plan.pulse_width);
+        const double frames = std::floor(apart / plan.frame_period), rest = apart - frames * plan.frame_period;
+        if ((frames + 2) * frame_energy_ <= known_ * limit(std::max(duration, plan.pulse_width))) return;
+        const std::size_t count = dwells_.size();
+        const auto time = [&](std::size_t i) { return start_of(pattern_, dwells_[i % count]) + static_cast<double>(i / count) * plan.frame_period; };
+        for (std::size_t first = 0; first < count; ++first)
+            for (const bool ahead : {true, false}) {
+                double energy = 0, pulses = 0, length = 0;
+                for (std::size_t k = 0; k <= count; ++k) {
+                    const std::size_t i = ahead ? first + k : first + 2 * count - k;
+                    const double away = ahead ? time(i) - time(first) : time(first + 2 * count) - time(i);
+                    if (!beyond && (away > rest || k == count)) break;
+                    const bool whole = away + last_shot < rest;
+                    const double cut = std::max(0.0, (rest - away) / plan.shot_period);
+                    const double shots = whole ? plan.shots
+                                               : std::min<double>(plan.shots, (beyond ? std::ceil(cut * (1 - 1e-12)) : std::floor(cut * (1 + 1e-12))) + 1);
+                    energy += shots * dwells_[i % count].energy, pulses += shots, length = away + (shots - 1) * plan.shot_period;
+                    if (!whole) break;
+                }
+                const double longest = frames * plan.frame_period + length + plan.pulse_width;
+                consider(beyond ? std::max(duration, longest) : longest, frames * frame_energy_ + energy,
+                         frames * static_cast<double>(count) * plan.shots + pulses);
+            }
+    }
+
     // Whole frames and a stretch from the first pulse of a dwell to the last of one, its length within `range`.
     void stretches(double frames, Interval range) {
+        if (frames < 0) return;
+        range.from = std::max(range.from, pattern_.dwell_length);  // never 0: halving by the root would not end
         range.to = std::min(range.to, pattern_.rules.time_base - frames * pattern_.plan.frame_period);
         search(frames, range, most_over_least(frames, range));
     }
@@ -322,7 +359,7 @@ private:
 double shortest_duration(double side) {
     if (side <= 5e-3 * (1 + 1e-9)) return 0;
     if (side > 100e-3 * (1 + 1e-9)) return std::numeric_limits<double>::infinity();
-    return (side / 0.2) * (side / 0.2);  // alpha_max = 200 mrad sqrt(t)
+    return (side / 0.2) * (side / 0.2) * (1 - 1e-9);  // alpha_max = 200 mrad sqrt(t)
 }
 
 TimePattern time_pattern(const FiringPlan& plan, const ExposureRules& rules) {

@@ -292,7 +292,8 @@ private:
             if (share_u <= 0) continue;
             const double share = share_u * overlap(box.low_v, box.high_v, v.low, v.high, v.longest);
             if (share <= 0) continue;
-            const double size_u = box.high_u - box.low_u, size_v = box.high_v - box.low_v;
+            // Only the part of a spot that the family can reach counts.
+            const double size_u = std::min(box.high_u, u.high) - std::max(box.low_u, u.low), size_v = std::min(box.high_v, v.high) - std::max(box.low_v, v.low);
             if (size_u != spot_u || size_v != spot_v) {
                 spot_u = size_u, spot_v = size_v;
                 const double best_u = clamped(std::clamp(size_u, u.shortest, u.longest)), best_v = clamped(std::clamp(size_v, v.shortest, v.longest));

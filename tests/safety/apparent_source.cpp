@@ -16,7 +16,7 @@ using namespace glint;
 
 namespace {
 
-constexpr double pulse_width = 1e-9;  // s
+constexpr double pulse_width = 1e-9;     // s
 constexpr double emitter_radius = 5e-6;  // m, 1/e2
 
 Design line_of_emitters(int columns, double pitch, double divergence) {
@@ -39,7 +39,8 @@ FarField bare(double divergence) { return field_of(line_of_emitters(1, 50e-6, di
 // One emitter on the axis, or two beside it.
 FarField behind_lens(double focal_length, double defocus, double beside = 0) {
     Design design = line_of_emitters(beside > 0 ? 2 : 1, 2 * beside, radians(20));
-    design.optics.elements = {Lens{.focal_length = focal_length, .clear_aperture = 2 * focal_length, .defocus = defocus}};
+    design.optics.elements = {
+        Lens{.focal_length = focal_length, .clear_aperture = 2 * focal_length, .defocus = defocus}};
     return field_of(design);
 }
 
@@ -51,7 +52,8 @@ const double half_over_deviation = std::sqrt(pi / 2);
 struct RayImage {
     Vec2 mean = Vec2::Zero();       // [rad]
     Vec2 deviation = Vec2::Zero();  // standard deviation [rad]
-    double densest = 0;  // most rays in a window a quarter as long and as wide as the spot, over what the spot holds there
+    double densest =
+        0;  // most rays in a window a quarter as long and as wide as the spot, over what the spot holds there
 };
 
 // What rays do at an eye, which is focused at each of some vergences.
@@ -65,8 +67,10 @@ class Raster {
 public:
     explicit Raster(const Spot& spot) : spot_(spot) {}
     void add(const Vec2& angle) {
-        const Vec2 cell = ((angle - spot_.middle).cwiseQuotient(2 * spot_.half) * 20 + Vec2::Constant(cells / 2)).array().floor();
-        if (cell.minCoeff() >= 0 && cell.maxCoeff() < cells) count_[static_cast<std::size_t>(cell.x() * cells + cell.y())] += 1;
+        const Vec2 cell =
+            ((angle - spot_.middle).cwiseQuotient(2 * spot_.half) * 20 + Vec2::Constant(cells / 2)).array().floor();
+        if (cell.minCoeff() >= 0 && cell.maxCoeff() < cells)
+            count_[static_cast<std::size_t>(cell.x() * cells + cell.y())] += 1;
     }
     [[nodiscard]] double densest() const {
         double most = 0;
@@ -74,7 +78,8 @@ public:
             for (int y = 0; y + window <= cells; ++y) {
                 double inside = 0;
                 for (int i = 0; i < window; ++i)
-                    for (int k = 0; k < window; ++k) inside += count_[static_cast<std::size_t>((x + i) * cells + y + k)];
+                    for (int k = 0; k < window; ++k)
+                        inside += count_[static_cast<std::size_t>((x + i) * cells + y + k)];
                 most = std::max(most, inside);
             }
         return most;
@@ -105,7 +110,8 @@ Rays draw(const Beam& beam, const EyePlace& eye, std::span<const double> vergenc
     std::vector<Raster> rasters(spots.begin(), spots.end());
     for (std::uint32_t i = 0; i < count; ++i) {
         const double first = random.uniform();
-        const Vec2 even = square_to_gaussian(r2_point(i, {0.5, 0.5})), other = square_to_gaussian({first, random.uniform()});
+        const Vec2 even = square_to_gaussian(r2_point(i, {0.5, 0.5})),
+                   other = square_to_gaussian({first, random.uniform()});
         const Vec2 place = beam.exit_radius * (slope_decides ? other : even);
         const Vec2 direction = slope + beam.curvature * place + spread * (slope_decides ? even : other);
         const Vec3 start = beam.origin + Vec3(0, place.x(), place.y()), ray(1, direction.x(), direction.y());
@@ -130,16 +136,19 @@ Rays draw(const Beam& beam, const EyePlace& eye, std::span<const double> vergenc
 }
 
 double energy_of(const std::vector<Spot>& spots) {
-    return std::accumulate(spots.begin(), spots.end(), 0.0, [](double sum, const Spot& spot) { return sum + spot.energy; });
+    return std::accumulate(spots.begin(), spots.end(), 0.0,
+                           [](double sum, const Spot& spot) { return sum + spot.energy; });
 }
 
 }  // namespace
 
 TEST_CASE("collection through 7 mm at 100 mm and 50 mm at 2 m, Gaussian of 20 degrees") {
-    // Derived (A5): d86 = 2 * 100 mm * tan 10 deg = 35.265 mm; 1 - exp(-2 (7 / 35.265)^2) = 0.075776; 50 mm at 2 m: 0.010001.
+    // Derived (A5): d86 = 2 * 100 mm * tan 10 deg = 35.265 mm; 1 - exp(-2 (7 / 35.265)^2) = 0.075776; 50 mm at 2 m:
+    // 0.010001.
     const FarField field = bare(radians(20));
     const auto share = [&](double distance, double radius) {
-        return entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = radius}, pulse_width).passed / pulse_width;
+        return entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = radius}, pulse_width).passed /
+               pulse_width;
     };
     // The pupil is integrated by seven points; the digits are five.
     CHECK(share(0.1, 3.5e-3) == about(0.075776).epsilon(2e-5));
@@ -177,20 +186,22 @@ TEST_CASE("energy, middle and width of spots against rays") {
             const Rays rays = draw(beam, eye, vergences, spots);
             // A million rays leave 0.1 %.
             CHECK(entering->energy / (beam.power * pulse_width) == about(rays.share).epsilon(5e-3));
-            // A beam well inside the pupil is cut evenly: between 0.88 (a beam of radius 0.7 of the pupil's keeps more of its
-            // deviation than two Gaussians do) and 1.124 (an even disc of radius a has the deviation a/2, the spot 1.124 a/2).
-            // One that meets the rim is cut on one side, and up to a quarter narrower that way.
+            // A beam well inside the pupil is cut evenly: between 0.88 (a beam of radius 0.7 of the pupil's keeps more
+            // of its deviation than two Gaussians do) and 1.124 (an even disc of radius a has the deviation a/2, the
+            // spot 1.124 a/2). One that meets the rim is cut on one side, and up to a quarter narrower that way.
             const bool well_inside = entering->offset.norm() < 0.6 * eye.pupil_radius;
             for (std::size_t v = 0; v < vergences.size(); ++v) {
                 CAPTURE(vergences[v]);
                 const RayImage& image = rays.images[v];
-                const Vec2 middle = spots[v].middle - line_of_sight(eye), deviation = spots[v].half / half_over_deviation;
+                const Vec2 middle = spots[v].middle - line_of_sight(eye),
+                           deviation = spots[v].half / half_over_deviation;
                 for (int axis = 0; axis < 2; ++axis) {
                     CHECK(std::abs(middle[axis] - image.mean[axis]) < 0.3 * image.deviation[axis]);
                     CHECK(deviation[axis] > 0.88 * image.deviation[axis]);
                     CHECK(deviation[axis] < (well_inside ? 1.13 : 1.25) * image.deviation[axis]);
                 }
-                // No window holds more of the beam than of its spot; at the rim, a fifth more. 1 % for the count of rays.
+                // No window holds more of the beam than of its spot; at the rim, a fifth more. 1 % for the count of
+                // rays.
                 CHECK(image.densest < (well_inside ? 1.01 : 1.2));
             }
         }
@@ -202,12 +213,14 @@ TEST_CASE("the spots of an image hold what passed the pupil, for every focus") {
     SUBCASE("bare") {}
     SUBCASE("lens") { design.optics.elements = {Lens{.focal_length = 4e-3, .clear_aperture = 6e-3, .defocus = 50e-6}}; }
     SUBCASE("diffuser") {
-        design.optics.elements = {Diffuser{.horizontal = radians(60), .vertical = radians(40), .roll_off = radians(3), .distance = 1e-3}};
+        design.optics.elements = {
+            Diffuser{.horizontal = radians(60), .vertical = radians(40), .roll_off = radians(3), .distance = 1e-3}};
     }
     const FarField field = field_of(design);
     RandomStream random(72);
     for (int i = 0; i < 200; ++i) {
-        const Vec3 place = (0.1 + random.uniform()) * Vec3(1, 0.4 * random.uniform() - 0.2, 0.4 * random.uniform() - 0.2).normalized();
+        const Vec3 place =
+            (0.1 + random.uniform()) * Vec3(1, 0.4 * random.uniform() - 0.2, 0.4 * random.uniform() - 0.2).normalized();
         const EnteringLight light = entering_light(field, {.place = place}, pulse_width);
         double beams = 0;
         for (const EnteringBeam& beam : light.beams) beams += beam.energy;
@@ -236,12 +249,13 @@ TEST_CASE("foci tried: all of accommodation, and where the beams come from") {
 }
 
 TEST_CASE("a relaxed eye sees the divergence of a beam, wherever it stands") {
-    // Schulmeister, BiOS Ophthalmic Technologies XV (2005) 401-410: focused at infinity, the subtense is that of the far
-    // field. A pupil wide enough not to cut; 1e-3 for what it cuts all the same.
+    // Schulmeister, BiOS Ophthalmic Technologies XV (2005) 401-410: focused at infinity, the subtense is that of the
+    // far field. A pupil wide enough not to cut; 1e-3 for what it cuts all the same.
     for (const double defocus : {0.0, 30e-6, -30e-6}) {
         const FarField field = behind_lens(4e-3, defocus);
         for (const double distance : {0.1, 0.5, 2.0}) {
-            const EnteringLight light = entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = 1}, pulse_width);
+            const EnteringLight light =
+                entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = 1}, pulse_width);
             const Spot spot = retinal_image(light, 0).front();
             CHECK(spot.half.x() == about(half_over_deviation / 2 * field.beams.front().kernel.a).epsilon(1e-3));
         }
@@ -260,7 +274,8 @@ TEST_CASE("an eye focused on a bare emitter sees its size over the distance") {
 TEST_CASE("spots of a bare array sit at pitch over distance when the eye is focused on it") {
     const FarField field = field_of(line_of_emitters(5, 200e-6, radians(20)));
     for (const double distance : {0.1, 0.4}) {
-        std::vector<Spot> spots = retinal_image(entering_light(field, {.place = Vec3(distance, 0, 0)}, pulse_width), 1 / distance);
+        std::vector<Spot> spots =
+            retinal_image(entering_light(field, {.place = Vec3(distance, 0, 0)}, pulse_width), 1 / distance);
         REQUIRE(spots.size() == 5);
         std::ranges::sort(spots, {}, [](const Spot& spot) { return spot.middle.x(); });
         for (std::size_t i = 1; i < 5; ++i)
@@ -282,9 +297,11 @@ TEST_CASE("behind a lens spots are pitch over focal length apart for a relaxed e
     design.optics.elements = {Lens{.focal_length = 4e-3, .clear_aperture = 8e-3}};
     const FarField field = field_of(design);
     for (const double distance : {0.1, 0.5}) {
-        std::vector<Spot> spots = retinal_image(entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = 1}, pulse_width), 0);
+        std::vector<Spot> spots =
+            retinal_image(entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = 1}, pulse_width), 0);
         REQUIRE(spots.size() == 5);
         std::ranges::sort(spots, {}, [](const Spot& spot) { return spot.middle.x(); });
-        for (std::size_t i = 1; i < 5; ++i) CHECK(spots[i].middle.x() - spots[i - 1].middle.x() == about(50e-6 / 4e-3).epsilon(1e-4));
+        for (std::size_t i = 1; i < 5; ++i)
+            CHECK(spots[i].middle.x() - spots[i - 1].middle.x() == about(50e-6 / 4e-3).epsilon(1e-4));
     }
 }

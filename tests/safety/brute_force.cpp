@@ -30,11 +30,18 @@ std::vector<Piece> pieces(const std::vector<BruteSpot>& image, int axis, const s
         begins.push_back(spot.low[axis]), ends.push_back(spot.high[axis]);
         narrowest = std::min(narrowest, spot.high[axis] - spot.low[axis]);
     }
-    const double first = *std::ranges::min_element(begins), last = *std::ranges::max_element(ends), whole = last - first;
-    // Of many spots, parts that begin where a spot ends, or end where one begins, are left out.
+    const double first = *std::ranges::min_element(begins), last = *std::ranges::max_element(ends),
+                 whole = last - first;
+    // Parts that hold only a hair of a spot count its dwells in N. Of many spots, those that begin where one ends, or
+    // end where one begins, are left out.
     if (image.size() <= 16) {
-        begins.insert(begins.end(), ends.begin(), ends.end());
-        ends = begins;
+        std::vector<double> touching;
+        for (const BruteSpot& spot : image) {
+            const double hair = 1e-3 * (spot.high[axis] - spot.low[axis]);
+            touching.insert(touching.end(), {spot.low[axis] + hair, spot.high[axis] - hair});
+        }
+        begins.insert(begins.end(), touching.begin(), touching.end());
+        ends.insert(ends.end(), touching.begin(), touching.end());
     }
     for (std::vector<double>* places : {&begins, &ends}) {
         for (int i = 0; i <= 5; ++i) places->push_back(first + whole * i / 5);
@@ -86,11 +93,6 @@ public:
         Vec2 low = image.front().low, high = image.front().high;
         for (const BruteSpot& spot : image) low = low.cwiseMin(spot.low), high = high.cwiseMax(spot.high);
         whole_subtense_ = (high - low).cwiseMax(smallest_side).mean();
-#ifdef PAD
-        low = high = (image.front().low + image.front().high) / 2;
-        for (const BruteSpot& spot : image) { Vec2 m = (spot.low+spot.high)/2, h = (spot.high-spot.low).cwiseMax(smallest_side)/2; low = low.cwiseMin(m-h), high = high.cwiseMax(m+h); }
-        whole_subtense_ = (high - low).mean();
-#endif
     }
 
     // Parts in the order of what they could reach at most: first all of one piece across, then one by one.
@@ -149,8 +151,8 @@ private:
         return std::min(of(subtense_), of(whole_subtense_));
     }
 
-    // What no emission of the part under test exceeds: pulses and groups; averages within a frame; longer ones. Nor of any
-    // larger part with the same energies, when N is counted for the largest subtense.
+    // What no emission of the part under test exceeds: pulses and groups; averages within a frame; longer ones. Nor of
+    // any larger part with the same energies, when N is counted for the largest subtense.
     struct Bounds {
         double pulse = 0, within = 0, longer = 0;
     };
@@ -168,14 +170,15 @@ private:
         // From the longest stretch shorter than `shortest` on.
         const auto above = std::ranges::lower_bound(plan_.stretches, shortest_ * (1 - equal_share), {},
                                                     &BrutePlan::Stretch::duration);
-        if (above != plan_.stretches.end())
-            bounds.within = most(above->all_over_limit, above->one_over_limit) / C6;
+        if (above != plan_.stretches.end()) bounds.within = most(above->all_over_limit, above->one_over_limit) / C6;
         if (above != plan_.stretches.begin())
-            bounds.within = std::max(bounds.within, most((above - 1)->all_dwells, (above - 1)->one_dwell) / limit(shortest_));
+            bounds.within =
+                std::max(bounds.within, most((above - 1)->all_dwells, (above - 1)->one_dwell) / limit(shortest_));
         // At most one frame more than there is room for. The limit is nowhere below 99 % of rising t^0.75 to T2, and
         // (1 + t/F)/t^0.75 is largest at an end.
         for (const double t : {std::max(F, shortest_), std::max(F, std::min(brute_T2(subtense_), plan_.time_base))})
-            bounds.longer = std::max(bounds.longer, frame_ * (1 + t / F) / (0.99 * cells_.rising * C6 * std::pow(t, 0.75)));
+            bounds.longer =
+                std::max(bounds.longer, frame_ * (1 + t / F) / (0.99 * cells_.rising * C6 * std::pow(t, 0.75)));
         return bounds;
     }
 
@@ -277,8 +280,7 @@ private:
             for (const double t : {bend, F * std::floor(bend / F)}) {
                 if (!(t >= shortest_ && t > 0 && t <= plan_.time_base)) continue;
                 // A pulse counts whole, so the duration has to hold one.
-                if (t >= plan_.pulse_width)
-                    found(part, most_within(t).energy, limit(t), PulseCriterion::average, t);
+                if (t >= plan_.pulse_width) found(part, most_within(t).energy, limit(t), PulseCriterion::average, t);
             }
     }
 
@@ -288,10 +290,10 @@ private:
     double whole_subtense_ = 0;
     BruteWorst worst_;
     // Of the part under test:
-    std::vector<double> energies_;                  // of a pulse of each dwell [J]
-    double strongest_ = 0, frame_ = 0;              // of a pulse, of a frame [J]
+    std::vector<double> energies_;                    // of a pulse of each dwell [J]
+    double strongest_ = 0, frame_ = 0;                // of a pulse, of a frame [J]
     double subtense_ = smallest_side, shortest_ = 0;  // [rad], shortest duration its side allows [s]
-    std::vector<Pulse> pulses_;                     // of two frames
+    std::vector<Pulse> pulses_;                       // of two frames
 };
 
 }  // namespace
@@ -306,11 +308,12 @@ double brute_force_ratio(const Beams& beams, const FiringPlan& plan, const Brute
 }
 
 std::string describe(const BruteWorst& worst) {
-    return fmt::format("ratio {:.6g}, {}, {:.6g} s, N {}, C5 {:.4g}, {:.6g} mrad, part {:.6g} to {:.6g} by {:.6g} to {:.6g} mrad, "
-                       "{} of {} parts tried",
-                       worst.ratio, name_of(worst.criterion), worst.duration, worst.N, worst.C5, worst.subtense * 1e3,
-                       worst.low.x() * 1e3, worst.high.x() * 1e3, worst.low.y() * 1e3, worst.high.y() * 1e3,
-                       worst.tried, worst.parts);
+    return fmt::format(
+        "ratio {:.6g}, {}, {:.6g} s, N {}, C5 {:.4g}, {:.6g} mrad, part {:.6g} to {:.6g} by {:.6g} to {:.6g} mrad, "
+        "{} of {} parts tried",
+        worst.ratio, name_of(worst.criterion), worst.duration, worst.N, worst.C5, worst.subtense * 1e3,
+        worst.low.x() * 1e3, worst.high.x() * 1e3, worst.low.y() * 1e3, worst.high.y() * 1e3, worst.tried,
+        worst.parts);
 }
 
 }  // namespace glint::test

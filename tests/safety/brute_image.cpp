@@ -26,8 +26,8 @@ double share_beside(double width, double beside, double radius) {
     for (int i = 0; i < rings; ++i) {
         const double r = from + (to - from) * (i + 0.5) / rings, r0 = from + (to - from) * i / rings,
                      r1 = from + (to - from) * (i + 1) / rings;
-        const double cosine = beside > 0 ? (r * r + beside * beside - radius * radius) / (2 * r * beside)
-                                         : (r < radius ? -1.0 : 1.0);
+        const double cosine =
+            beside > 0 ? (r * r + beside * beside - radius * radius) / (2 * r * beside) : (r < radius ? -1.0 : 1.0);
         const double inside = std::acos(std::clamp(cosine, -1.0, 1.0)) / pi;
         share += inside * (std::exp(-2 * r0 * r0 / (width * width)) - std::exp(-2 * r1 * r1 / (width * width)));
     }
@@ -36,13 +36,14 @@ double share_beside(double width, double beside, double radius) {
 
 // Power [W] of a wide beam over the pupil: rings of equal area, many directions.
 double power_over(const Beam& beam, const BruteEye& eye) {
-    constexpr int rings = 12, spokes = 24;
+    constexpr int rings = 16, spokes = 24;
     const Vec3 facing = eye.place.normalized();
     const Vec3 across = facing.unitOrthogonal(), up = facing.cross(across);
     double sum = 0;
     for (int i = 0; i < rings; ++i)
         for (int k = 0; k < spokes; ++k) {
-            const double r = eye.pupil_radius * std::sqrt((i + 0.5) / rings), turn = 2 * pi * (k + 0.5 * (i % 2)) / spokes;
+            const double r = eye.pupil_radius * std::sqrt((i + 0.5) / rings),
+                         turn = 2 * pi * (k + 0.5 * (i % 2)) / spokes;
             const Vec3 ray = eye.place + r * std::cos(turn) * across + r * std::sin(turn) * up - beam.origin;
             const double length = ray.norm();
             sum += intensity(beam, ray / length) * std::max(0.0, ray.dot(facing)) / (length * length * length);

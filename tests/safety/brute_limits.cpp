@@ -43,7 +43,7 @@ double brute_C5(double wavelength, double pulse_width, double subtense, double N
 
 BruteCells brute_cells(double wavelength) {
     const double nm = wavelength * 1e9;
-    // The printed 10^(0.002 (lambda - 700)) passes 5 half a nanometre before 1050 nm; never more than the 5 from there on.
+    // The printed power of ten passes 5 half a nanometre before 1050 nm; never more than the 5 from there on.
     const double C4 = nm < 700 ? 1 : std::min(5.0, std::pow(10.0, 0.002 * (nm - 700)));
     const double C7 = nm < 1150   ? 1
                       : nm < 1200 ? std::pow(10.0, 0.018 * (nm - 1150))

@@ -18,7 +18,8 @@ constexpr LaserClass invisible[] = {LaserClass::class_1, LaserClass::class_3R, L
 constexpr LaserClass visible[] = {LaserClass::class_1, LaserClass::class_2, LaserClass::class_3R, LaserClass::class_3B};
 
 std::span<const LaserClass> classes_at(double wavelength) {
-    return wavelength < 700 * nm * (1 - 1e-8) ? std::span<const LaserClass>(visible) : std::span<const LaserClass>(invisible);
+    return wavelength < 700 * nm * (1 - 1e-8) ? std::span<const LaserClass>(visible)
+                                              : std::span<const LaserClass>(invisible);
 }
 
 // The curve multiplies the same factors in another order and takes t^0.75 by square roots: a few last bits.
@@ -29,18 +30,23 @@ void compare(const LimitCurve& curve, LaserClass laser_class, const EmissionWind
     const std::optional<Limit> slow = class_limit(laser_class, window, curve.mechanism);
     const bool same = slow ? near(ready, slow->energy, rounding) : std::isinf(ready);
     if (!same)
-        FAIL_CHECK(name_of(laser_class), ", ", name_of(curve.mechanism), ": ", ready, " J, not ", slow ? slow->energy : INFINITY,
-                   " J at ", window.wavelength, " m, ", window.duration, " s, ", window.subtense, " rad");
+        FAIL_CHECK(name_of(laser_class), ", ", name_of(curve.mechanism), ": ", ready, " J, not ",
+                   slow ? slow->energy : INFINITY, " J at ", window.wavelength, " m, ", window.duration, " s, ",
+                   window.subtense, " rad");
 }
 
 // Anything up to alpha_max, with the ends more often than chance would have them.
 double random_subtense(RandomStream& random, double duration) {
     const double largest = alpha_max(duration);
     switch (random.below(8)) {
-        case 0: return largest;
-        case 1: return alpha_min;
-        case 2: return 0;
-        default: return decade_between(random, 1e-4, largest);
+        case 0:
+            return largest;
+        case 1:
+            return alpha_min;
+        case 2:
+            return 0;
+        default:
+            return decade_between(random, 1e-4, largest);
     }
 }
 
@@ -65,7 +71,8 @@ TEST_CASE("a limit curve is the limit of every class and mechanism, all over the
 }
 
 TEST_CASE("a limit curve is the limit where cells meet") {
-    std::vector<double> wavelengths{400, 450, 484, 500, 600, 650, 700, 905, 1050, 1150, 1200, 1250, 1400, 1450, 1500, 1550, 1800};
+    std::vector<double> wavelengths{400,  450,  484,  500,  600,  650,  700,  905, 1050,
+                                    1150, 1200, 1250, 1400, 1450, 1500, 1550, 1800};
     for (double& wavelength : wavelengths) wavelength *= nm;
     for (const double wavelength : wavelengths)
         for (const LaserClass laser_class : classes_at(wavelength))
@@ -99,7 +106,8 @@ TEST_CASE("a limit curve falls nowhere but at its bends") {
                     const double before = curve.energy(early, subtense, t2(subtense));
                     const double after = curve.energy(late, subtense, t2(subtense));
                     if (after < before * (1 - rounding))
-                        FAIL_CHECK(before, " J falls to ", after, " J from ", early, " s to ", late, " s at ", wavelength, " m");
+                        FAIL_CHECK(before, " J falls to ", after, " J from ", early, " s to ", late, " s at ",
+                                   wavelength, " m");
                 }
             }
     }

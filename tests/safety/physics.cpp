@@ -47,7 +47,10 @@ struct Bench {
           field(far_field(project(array, design), Merge::no)) {}
 
     [[nodiscard]] EyeQuestion question(Condition condition) const {
-        return {.pattern = pattern, .field = field, .condition = condition, .closest_access = design.eye_safety.closest_access};
+        return {.pattern = pattern,
+                .field = field,
+                .condition = condition,
+                .closest_access = design.eye_safety.closest_access};
     }
     [[nodiscard]] EyeSearch naked_eye() const { return search_eyes(question(Condition::naked_eye), {}); }
     [[nodiscard]] EyeSearch both() const {
@@ -62,7 +65,8 @@ const EyeCase& worst_of(const EyeSearch& found) {
     return *std::ranges::max_element(found.worst, {}, [](const EyeCase& each) { return each.part.worst.ratio; });
 }
 
-// Nothing in front of the module is worse than the nearest place on the axis, but for what the search itself leaves open.
+// Nothing in front of the module is worse than the nearest place on the axis, but for what the search itself leaves
+// open.
 void check_nearest_is_worst(const Design& design, double nearest) {
     const Bench bench(design);
     const double there = bench.at({nearest, 0, 0}).worst_ratio();
@@ -88,12 +92,12 @@ TEST_CASE("a bare array is worst at 100 mm, or as near as it can be reached") {
 }
 
 TEST_CASE("a Lambertian diffuser is worst at 100 mm") {
-    // Patches of 40 um on the diffuser, which lies on the chip: the eye can focus on it from 100 mm. n = -1: intensity as
-    // the cosine; 80 degrees hold 97 % of a half space.
+    // Patches of 40 um on the diffuser, which lies on the chip: the eye can focus on it from 100 mm. n = -1: intensity
+    // as the cosine; 80 degrees hold 97 % of a half space.
     Design design = array_of(3, 3, 100e-6);
     design.emitters.near_field_radius = 20e-6;
-    design.optics.elements = {
-        Diffuser{.shape = FieldShape::round, .diameter = radians(160), .roll_off = radians(1), .exponent = -1, .distance = 0}};
+    design.optics.elements = {Diffuser{
+        .shape = FieldShape::round, .diameter = radians(160), .roll_off = radians(1), .exponent = -1, .distance = 0}};
     CHECK(worst_of(Bench(design).naked_eye()).eye.place.norm() == about(0.1).epsilon(1e-9));
     check_nearest_is_worst(design, 0.1);
 }
@@ -215,9 +219,11 @@ TEST_CASE("no eye at random finds more than the search allows for") {
         double most = 0;
         for (int k = 0; k < 300; ++k) {
             const double distance = 0.1 * std::pow(50, random.uniform());
-            const Vec3 place = distance * Vec3(1, 0.1 * random.uniform() - 0.05, 0.1 * random.uniform() - 0.05).normalized();
+            const Vec3 place =
+                distance * Vec3(1, 0.1 * random.uniform() - 0.05, 0.1 * random.uniform() - 0.05).normalized();
             const EnteringLight light = entering_light(bench.field, {.place = place}, bench.pattern.plan.pulse_width);
-            const WindowSearch windows = search_windows(bench.pattern, retinal_image(light, 10 * random.uniform()), dwell_of_zone, {}, 0);
+            const WindowSearch windows =
+                search_windows(bench.pattern, retinal_image(light, 10 * random.uniform()), dwell_of_zone, {}, 0);
             for (const ImagePart& part : windows.parts) most = std::max(most, part.worst.ratio);
         }
         CAPTURE(i);

@@ -60,7 +60,8 @@ struct Spot {
 /// The retinal image: the spot of every beam.
 [[nodiscard]] std::vector<Spot> retinal_image(const EnteringLight& light, double vergence);
 
-/// Vergences to look at: 0 to 10 in steps of half a dioptre; the beams' own foci; their crossing; their exit plane.
+/// Vergences to look at: 0 to 10 in steps of half a dioptre, of five for beams so wide that they come from where they
+/// start whatever the focus; the beams' own foci; their crossing; their exit plane.
 [[nodiscard]] std::vector<double> vergences(const EnteringLight& light);
 
 }  // namespace glint

@@ -20,15 +20,14 @@ struct GoverningCase {
 /// The governing case of a verdict for a time base [s]; nothing when no light reaches an eye.
 [[nodiscard]] std::optional<GoverningCase> governing_case(const SafetyVerdict& verdict, double time_base);
 
-/// The retinal image of a case on square cells. Angles run to the module's right and up from the line of
-/// sight [rad], as in ExposureCase.
+/// The retinal image of a case on square cells, each zone firing once. Angles run to the module's right and
+/// up from the line of sight [rad], as in ExposureCase.
 struct GoverningImage {
     Vec2 low = Vec2::Zero(), high = Vec2::Zero();  ///< edges of what is shown
     std::size_t columns = 0, rows = 0;
-    std::vector<double>
-        density;          ///< [rows x columns], the top row first: mean over the cell [J/sr], each zone once
-    double shown = 0;     ///< energy of the light inside the edges [J], each zone once
-    double entering = 0;  ///< of all light that enters the pupil [J], each zone once
+    std::vector<double> density;  ///< [J/sr], mean over the cell; [rows x columns], the top row first
+    double shown = 0;             ///< energy of the light inside the edges [J]
+    double entering = 0;          ///< of all light that enters the pupil [J]
 };
 
 /// Image of the eye and focus of a case: every spot when they lie close, else three times the part, at least
@@ -37,9 +36,8 @@ struct GoverningImage {
 
 /// What the governing part emits and may emit, over the duration of the emission.
 struct EmissionCurve {
-    std::vector<double>
-        durations;  ///< [s], rising from the pulse width to the time base, the governing one among them
-    std::vector<double> emission;  ///< most that starts within each, the search's allowance included [J]
+    std::vector<double> durations;  ///< [s], from the pulse width to the time base, with the governing one
+    std::vector<double> emission;   ///< most that starts within each, the search's allowance included [J]
     std::vector<double> limit;  ///< of the part, without C5 [J]; NaN where the part is longer than alpha_max
     double allowed_from = 0;    ///< duration from which alpha_max allows the part [s]
 };
@@ -53,13 +51,12 @@ struct EmissionCurve {
 struct SafetyMap {
     Vec2 low = Vec2::Zero(), high = Vec2::Zero();  ///< edges of the map
     std::size_t columns = 0, rows = 0;
-    std::vector<double>
-        ratios;  ///< [rows x columns], the top row first: AE/AEL, the search's allowance included
+    std::vector<double> ratios;     ///< AE/AEL with the allowance, [rows x columns], the top row first
     Vec2 governing = Vec2::Zero();  ///< of the governing place, the middle of a cell
     double distance = 0;            ///< [m]
 };
 
-/// Ratios over all directions that light goes to, 61 cells along the longer side, fewer (down to 25) for
+/// Ratios over all directions that light goes to, 61 cells along the longer side, fewer (down to 13) for
 /// images of more than 100 beams. A ratio may be 3 % (or the slack of the search) too low, and 0 where it is
 /// below a hundredth of the governing one. The same for any number of threads.
 [[nodiscard]] SafetyMap safety_map(const LightSource& light, const GoverningCase& governing);
