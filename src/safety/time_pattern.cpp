@@ -159,7 +159,9 @@ TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> 
 }
 
 constexpr std::size_t few = 64;
-constexpr double coarse = 1.02;  // classes of duration that need no closer look when a bound is enough
+constexpr double many_frames = 100;  // of which one more or less makes no difference to a bound
+// Classes of duration that need no closer look when a bound is enough.
+constexpr double coarse_of_few = 1.02, coarse_of_many = 1.06;
 
 // The most that one stretch of whole dwells holds, over all durations. Stretches are sorted into classes of duration; a
 // class whose most energy over its least limit is not above what is known is dropped, others are halved.
@@ -178,14 +180,23 @@ public:
         // Between bounds the ratio is quasi-convex in the number of frames, and in how much of a dwell is cut off: worst
         // just before a bound or just beyond it.
         const double base = pattern_.rules.time_base;
+        std::vector<double> done{0};  // numbers of frames whose stretches have been looked at
         const auto around = [&](double bound) {
             if (!(bound > 0) || bound > base) return;
+            const double frames = std::floor(bound / period);
+            if (size_.family && frames >= many_frames) {
+                const double before = (frames + 1) * frame_energy_ / least_limit(bound - period, bound);
+                suppose(std::max(before, (frames + 2) * frame_energy_ / limit(bound)), bound);
+                return;
+            }
             at(bound);
             beside(bound, false);
             beside(bound, true);
-            const double frames = std::floor(bound / period);
-            for (const double n : {frames - 1, frames, frames + 1})
-                stretches(n, {bound - (n + 1) * period, std::min(period + length, bound + period - n * period)});
+            for (const double n : {frames - 1, frames, frames + 1}) {
+                if (std::ranges::find(done, n) != done.end()) continue;
+                done.push_back(n);
+                stretches(n, {length, period + length});
+            }
         };
         around(shortest_);
         for (const double bend : pattern_.curve.bends)
@@ -211,6 +222,11 @@ private:
         if (duration < shortest_ || !counts(pattern_, duration)) return;
         const TimedRatio found = emission(duration, pulses, energy, limit(duration));
         if (found.ratio > known_) worst_ = found, known_ = found.ratio;
+    }
+
+    // Takes a bound for a value, where that is enough.
+    void suppose(double bound, double duration) {
+        if (bound > known_) worst_ = {.ratio = bound, .duration = duration}, known_ = bound;
     }
 
     void pairs_of_shots() {
@@ -281,8 +297,9 @@ private:
     void search(double frames, const Interval& range, double bound) {
         if (bound <= known_) return;
         const double before = frames * pattern_.plan.frame_period;
+        const double coarse = dwells_.size() > few ? coarse_of_many : coarse_of_few;
         if (size_.family && before + range.to <= coarse * std::max(before + range.from, shortest_)) {
-            worst_ = {.ratio = bound, .duration = before + range.to}, known_ = bound;
+            suppose(bound, before + range.to);
             return;
         }
         if (range.to <= 1.05 * range.from || range.to - range.from <= 0.01 * (before + range.from)) {

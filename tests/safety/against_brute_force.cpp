@@ -22,7 +22,7 @@ using namespace glint::test;
 namespace {
 
 constexpr int designs = 2200;
-constexpr int random_eyes = 12;  // beside the worst one of each design
+constexpr int random_eyes = 4;  // beside the worst one of each design
 // Of the sums over the pupil, 384 points for wide beams.
 constexpr double quadrature = 1e-3;
 // Reported is what was found times 1.015; the rest is for the evaluator's own places and quadrature.

@@ -39,7 +39,7 @@ struct Draw {
 };
 
 Layout layout(Draw& draw) {
-    const int most = draw.chance(0.85) ? 4 : 8;
+    const int most = draw.chance(0.75) ? 3 : draw.chance(0.8) ? 4 : 8;
     Layout layout{.rows = draw.whole(1, most), .columns = draw.whole(1, most), .pitch = draw.decades(10e-6, 2e-3)};
     layout.kind = draw.one_of({LayoutKind::grid, LayoutKind::grid, LayoutKind::hexagonal, LayoutKind::scattered});
     if (layout.kind == LayoutKind::grid && draw.chance(0.3)) layout.row_pitch = layout.pitch * draw.between(0.6, 3);

@@ -47,7 +47,7 @@ struct PartSize {
     double largest_subtense = 0;  ///< largest of the family: sets N, and C5 where that depends on it
     double side = 0;              ///< longest side [rad]: must not exceed alpha_max(T)
     double whole_subtense = 0;    ///< of the whole image, for C5
-    bool family = false;          ///< a bound is enough: averages may come out up to 1.5 % high
+    bool family = false;          ///< a bound is enough: averages may come out up to 2 % high, with more than 64 dwells 5 %
 };
 
 /// One emission held against its limit.
