@@ -8,6 +8,6 @@ glint_setup -- -DGLINT_TESTS=OFF
 cmake --build build --parallel "$(nproc)" --target glintplan
 build/glintplan assess examples/aisle-cart.xml --out out/aisle-cart
 echo
-echo "Look at out/aisle-cart/preview-points.png and preview-zones.png; numbers are in summary.json and zones.csv,"
+echo "Look at the pictures out/aisle-cart/preview-*.png; numbers are in summary.json and zones.csv,"
 echo "points in points.ply. Change examples/aisle-cart.xml and run again:"
 echo "  build/glintplan assess examples/aisle-cart.xml --out out/aisle-cart"

@@ -43,7 +43,7 @@ LightSource light_source(const Design& design, const EmitterArray& array, const 
             .closest_access = design.eye_safety.closest_access};
 }
 
-double limit_of_search(const LightSource& light) { return 1 / allowance_for(slack_for(light.field)); }
+double limit_of_search(const LightSource& light, Effort effort) { return 1 / allowance_for(slack_for(light.field, effort)); }
 
 std::vector<TimePattern> patterns_of(const LightSource& light, LaserClass laser_class, double time_base) {
     std::vector<TimePattern> patterns;
@@ -69,7 +69,7 @@ EyeSearch search_exposure(const LightSource& light, const ExposureQuestion& ques
     for (const TimePattern& pattern : patterns_of(light, question.laser_class, question.time_base))
         for (const Condition condition : question.conditions) {
             if (found.worst_ratio() > question.enough) return found;
-            found = search_eyes({pattern, light.field, condition, light.closest_access, question.enough}, std::move(found), progress);
+            found = search_eyes({pattern, light.field, condition, light.closest_access, question.enough, question.effort, question.also}, std::move(found), progress);
         }
     return found;
 }

@@ -52,7 +52,7 @@ public:
     Search(const EyeQuestion& question, EyeSearch before, const Progress& progress)
         : pattern_(question.pattern), question_(question), progress_(progress), found_(std::move(before)),
           dwell_of_zone_(static_cast<std::size_t>(question.field.zones), 0),
-          slack_(slack_for(question.field)), retinal_(question.pattern.curve.mechanism == Mechanism::retinal_thermal) {
+          slack_(slack_for(question.field, question.effort)), retinal_(question.pattern.curve.mechanism == Mechanism::retinal_thermal) {
         for (int dwell = 0; dwell < pattern_.plan.dwells(); ++dwell)
             for (const int zone : pattern_.plan.zones_of(dwell)) dwell_of_zone_[zone] = dwell;
         found_.slack = std::max(found_.slack, slack_);
@@ -67,10 +67,12 @@ public:
 
     void everywhere() {
         if (nothing_at_all()) return;
+        const bool quick = question_.effort == Effort::quick;
         // A few places first: the more is known, the less has to be looked at.
-        for (double distance = nearest_; distance < farthest && !question_.field.alike; distance *= growth_of_distance)
+        for (double distance = nearest_; distance < farthest && (quick || !question_.field.alike); distance *= growth_of_distance)
             if (!look(few_places(distance)) || enough()) break;
         if (worst_is_ours()) closer();
+        if (quick) return;
         // Beyond some distance even all the light, taken as a point, is less than what was found nearer.
         for (double distance = nearest_; distance < farthest; distance *= growth_of_distance)
             if (enough() || !look(raster(distance))) break;
@@ -176,7 +178,7 @@ private:
             const Vec2 axis(beam.axis.y(), beam.axis.z());
             low = low.cwiseMin(axis), high = high.cwiseMax(axis);
         }
-        std::vector<Vec3> places;
+        std::vector<Vec3> places{distance * question_.also.normalized()};
         for (const double y : {low.x(), (low.x() + high.x()) / 2, high.x()})
             for (const double z : {low.y(), (low.y() + high.y()) / 2, high.y()})
                 if (const double x2 = 1 - y * y - z * z; x2 > 0.04) places.push_back(distance * Vec3(std::sqrt(x2), y, z));
@@ -348,7 +350,8 @@ private:
 
 }  // namespace
 
-double slack_for(const FarField& field) {
+double slack_for(const FarField& field, Effort effort) {
+    if (effort == Effort::quick) return search_slack_of_many;
     return field.alike && field.beams.size() > many_beams ? search_slack_of_many : search_slack;
 }
 

@@ -64,6 +64,7 @@ struct Judge {
     const EmitterArray& array;
     const Fault& fault;
     LaserClass asked;
+    Vec3 also;
     const Progress& progress;
 
     [[nodiscard]] LightSource light(double lasting) const { return faulty_light(design, array, fault, lasting); }
@@ -72,18 +73,18 @@ struct Judge {
     [[nodiscard]] EyeSearch everywhere(double within, double enough, const Ratios& known) const {
         EyeSearch before;
         before.known = known;
-        return search_exposure(light(within), {asked, time_base(within), conditions_of(asked), enough}, std::move(before), progress);
+        return search_exposure(light(within), {asked, time_base(within), conditions_of(asked), enough, Effort::quick, also}, std::move(before), progress);
     }
 
     // Whether a case that is too much over a longer time still is within a shorter one.
     [[nodiscard]] bool too_much(const EyeCase& found, double within) const {
         const LightSource source = light(within);
-        const double limit = limit_of_search(source);
+        const double limit = limit_of_search(source, Effort::quick);
         EyeSearch before;
         before.known.fill(limit);
         const std::array places{found.eye.place};
         for (const TimePattern& pattern : patterns_of(source, asked, time_base(within))) {
-            before = search_eyes_at({pattern, source.field, found.condition, source.closest_access, limit}, places, std::move(before), progress);
+            before = search_eyes_at({pattern, source.field, found.condition, source.closest_access, limit, Effort::quick}, places, std::move(before), progress);
             if (before.worst_ratio() > limit) return true;
         }
         return false;
@@ -98,7 +99,7 @@ const EyeCase& worst_of(const EyeSearch& found) {
 // be at its place, and looks everywhere again.
 std::optional<double> reaction_time(const Judge& judge, EyeCase worst, double too_long) {
     const double one_shot = judge.light(too_long).plan.pulse_width < too_long ? judge.light(too_long).plan.pulse_width : 1e-9;
-    const double limit = limit_of_search(judge.light(too_long));
+    const double limit = limit_of_search(judge.light(too_long), Effort::quick);
     Ratios from_the_limit;
     from_the_limit.fill(limit);
     for (int round = 0; round < 40; ++round) {
@@ -146,8 +147,8 @@ LightSource faulty_light(const Design& design, const EmitterArray& array, const 
     return light_source(changed, array, plan);
 }
 
-FaultVerdict judge_fault(const Design& design, const EmitterArray& array, const Fault& fault, LaserClass asked, const Progress& progress) {
-    const Judge judge{design, array, fault, asked, progress};
+FaultVerdict judge_fault(const Design& design, const EmitterArray& array, const Fault& fault, LaserClass asked, const Vec3& also, const Progress& progress) {
+    const Judge judge{design, array, fault, asked, also, progress};
     const double time_base = design.eye_safety.time_base;
     FaultVerdict verdict{.name = name_of(fault), .reaction_time = {}, .governing = {}};
     const EyeSearch found = judge.everywhere(time_base, 1e300, {});
@@ -157,8 +158,8 @@ FaultVerdict judge_fault(const Design& design, const EmitterArray& array, const 
     verdict.holds = verdict.worst_ratio <= 1;
     const LightSource light = judge.light(time_base);
     verdict.laser_class = verdict.holds && asked == LaserClass::class_1 ? LaserClass::class_1
-                          : asked == LaserClass::class_1 ? classify(light, found, time_base, progress)
-                                                         : classify(light, search_exposure(light, {LaserClass::class_1, time_base}, {}, progress), time_base, progress);
+                          : asked == LaserClass::class_1 ? classify(light, found, time_base, Effort::quick, also, progress)
+                                                         : classify(light, search_exposure(light, {.time_base = time_base, .effort = Effort::quick, .also = also}, {}, progress), time_base, Effort::quick, also, progress);
     verdict.reaction_time = verdict.holds ? time_base : reaction_time(judge, worst_of(found), time_base);
     return verdict;
 }

@@ -59,7 +59,7 @@ SafetyVerdict judge_safety(const Design& design, const EmitterArray& array, cons
     verdict.criteria = exposure_cases(found);
     verdict.worst_ratio = found.bound();
     verdict.margin = 1 - verdict.worst_ratio;
-    verdict.laser_class = classify(verdict.light, found, time_base, progress);
+    verdict.laser_class = classify(verdict.light, found, time_base, Effort::everywhere, Vec3::UnitX(), progress);
 
     const EyeSafetyRequirement asked = asked_of(design);
     verdict.asked = class_of(asked.laser_class);
@@ -81,7 +81,7 @@ SafetyVerdict judge_safety(const Design& design, const EmitterArray& array, cons
         verdict.aided_hazard_distance = search_hazard_distance(verdict.light, Condition::telescope, time_base, worst_eye, progress);
     }
     for (const Fault& fault : design.eye_safety.faults.list)
-        verdict.faults.push_back(judge_fault(worst_design, array, fault, verdict.asked, progress));
+        verdict.faults.push_back(judge_fault(worst_design, array, fault, verdict.asked, verdict.criteria.empty() ? Vec3::UnitX() : verdict.criteria.front().eye, progress));
     verdict.found = std::move(found);
     return verdict;
 }

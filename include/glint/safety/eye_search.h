@@ -39,8 +39,14 @@ inline constexpr double search_slack_of_many = 0.1;
 /// Factor on a ratio found, so that no place, focus or part gives more: the slack of the search, and half a percent for
 /// places between those of the raster and for edges of spots taken as one.
 [[nodiscard]] constexpr double allowance_for(double slack) { return 1 + slack + 0.005; }
-/// Slack of a search of a field.
-[[nodiscard]] double slack_for(const FarField& field);
+/// How closely places are looked at.
+enum class Effort {
+    everywhere,  ///< the whole raster
+    quick,       ///< the middle, edges and corners of the field at every distance, and around the worst of them
+};
+
+/// Slack of a search of a field; a quick one counts as one of many beams.
+[[nodiscard]] double slack_for(const FarField& field, Effort effort = Effort::everywhere);
 /// The usual factor.
 inline constexpr double search_allowance = allowance_for(search_slack);
 
@@ -64,6 +70,8 @@ struct EyeQuestion {
     Condition condition = Condition::naked_eye;
     double closest_access = 0;  ///< of the eye to the chip [m]
     double enough = 1e300;      ///< ratio, the allowance not included, beyond which the search may stop
+    Effort effort = Effort::everywhere;
+    Vec3 also = Vec3::UnitX();  ///< direction in which a quick search looks besides
 };
 
 /// Searches all places in front of the module from the closest the condition and the access allow (100 mm or 2 m from
