@@ -22,14 +22,14 @@ using namespace glint::test;
 
 namespace {
 
-// All 2,200 take an hour; the usual run holds the first of them for soundness. GLINT_BRUTE_FORCE_DESIGNS=2200 runs them all and
-// asks for tightness as well, which trains of pulses longer than Ti do not reach yet: there the search is up to 3.6 times high.
+// All 2,200 take minutes; the usual run holds the first of them for soundness only. GLINT_BRUTE_FORCE_DESIGNS=2200 runs them all and
+// asks for tightness as well. That run fails: 16 designs are not sound and 24 not tight, for the causes in docs/safety.md, known faults.
 int designs_to_try() {
     const char* asked = std::getenv("GLINT_BRUTE_FORCE_DESIGNS");
     return asked != nullptr ? std::atoi(asked) : 12;
 }
 constexpr int random_eyes = 4;  // beside the worst one of each design
-// Of the sums over the pupil, 384 points for wide beams.
+// Of the sums over the pupil, 1152 points for wide beams.
 constexpr double quadrature = 1e-3;
 // Reported is what was found times 1.015; the rest is for the evaluator's own places and quadrature.
 constexpr double tightness = 1.02;
@@ -142,6 +142,18 @@ TEST_CASE("the evaluator's own C5 is that of the tables") {
         CHECK(brute_C5(pulse.wavelength, pulse.duration, pulse.subtense, pulse.count, pulse.time_base) ==
               about(c5(pulse)).epsilon(1e-12));
     }
+}
+
+TEST_CASE("the evaluator's own share of a ring is the closed form on axis") {
+    // Crest and wall as tangents; the pupil of 3.5 mm radius cuts the kernel at 35 mrad and 17.5 mrad.
+    for (const double wall : {0.006, 0.01, 0.02})
+        for (const double crest : {0.005, 0.01, 0.02})
+            for (const double distance : {0.1, 0.2}) {
+                const Beam beam{.kernel = ring_kernel(crest, wall), .power = 1};
+                const BruteEye eye{.place = Vec3(distance, 0, 0)};
+                CHECK(brute_energy(beam, eye, 1) ==
+                      about(power_within(beam.kernel, eye.pupil_radius / distance)).epsilon(quadrature));
+            }
 }
 
 TEST_CASE("the search against brute force on random small designs") {

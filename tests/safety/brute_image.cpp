@@ -36,7 +36,7 @@ double share_beside(double width, double beside, double radius) {
 
 // Power [W] of a wide beam over the pupil: rings of equal area, many directions.
 double power_over(const Beam& beam, const BruteEye& eye) {
-    constexpr int rings = 16, spokes = 24;
+    constexpr int rings = 48, spokes = 24;
     const Vec3 facing = eye.place.normalized();
     const Vec3 across = facing.unitOrthogonal(), up = facing.cross(across);
     double sum = 0;

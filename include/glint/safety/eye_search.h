@@ -36,8 +36,8 @@ inline constexpr double search_slack = 0.01;
 /// The same for arrays of more than 1024 beams that all go the same way: their images hold every beam, and searching them
 /// as closely would take minutes.
 inline constexpr double search_slack_of_many = 0.1;
-/// Factor on a ratio found, so that no place, focus or part gives more: the slack of the search, and half a percent for
-/// places between those of the raster and for edges of spots taken as one.
+/// Factor on a ratio found: the slack of the search, and half a percent meant for places between those of the raster and for
+/// edges of spots taken as one. Not a bound in every case yet, see the known faults in docs/safety.md.
 [[nodiscard]] constexpr double allowance_for(double slack) { return 1 + slack + 0.005; }
 /// How closely places are looked at.
 enum class Effort {
