@@ -34,8 +34,8 @@ int parse_and_run(int argc, char** argv) {
         "glintplan COMMAND --help says more. Exit status: 0 every requirement met, 1 one not met, 2 bad "
         "input, 3 the machine failed, 130 stopped.",
         80));
-    const std::array commands{cli::add_assess(app), cli::add_safety(app), cli::add_preview(app), cli::add_limits(app),
-                              cli::add_fields(app)};
+    const std::array commands{cli::add_assess(app), cli::add_safety(app), cli::add_preview(app),
+                              cli::add_limits(app), cli::add_fields(app)};
     try {
         app.parse(argc, argv);
     } catch (const CLI::ParseError& error) {

@@ -16,9 +16,12 @@ struct Options : DesignOptions {
 int run(const Options& options) {
     const JudgedDesign judged = judge_design(options);
     const SafetyVerdict& verdict = judged.verdict;
-    if (options.json) fmt::print("{}", safety_json(verdict));
-    else if (!options.quiet) fmt::print("{}", safety_text(judged.loaded.design, verdict));
-    const bool met = static_cast<int>(verdict.laser_class) <= static_cast<int>(verdict.asked) && verdict.asked_ratio <= 1 - verdict.asked_margin;
+    if (options.json)
+        fmt::print("{}", safety_json(verdict));
+    else if (!options.quiet)
+        fmt::print("{}", safety_text(judged.loaded.design, verdict));
+    const bool met = static_cast<int>(verdict.laser_class) <= static_cast<int>(verdict.asked) &&
+                     verdict.asked_ratio <= 1 - verdict.asked_margin;
     return met ? Exit::done : Exit::unmet;
 }
 

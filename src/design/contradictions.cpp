@@ -54,7 +54,8 @@ void check_band(const Design& design, std::vector<Problem>& problems) {
 
 template <class Element>
 bool holds(const Optics& optics) {
-    return std::ranges::any_of(optics.elements, [](const OpticalElement& each) { return std::holds_alternative<Element>(each); });
+    return std::ranges::any_of(
+        optics.elements, [](const OpticalElement& each) { return std::holds_alternative<Element>(each); });
 }
 
 void check_eye_safety(const Design& design, std::vector<Problem>& problems) {
@@ -66,7 +67,7 @@ void check_eye_safety(const Design& design, std::vector<Problem>& problems) {
     for (const Fault& fault : design.eye_safety.faults.list) {
         const auto* missing = std::get_if<ElementMissing>(&fault);
         if (missing == nullptr) continue;
-        const bool there = missing->element == ElementKind::lens       ? holds<Lens>(design.optics)
+        const bool there = missing->element == ElementKind::lens      ? holds<Lens>(design.optics)
                            : missing->element == ElementKind::fan_out ? holds<FanOut>(design.optics)
                                                                       : holds<Diffuser>(design.optics);
         if (!there)

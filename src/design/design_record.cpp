@@ -104,7 +104,8 @@ Record firing() {
         .choice("order", &Firing::order,
                 {"raster", "serpentine", "stride", "bit_reversed", "farthest_next", "shuffled"},
                 "Order of the zones in a frame. raster: row by row; serpentine: every other row backwards; "
-                "stride: every n-th, then those next to them; bit_reversed: by the reversed bits of their numbers; "
+                "stride: every n-th, then those next to them; bit_reversed: by the reversed bits of their "
+                "numbers; "
                 "farthest_next: the one farthest from all that have fired; shuffled: random")
         .integer("stride", &Firing::stride, from_to(1, 1e6), "Zones from one that fires to the next")
         .required()
@@ -292,31 +293,38 @@ Record environment() {
 }
 
 Record tolerances() {
-    return Describe<Tolerances>("tolerances", "Spread of built modules to both sides; the verdict is for the worst corner")
+    return Describe<Tolerances>("tolerances",
+                                "Spread of built modules to both sides; the verdict is for the worst corner")
         .quantity("power", &Tolerances::power, K::ratio, from_to(0, 1), "Of the peak power")
-        .quantity("divergence", &Tolerances::divergence, K::ratio, from_to(0, 0.9), "Of the emitters' divergence")
+        .quantity("divergence", &Tolerances::divergence, K::ratio, from_to(0, 0.9),
+                  "Of the emitters' divergence")
         .quantity("pulse_width", &Tolerances::pulse_width, K::ratio, from_to(0, 0.9), "Of the pulse width")
         .quantity("wavelength", &Tolerances::wavelength, K::length, from_to(0, 100e-9), "Of the wavelength")
-        .quantity("focal_length", &Tolerances::focal_length, K::ratio, from_to(0, 0.5), "Of the lens's focal length")
+        .quantity("focal_length", &Tolerances::focal_length, K::ratio, from_to(0, 0.5),
+                  "Of the lens's focal length")
         .done();
 }
 
 Record faults() {
     const Range factor = from_to(1, 1e6);
-    Record missing = Describe<ElementMissing>("element_missing", "An optical element is missing, or cracked")
-                         .choice("element", &ElementMissing::element, {"lens", "fan_out", "diffuser"}, "Which element")
-                         .required()
-                         .done();
-    Record stuck = Describe<ZoneStuckOn>("zone_stuck_on", "A zone's driver does not switch off; the worst zone counts").done();
+    Record missing =
+        Describe<ElementMissing>("element_missing", "An optical element is missing, or cracked")
+            .choice("element", &ElementMissing::element, {"lens", "fan_out", "diffuser"}, "Which element")
+            .required()
+            .done();
+    Record stuck =
+        Describe<ZoneStuckOn>("zone_stuck_on", "A zone's driver does not switch off; the worst zone counts")
+            .done();
     Record all = Describe<AllZonesAtOnce>("all_zones", "Every zone fires in every dwell").done();
     Record pulse = Describe<PulseTooLong>("pulse_too_long", "Pulses last longer than asked for")
                        .quantity("factor", &PulseTooLong::factor, K::number, factor, "By this factor")
                        .required()
                        .done();
-    Record repetition = Describe<RepetitionTooHigh>("repetition_too_high", "The clock of the firing plan runs too fast")
-                            .quantity("factor", &RepetitionTooHigh::factor, K::number, factor, "By this factor")
-                            .required()
-                            .done();
+    Record repetition =
+        Describe<RepetitionTooHigh>("repetition_too_high", "The clock of the firing plan runs too fast")
+            .quantity("factor", &RepetitionTooHigh::factor, K::number, factor, "By this factor")
+            .required()
+            .done();
     Record current = Describe<OverCurrent>("over_current", "More power than asked for")
                          .quantity("factor", &OverCurrent::factor, K::number, factor, "On the peak power")
                          .required()

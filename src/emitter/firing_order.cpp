@@ -93,8 +93,7 @@ Bands bands_of(const std::vector<Vec2>& middles) {
     Bands bands{.height = std::max(1.0, top / count), .spots = std::vector<std::vector<Spot>>(count)};
     for (std::size_t zone = 0; zone < middles.size(); ++zone)
         bands.spots[bands.of(middles[zone].y())].push_back({middles[zone], static_cast<int>(zone)});
-    for (std::vector<Spot>& band : bands.spots)
-        std::ranges::sort(band, {}, across);
+    for (std::vector<Spot>& band : bands.spots) std::ranges::sort(band, {}, across);
     return bands;
 }
 
@@ -102,8 +101,8 @@ Bands bands_of(const std::vector<Vec2>& middles) {
 std::vector<int> farthest_next(const EmitterArray& array) {
     const std::vector<Vec2> middles = middles_in_grains(array);
     const Bands bands = bands_of(middles);
-    // Distance of each zone to the nearest fired one. The queue holds what it was when the zone was put there;
-    // distances only shrink, so a zone that comes out with its present distance is the farthest.
+    // Distance of each zone to the nearest fired one. The queue holds what it was when the zone was put
+    // there; distances only shrink, so a zone that comes out with its present distance is the farthest.
     std::vector<double> distance(middles.size(), std::numeric_limits<double>::infinity());
     std::priority_queue<std::pair<double, int>> queue;  // with -zone: the lowest number wins
     for (int zone = 0; zone < array.zones; ++zone) queue.emplace(distance[zone], -zone);
@@ -123,7 +122,8 @@ std::vector<int> farthest_next(const EmitterArray& array) {
             const std::vector<Spot>& spots = bands.spots[band];
             auto spot = std::ranges::upper_bound(spots, place.x() - reach, {}, across);
             for (; spot != spots.end() && across(*spot) < place.x() + reach; ++spot)
-                distance[spot->zone] = std::min(distance[spot->zone], std::round((spot->middle - place).norm()));
+                distance[spot->zone] =
+                    std::min(distance[spot->zone], std::round((spot->middle - place).norm()));
         }
     }
     return sequence;

@@ -14,8 +14,8 @@ namespace {
 // Same but for the origin, the zone and the power.
 bool same_pattern(const Beam& a, const Beam& b) {
     const Kernel &k = a.kernel, &l = b.kernel;
-    return a.axis == b.axis && a.right == b.right && k.shape == l.shape && k.a == l.a &&
-           k.b == l.b && k.edge == l.edge && k.exponent == l.exponent;
+    return a.axis == b.axis && a.right == b.right && k.shape == l.shape && k.a == l.a && k.b == l.b &&
+           k.edge == l.edge && k.exponent == l.exponent;
 }
 
 // Beams arrive zone by zone or emitter by emitter; equal patterns of a zone share the first one met.
@@ -49,7 +49,8 @@ int cell_of(double coordinate, int cells) {
 }  // namespace
 
 FarField far_field(const Beams& beams, Merge merge) {
-    FarField field{.beams = merge == Merge::yes ? merged(beams.beams, beams.zones) : beams.beams, .zones = beams.zones};
+    FarField field{.beams = merge == Merge::yes ? merged(beams.beams, beams.zones) : beams.beams,
+                   .zones = beams.zones};
     for (const Beam& beam : field.beams) {
         field.reach = std::max(field.reach, angular_reach(beam.kernel));
         field.spread = std::max(field.spread, beam.origin.norm());
@@ -57,7 +58,8 @@ FarField far_field(const Beams& beams, Merge merge) {
     }
     field.alike = std::ranges::all_of(field.beams, [&](const Beam& beam) {
         const Beam& first = field.beams.front();
-        return same_pattern(first, beam) && beam.exit_radius == first.exit_radius && beam.curvature == first.curvature && beam.origin.x() == first.origin.x();
+        return same_pattern(first, beam) && beam.exit_radius == first.exit_radius &&
+               beam.curvature == first.curvature && beam.origin.x() == first.origin.x();
     });
     field.reach = std::min(field.reach, 2.0);  // no two points of the raster are farther apart along an axis
     field.cells = std::clamp(static_cast<int>(2 / std::max(field.reach, 1e-9)), 1, 1024);

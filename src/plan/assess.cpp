@@ -161,7 +161,8 @@ Assessment assess(const LoadedDesign& loaded, const Progress& progress) {
 SafetyVerdict assess_safety(const LoadedDesign& loaded, const Progress& progress) {
     return with_places(loaded, [&] {
         const Design& design = loaded.design;
-        return judge_safety(design, build_array(design.emitters, field_sense(design.optics), loaded.folder), progress);
+        return judge_safety(design, build_array(design.emitters, field_sense(design.optics), loaded.folder),
+                            progress);
     });
 }
 

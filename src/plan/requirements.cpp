@@ -126,7 +126,8 @@ RequirementResult judge(const Context& context, const EyeSafetyRequirement& safe
     const LaserClass wanted = asked[static_cast<int>(safety.laser_class)];
     const SafetyVerdict& verdict = context.assessment.safety;
     const bool class_held = static_cast<int>(verdict.laser_class) <= static_cast<int>(wanted);
-    // The ratio is known for the strictest class asked for; a laxer one that holds has more room than is shown.
+    // The ratio is known for the strictest class asked for; a laxer one that holds has more room than is
+    // shown.
     const double ratio = wanted == verdict.asked ? verdict.asked_ratio : verdict.worst_ratio;
     const bool margin_held = wanted != verdict.asked || ratio <= 1 - safety.margin;
     const ExposureCase* governing = verdict.criteria.empty() ? nullptr : &verdict.criteria.front();

@@ -20,7 +20,8 @@ bool never_laxer(double strict, double lax) {
     if (grouping_time(strict) < grouping_time(lax)) return false;
     for (const double duration : {5e-12, 1e-10, 1e-7, 4e-6, 9e-6, 1e-4, 0.1, 1.0, 9.0, 20.0, 99.0, 1e3})
         for (const double subtense : {alpha_min, 5e-3})
-            for (const Mechanism mechanism : {Mechanism::retinal_thermal, Mechanism::photochemical, Mechanism::corneal, Mechanism::ceiling}) {
+            for (const Mechanism mechanism : {Mechanism::retinal_thermal, Mechanism::photochemical,
+                                              Mechanism::corneal, Mechanism::ceiling}) {
                 const auto one = class_limit(LaserClass::class_1, {strict, duration, subtense}, mechanism);
                 const auto other = class_limit(LaserClass::class_1, {lax, duration, subtense}, mechanism);
                 if (other && (!one || one->energy > other->energy * (1 + 1e-12))) return false;
@@ -32,9 +33,12 @@ std::vector<double> wavelengths(const Design& design) {
     const double middle = design.emitters.wavelength, tolerance = design.eye_safety.tolerances.wavelength;
     if (tolerance == 0) return {middle};
     std::vector<double> list{middle - tolerance, middle + tolerance};
-    for (const double bound : {450e-9, 484e-9, 600e-9, 700e-9, 1050e-9, 1150e-9, 1200e-9, 1250e-9, 1400e-9, 1500e-9})
+    for (const double bound :
+         {450e-9, 484e-9, 600e-9, 700e-9, 1050e-9, 1150e-9, 1200e-9, 1250e-9, 1400e-9, 1500e-9})
         if (bound > list[0] && bound < list[1]) list.push_back(bound);
-    const bool bent = std::ranges::any_of(design.optics.elements, [](const OpticalElement& each) { return std::holds_alternative<FanOut>(each); });
+    const bool bent = std::ranges::any_of(design.optics.elements, [](const OpticalElement& each) {
+        return std::holds_alternative<FanOut>(each);
+    });
     if (bent) return list;
     std::vector<double> kept;
     for (std::size_t i = 0; i < list.size(); ++i) {
@@ -55,7 +59,8 @@ std::vector<double> pulse_widths(const Design& design) {
 }
 
 std::string change(std::string_view what, double value, double nominal) {
-    return value == nominal ? std::string() : fmt::format(", {} {:+.3g} %", what, 100 * (value / nominal - 1));
+    return value == nominal ? std::string()
+                            : fmt::format(", {} {:+.3g} %", what, 100 * (value / nominal - 1));
 }
 
 }  // namespace
@@ -68,7 +73,8 @@ std::vector<Corner> tolerance_corners(const Design& design) {
     const double focal_length = lens != nullptr ? lens->focal_length : 0;
     std::vector<Corner> corners;
     for (const double divergence : both_ends(design.emitters.lobe.divergence, tolerances.divergence))
-        for (const double focal : lens != nullptr ? both_ends(focal_length, tolerances.focal_length) : std::vector{0.0})
+        for (const double focal :
+             lens != nullptr ? both_ends(focal_length, tolerances.focal_length) : std::vector{0.0})
             for (const double pulse : pulse_widths(design))
                 for (const double wavelength : wavelengths(design)) {
                     Corner corner{design, {}};
@@ -79,11 +85,13 @@ std::vector<Corner> tolerance_corners(const Design& design) {
                     corner.design.emitters.wavelength = wavelength;
                     for (OpticalElement& element : corner.design.optics.elements)
                         if (Lens* each = std::get_if<Lens>(&element)) each->focal_length = focal;
-                    std::string name = change("power", corner.design.drive.peak_power, design.drive.peak_power) +
-                                       change("divergence", divergence, design.emitters.lobe.divergence) +
-                                       change("pulse width", pulse, design.drive.pulse_width);
+                    std::string name =
+                        change("power", corner.design.drive.peak_power, design.drive.peak_power) +
+                        change("divergence", divergence, design.emitters.lobe.divergence) +
+                        change("pulse width", pulse, design.drive.pulse_width);
                     if (lens != nullptr) name += change("focal length", focal, focal_length);
-                    if (wavelength != design.emitters.wavelength) name += ", wavelength " + show_quantity(wavelength, Kind::length, 4);
+                    if (wavelength != design.emitters.wavelength)
+                        name += ", wavelength " + show_quantity(wavelength, Kind::length, 4);
                     corner.name = name.empty() ? "nominal" : name.substr(2);
                     corners.push_back(std::move(corner));
                 }

@@ -13,17 +13,18 @@ constexpr double end_of_small_aperture = 0.35;  // s, from 1400 nm on
 ExposureCase in_words(const EyeCase& found, PulseCriterion criterion, double allowance) {
     const TimedRatio& worst = found.part.worst;
     const bool retinal = found.mechanism == Mechanism::retinal_thermal;
-    ExposureCase each{.criterion = criterion,
-                      .condition = found.condition,
-                      .mechanism = found.mechanism,
-                      .duration = worst.duration,
-                      .pulses = worst.pulses,
-                      .C5 = worst.C5,
-                      .ae = worst.ae * allowance,
-                      .ael = worst.ael,
-                      .eye = found.eye.place,
-                      .focus = found.vergence > 0 ? 1 / found.vergence : std::numeric_limits<double>::infinity(),
-                      .zones = found.part.zones};
+    ExposureCase each{
+        .criterion = criterion,
+        .condition = found.condition,
+        .mechanism = found.mechanism,
+        .duration = worst.duration,
+        .pulses = worst.pulses,
+        .C5 = worst.C5,
+        .ae = worst.ae * allowance,
+        .ael = worst.ael,
+        .eye = found.eye.place,
+        .focus = found.vergence > 0 ? 1 / found.vergence : std::numeric_limits<double>::infinity(),
+        .zones = found.part.zones};
     if (!retinal) return each;
     const double duration = std::clamp(worst.duration, limit_durations.from, limit_durations.to);
     each.subtense = found.part.subtense;
@@ -43,19 +44,23 @@ LightSource light_source(const Design& design, const EmitterArray& array, const 
             .closest_access = design.eye_safety.closest_access};
 }
 
-double limit_of_search(const LightSource& light, Effort effort) { return 1 / allowance_for(slack_for(light.field, effort)); }
+double limit_of_search(const LightSource& light, Effort effort) {
+    return 1 / allowance_for(slack_for(light.field, effort));
+}
 
 std::vector<TimePattern> patterns_of(const LightSource& light, LaserClass laser_class, double time_base) {
     std::vector<TimePattern> patterns;
     const bool corneal = light.wavelength >= retinal_wavelengths.to * (1 - 1e-9);
-    for (const Mechanism mechanism : {Mechanism::retinal_thermal, Mechanism::photochemical, Mechanism::corneal, Mechanism::ceiling}) {
+    for (const Mechanism mechanism :
+         {Mechanism::retinal_thermal, Mechanism::photochemical, Mechanism::corneal, Mechanism::ceiling}) {
         ExposureRules rules{laser_class, light.wavelength, time_base, mechanism, {0, limit_durations.to}};
         const auto add = [&](Interval durations) {
             rules.durations = durations;
             TimePattern pattern = time_pattern(light.plan, rules);
             if (!pattern.curve.pieces.empty()) patterns.push_back(std::move(pattern));
         };
-        if (!corneal) add({0, limit_durations.to});
+        if (!corneal)
+            add({0, limit_durations.to});
         else if (mechanism != Mechanism::retinal_thermal || touches(retinal_wavelengths, light.wavelength)) {
             add({0, end_of_small_aperture});
             add({end_of_small_aperture, limit_durations.to});
@@ -64,12 +69,15 @@ std::vector<TimePattern> patterns_of(const LightSource& light, LaserClass laser_
     return patterns;
 }
 
-EyeSearch search_exposure(const LightSource& light, const ExposureQuestion& question, EyeSearch before, const Progress& progress) {
+EyeSearch search_exposure(const LightSource& light, const ExposureQuestion& question, EyeSearch before,
+                          const Progress& progress) {
     EyeSearch found = std::move(before);
     for (const TimePattern& pattern : patterns_of(light, question.laser_class, question.time_base))
         for (const Condition condition : question.conditions) {
             if (found.worst_ratio() > question.enough) return found;
-            found = search_eyes({pattern, light.field, condition, light.closest_access, question.enough, question.effort, question.also}, std::move(found), progress);
+            found = search_eyes({pattern, light.field, condition, light.closest_access, question.enough,
+                                 question.effort, question.also},
+                                std::move(found), progress);
         }
     return found;
 }
@@ -77,7 +85,9 @@ EyeSearch search_exposure(const LightSource& light, const ExposureQuestion& ques
 std::vector<ExposureCase> exposure_cases(const EyeSearch& found) {
     std::vector<ExposureCase> cases;
     for (std::size_t c = 0; c < found.worst.size(); ++c)
-        if (found.worst[c].part.worst.ratio > 0) cases.push_back(in_words(found.worst[c], static_cast<PulseCriterion>(c), allowance_for(found.slack)));
+        if (found.worst[c].part.worst.ratio > 0)
+            cases.push_back(
+                in_words(found.worst[c], static_cast<PulseCriterion>(c), allowance_for(found.slack)));
     std::ranges::stable_sort(cases, std::greater{}, [](const ExposureCase& each) { return each.ratio(); });
     return cases;
 }

@@ -12,7 +12,9 @@ namespace {
 
 constexpr double growth_of_distance = 1.2;
 constexpr double farthest = 1e4;  // m
-constexpr std::size_t single = static_cast<std::size_t>(PulseCriterion::single), group = static_cast<std::size_t>(PulseCriterion::group), train = static_cast<std::size_t>(PulseCriterion::train);
+constexpr std::size_t single = static_cast<std::size_t>(PulseCriterion::single),
+                      group = static_cast<std::size_t>(PulseCriterion::group),
+                      train = static_cast<std::size_t>(PulseCriterion::train);
 constexpr std::size_t batch = 64;
 constexpr std::size_t many_beams = 1024;
 
@@ -32,7 +34,8 @@ struct Item {
 };
 
 // Smallest subtense for the limit, any subtense for N.
-constexpr PartSize anything_as_point{.subtense = alpha_min, .largest_subtense = 0.2, .side = 0, .whole_subtense = 0.2};
+constexpr PartSize anything_as_point{
+    .subtense = alpha_min, .largest_subtense = 0.2, .side = 0, .whole_subtense = 0.2};
 
 double promise_of(const Ratios& bound, const Ratios& known) {
     double promise = 0;
@@ -50,17 +53,22 @@ Ratios ratios_of(const TimedRatios& timed) {
 class Search {
 public:
     Search(const EyeQuestion& question, EyeSearch before, const Progress& progress)
-        : pattern_(question.pattern), question_(question), progress_(progress), found_(std::move(before)),
+        : pattern_(question.pattern),
+          question_(question),
+          progress_(progress),
+          found_(std::move(before)),
           dwell_of_zone_(static_cast<std::size_t>(question.field.zones), 0),
-          slack_(slack_for(question.field, question.effort)), retinal_(question.pattern.curve.mechanism == Mechanism::retinal_thermal) {
+          slack_(slack_for(question.field, question.effort)),
+          retinal_(question.pattern.curve.mechanism == Mechanism::retinal_thermal) {
         for (int dwell = 0; dwell < pattern_.plan.dwells(); ++dwell)
             for (const int zone : pattern_.plan.zones_of(dwell)) dwell_of_zone_[zone] = dwell;
         found_.slack = std::max(found_.slack, slack_);
-        const MeasurementCondition at =
-            measurement(question.condition, pattern_.rules.wavelength, std::min(pattern_.rules.durations.to, 10.0));
+        const MeasurementCondition at = measurement(question.condition, pattern_.rules.wavelength,
+                                                    std::min(pattern_.rules.durations.to, 10.0));
         radius_ = at.aperture / 2;
         nearest_ = std::max(at.distance, question.closest_access);
-        per_energy_ = ratios_of(worst_over_time(pattern_, std::array{DwellEnergy{.dwell = 0, .energy = 1}}, anything_as_point));
+        per_energy_ = ratios_of(
+            worst_over_time(pattern_, std::array{DwellEnergy{.dwell = 0, .energy = 1}}, anything_as_point));
         // A pulse alone makes no group, but it adds to one.
         per_energy_[group] = std::max(per_energy_[group], 1 / pattern_.group_limit);
     }
@@ -69,7 +77,8 @@ public:
         if (nothing_at_all()) return;
         const bool quick = question_.effort == Effort::quick;
         // A few places first: the more is known, the less has to be looked at.
-        for (double distance = nearest_; distance < farthest && (quick || !question_.field.alike); distance *= growth_of_distance)
+        for (double distance = nearest_; distance < farthest && (quick || !question_.field.alike);
+             distance *= growth_of_distance)
             if (!look(few_places(distance)) || enough()) break;
         if (worst_is_ours()) closer();
         if (quick) return;
@@ -91,13 +100,18 @@ public:
         parallel_for(where.size(), "looking for the worst place of the eye", progress_,
                      [&](std::size_t i) { places[i] = place_at(where[i]); });
         found_.work.places += where.size();
-        std::erase_if(places, [&](const Place& place) { return promise_of(ratios_of(place.as_point), found_.known) <= 1 + (retinal_ ? slack_ : 0); });
+        std::erase_if(places, [&](const Place& place) {
+            return promise_of(ratios_of(place.as_point), found_.known) <= 1 + (retinal_ ? slack_ : 0);
+        });
         if (places.empty()) return false;
-        if (!retinal_) keep_whole(places);
+        if (!retinal_)
+            keep_whole(places);
         else {
             std::vector<Place> alike;
             if (question_.field.alike) {
-                const auto full = [&](const Place& place) { return place.beams == question_.field.beams.size(); };
+                const auto full = [&](const Place& place) {
+                    return place.beams == question_.field.beams.size();
+                };
                 std::ranges::copy_if(places, std::back_inserter(alike), full);
                 std::erase_if(places, full);
             }
@@ -111,16 +125,19 @@ private:
     // Whether all the light of the module through one pupil would not matter.
     [[nodiscard]] bool nothing_at_all() const {
         EnteringLight all;
-        for (const Beam& beam : question_.field.beams) all.beams.push_back({.zone = beam.zone, .energy = beam.power * pattern_.plan.pulse_width});
+        for (const Beam& beam : question_.field.beams)
+            all.beams.push_back({.zone = beam.zone, .energy = beam.power * pattern_.plan.pulse_width});
         return all.beams.empty() || promise_of(ratios_of(as_point(all)), found_.known) <= 1;
     }
 
     [[nodiscard]] bool enough() const { return found_.worst_ratio() > question_.enough; }
     [[nodiscard]] const EyeCase& worst() const {
-        return *std::ranges::max_element(found_.worst, {}, [](const EyeCase& each) { return each.part.worst.ratio; });
+        return *std::ranges::max_element(found_.worst, {},
+                                         [](const EyeCase& each) { return each.part.worst.ratio; });
     }
     [[nodiscard]] bool worst_is_ours() const {
-        return worst().part.worst.ratio > 0 && worst().condition == question_.condition && worst().mechanism == pattern_.curve.mechanism;
+        return worst().part.worst.ratio > 0 && worst().condition == question_.condition &&
+               worst().mechanism == pattern_.curve.mechanism;
     }
 
     [[nodiscard]] TimedRatios as_point(const EnteringLight& light) const {
@@ -132,7 +149,9 @@ private:
         return worst_over_time(pattern_, dwells, anything_as_point);
     }
 
-    [[nodiscard]] EnteringLight light_at(const EyePlace& eye) const { return entering_light(question_.field, eye, pattern_.plan.pulse_width); }
+    [[nodiscard]] EnteringLight light_at(const EyePlace& eye) const {
+        return entering_light(question_.field, eye, pattern_.plan.pulse_width);
+    }
 
     [[nodiscard]] Place place_at(const Vec3& where) const {
         const EyePlace eye{.place = where, .pupil_radius = radius_};
@@ -144,7 +163,8 @@ private:
         return search_windows(pattern_, image, dwell_of_zone_, found_.known, slack);
     }
 
-    // Directions that any light goes to, as a square of (y, z) of the unit direction, and the raster's step there.
+    // Directions that any light goes to, as a square of (y, z) of the unit direction, and the raster's step
+    // there.
     [[nodiscard]] std::vector<Vec3> raster(double distance) const {
         Vec2 low(1, 1), high(-1, -1);
         double spot = 1e9;
@@ -152,8 +172,10 @@ private:
             const double aside = question_.field.spread + 3 * beam.exit_radius;
             const double reach = std::min(std::atan(beam.kernel.reach) + aside / distance, 1.5);
             const Vec2 middle(beam.axis.y(), beam.axis.z());
-            low = low.cwiseMin(middle - Vec2::Constant(reach)), high = high.cwiseMax(middle + Vec2::Constant(reach));
-            spot = std::min(spot, beam.kernel.shape == KernelShape::gaussian ? radius_at(beam, distance) : distance);
+            low = low.cwiseMin(middle - Vec2::Constant(reach)),
+            high = high.cwiseMax(middle + Vec2::Constant(reach));
+            spot = std::min(
+                spot, beam.kernel.shape == KernelShape::gaussian ? radius_at(beam, distance) : distance);
         }
         low = low.cwiseMax(-0.97), high = high.cwiseMin(0.97);
         const double step = std::min(std::max(radius_ / 2, 0.2 * spot) / distance, 0.06);
@@ -181,7 +203,8 @@ private:
         std::vector<Vec3> places{distance * question_.also.normalized()};
         for (const double y : {low.x(), (low.x() + high.x()) / 2, high.x()})
             for (const double z : {low.y(), (low.y() + high.y()) / 2, high.y()})
-                if (const double x2 = 1 - y * y - z * z; x2 > 0.04) places.push_back(distance * Vec3(std::sqrt(x2), y, z));
+                if (const double x2 = 1 - y * y - z * z; x2 > 0.04)
+                    places.push_back(distance * Vec3(std::sqrt(x2), y, z));
         return places;
     }
 
@@ -201,13 +224,16 @@ private:
             if (promise_of(ratios_of(place.as_point), found_.known) > 1) keep(whole(place), place.eye, 0);
     }
 
-    // Beams that are alike make images that differ between places in size and brightness only. So the worst of many
-    // places is at most that of the brightest of each beam in the smallest of their images: places are looked at
-    // all together, and divided only when that is too much.
+    // Beams that are alike make images that differ between places in size and brightness only. So the worst
+    // of many places is at most that of the brightest of each beam in the smallest of their images: places
+    // are looked at all together, and divided only when that is too much.
     void search_alike(std::vector<Place> places) {
-        std::ranges::stable_sort(places, std::greater{}, [&](const Place& place) { return promise_of(ratios_of(place.as_point), found_.known); });
+        std::ranges::stable_sort(places, std::greater{}, [&](const Place& place) {
+            return promise_of(ratios_of(place.as_point), found_.known);
+        });
         if (places.empty()) return;
-        if (std::ranges::all_of(found_.known, [](double known) { return known <= 0; })) search_set(std::span(places).first(1));
+        if (std::ranges::all_of(found_.known, [](double known) { return known <= 0; }))
+            search_set(std::span(places).first(1));
         search_set(places);
     }
 
@@ -216,11 +242,16 @@ private:
         const EnteringLight light = light_at(places.front().eye);
         std::vector<double> foci = vergences(light);
         // The sharpest image first: it is often the worst, and makes short work of the others.
-        std::ranges::sort(foci, {}, [&](double vergence) { return spot_of(light.beams.front(), light, vergence).half.sum(); });
+        std::ranges::sort(foci, {}, [&](double vergence) {
+            return spot_of(light.beams.front(), light, vergence).half.sum();
+        });
         bool more = false;
-        for (std::size_t first = 0, count = 1; first < foci.size(); first += count, count = foci.size() - first) {
+        for (std::size_t first = 0, count = 1; first < foci.size();
+             first += count, count = foci.size() - first) {
             std::vector<WindowSearch> results(count);
-            parallel_for(count, "looking for the worst part of the image", progress_, [&](std::size_t i) { results[i] = search(worst_image(places, foci[first + i]), slack_); });
+            parallel_for(count, "looking for the worst part of the image", progress_, [&](std::size_t i) {
+                results[i] = search(worst_image(places, foci[first + i]), slack_);
+            });
             for (std::size_t i = 0; i < count; ++i) {
                 ++found_.work.images;
                 found_.work.families += results[i].nodes;
@@ -237,8 +268,10 @@ private:
     [[nodiscard]] std::vector<Spot> worst_image(std::span<const Place> places, double vergence) const {
         std::vector<Spot> worst = retinal_image(light_at(places.front().eye), vergence);
         const auto size_of = [](std::span<const Spot> image) {
-            Vec2 low = image.front().middle - image.front().half, high = image.front().middle + image.front().half;
-            for (const Spot& spot : image) low = low.cwiseMin(spot.middle - spot.half), high = high.cwiseMax(spot.middle + spot.half);
+            Vec2 low = image.front().middle - image.front().half,
+                 high = image.front().middle + image.front().half;
+            for (const Spot& spot : image)
+                low = low.cwiseMin(spot.middle - spot.half), high = high.cwiseMax(spot.middle + spot.half);
             return Vec2(high - low);
         };
         const Vec2 size = size_of(worst);
@@ -246,7 +279,8 @@ private:
         for (const Place& place : places.subspan(1)) {
             const std::vector<Spot> image = retinal_image(light_at(place.eye), vergence);
             least = least.cwiseMin(size_of(image)), spot_half = spot_half.cwiseMin(image.front().half);
-            for (std::size_t i = 0; i < image.size(); ++i) worst[i].energy = std::max(worst[i].energy, image[i].energy);
+            for (std::size_t i = 0; i < image.size(); ++i)
+                worst[i].energy = std::max(worst[i].energy, image[i].energy);
         }
         const Vec2 scale = least.cwiseQuotient(size);
         for (Spot& spot : worst) spot.middle = spot.middle.cwiseProduct(scale), spot.half = spot_half;
@@ -268,20 +302,26 @@ private:
         LightRatios ratios{.as_point = ratios_of(place.as_point), .per_energy = per_energy_};
         const EnteringLight light = light_at(place.eye);
         // C5 falls with the number of pulses: that of all beams together is the least.
-        ratios.per_energy[train] = std::max(per_energy_[single], per_energy_[group]) / place.as_point[train].C5;
+        ratios.per_energy[train] =
+            std::max(per_energy_[single], per_energy_[group]) / place.as_point[train].C5;
         std::vector<Item> items;
         for (const double vergence : vergences(light)) {
-            Item item{.place = index, .vergence = vergence, .bound = image_bound(retinal_image(light, vergence), ratios, found_.known), .promise = 0};
+            Item item{.place = index,
+                      .vergence = vergence,
+                      .bound = image_bound(retinal_image(light, vergence), ratios, found_.known),
+                      .promise = 0};
             item.promise = promise_of(item.bound, found_.known);
             if (item.promise > 1 + slack_) items.push_back(item);
         }
         return items;
     }
 
-    // Batches in a fixed order, each judged against what the batches before it found: the same for any threads.
+    // Batches in a fixed order, each judged against what the batches before it found: the same for any
+    // threads.
     void search_items(const std::vector<Place>& places, const std::vector<Item>& items) {
         std::size_t size = 1;  // the most promising first, alone, to know something
-        for (std::size_t first = 0; first < items.size() && !enough(); first += size, size = std::min(batch, 2 * size)) {
+        for (std::size_t first = 0; first < items.size() && !enough();
+             first += size, size = std::min(batch, 2 * size)) {
             const std::size_t count = std::min(size, items.size() - first);
             std::vector<WindowSearch> results(count);
             parallel_for(count, "looking for the worst part of the image", progress_, [&](std::size_t i) {
@@ -306,13 +346,14 @@ private:
         }
     }
 
-    // Places and foci one step around the worst case; the step is a share of the pupil's radius, of a tenth of the
-    // distance and of a dioptre.
+    // Places and foci one step around the worst case; the step is a share of the pupil's radius, of a tenth
+    // of the distance and of a dioptre.
     void look_around(double step) {
         const EyeCase centre = worst();
         const double distance = centre.eye.place.norm();
         const Vec3 forward = centre.eye.place / distance;
-        const Vec3 aside = forward.cross(std::abs(forward.z()) < 0.9 ? Vec3::UnitZ() : Vec3::UnitY()).normalized();
+        const Vec3 aside =
+            forward.cross(std::abs(forward.z()) < 0.9 ? Vec3::UnitZ() : Vec3::UnitY()).normalized();
         const Vec3 up = aside.cross(forward);
         std::vector<EyeCase> trials;
         const auto add = [&](const Vec3& place, double vergence) {
@@ -322,15 +363,20 @@ private:
         };
         for (const double dy : {-step, 0.0, step})
             for (const double dz : {-step, 0.0, step})
-                add((centre.eye.place + radius_ * (dy * aside + dz * up)).normalized() * distance, centre.vergence);
+                add((centre.eye.place + radius_ * (dy * aside + dz * up)).normalized() * distance,
+                    centre.vergence);
         for (const double change : {-step, step}) {
             if (retinal_) add(centre.eye.place, centre.vergence + change);
             add(forward * std::max(nearest_, distance * (1 + 0.1 * change)), centre.vergence);
         }
         std::vector<WorstImageParts> parts(trials.size());
         parallel_for(trials.size(), "looking closer", progress_, [&](std::size_t i) {
-            if (retinal_) parts[i] = search(retinal_image(light_at(trials[i].eye), trials[i].vergence), slack_ > search_slack ? slack_ : 0).parts;
-            else parts[i] = whole(place_at(trials[i].eye.place));
+            if (retinal_)
+                parts[i] = search(retinal_image(light_at(trials[i].eye), trials[i].vergence),
+                                  slack_ > search_slack ? slack_ : 0)
+                               .parts;
+            else
+                parts[i] = whole(place_at(trials[i].eye.place));
         });
         found_.work.images += trials.size();
         for (std::size_t i = 0; i < trials.size(); ++i) keep(parts[i], trials[i].eye, trials[i].vergence);
@@ -367,7 +413,8 @@ EyeSearch search_eyes(const EyeQuestion& question, EyeSearch before, const Progr
     return search.result();
 }
 
-EyeSearch search_eyes_at(const EyeQuestion& question, std::span<const Vec3> places, EyeSearch before, const Progress& progress) {
+EyeSearch search_eyes_at(const EyeQuestion& question, std::span<const Vec3> places, EyeSearch before,
+                         const Progress& progress) {
     Search search(question, std::move(before), progress);
     search.look(places);
     return search.result();

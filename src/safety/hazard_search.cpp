@@ -16,7 +16,9 @@ constexpr std::size_t most_places = 400;
 std::vector<Vec3> in_front_of_beams(const LightSource& light, double distance, const Vec3& also) {
     std::vector<const Beam*> beams;
     for (const Beam& beam : light.field.beams) beams.push_back(&beam);
-    std::ranges::stable_sort(beams, std::greater{}, [&](const Beam* beam) { return beam->power / std::pow(radius_at(*beam, distance), 2); });
+    std::ranges::stable_sort(beams, std::greater{}, [&](const Beam* beam) {
+        return beam->power / std::pow(radius_at(*beam, distance), 2);
+    });
     std::vector<Vec3> places{distance * also.normalized()};
     const std::size_t stride = beams.size() / most_places + 1;
     for (std::size_t i = 0; i < beams.size(); ++i)
@@ -29,7 +31,8 @@ std::vector<Vec3> in_front_of_beams(const LightSource& light, double distance, c
 
 }  // namespace
 
-double search_hazard_distance(const LightSource& light, Condition condition, double time_base, const Vec3& also, const Progress& progress) {
+double search_hazard_distance(const LightSource& light, Condition condition, double time_base,
+                              const Vec3& also, const Progress& progress) {
     const double limit = limit_of_search(light);
     const std::vector<TimePattern> patterns = patterns_of(light, LaserClass::class_1, time_base);
     const auto exceeds = [&](double distance) {
@@ -37,12 +40,14 @@ double search_hazard_distance(const LightSource& light, Condition condition, dou
         EyeSearch found;
         found.known.fill(limit);
         for (const TimePattern& pattern : patterns) {
-            found = search_eyes_at({pattern, light.field, condition, light.closest_access, limit}, places, std::move(found), progress);
+            found = search_eyes_at({pattern, light.field, condition, light.closest_access, limit}, places,
+                                   std::move(found), progress);
             if (found.worst_ratio() > limit) return true;
         }
         return false;
     };
-    const double nearest = std::max(measurement(condition, light.wavelength, 10).distance, light.closest_access);
+    const double nearest =
+        std::max(measurement(condition, light.wavelength, 10).distance, light.closest_access);
     double last = 0;  // farthest distance that was found to be too much
     for (double distance = nearest; distance < farthest; distance *= growth)
         if (exceeds(distance)) last = distance;

@@ -24,7 +24,8 @@ struct Classes {
     std::array<unsigned char, fines> of_distance;  // first class whose longest side spans the distance
 
     Classes() {
-        for (std::size_t k = 0; k < classes; ++k) longest[k] = std::min(widest_side, alpha_min * std::pow(class_ratio, k));
+        for (std::size_t k = 0; k < classes; ++k)
+            longest[k] = std::min(widest_side, alpha_min * std::pow(class_ratio, k));
         longest.back() = widest_side;
         for (std::size_t i = 0; i < fines; ++i) {
             const double distance = static_cast<double>(i) * fine;
@@ -54,11 +55,14 @@ std::array<double, classes> energy_by_class(std::span<const Spot> spots, double 
     for (std::size_t i = 0; i < places.size(); ++i) {
         std::array<double, classes + 1> sums{};
         for (std::size_t j = i; j < places.size(); ++j) {
-            // Windows may hold parts of spots only: middles are up to one spot farther apart than the window is wide.
-            const double across = places[j].u - places[i].u - widest_spot, up = std::abs(places[j].v - places[i].v) - widest_spot;
+            // Windows may hold parts of spots only: middles are up to one spot farther apart than the window
+            // is wide.
+            const double across = places[j].u - places[i].u - widest_spot,
+                         up = std::abs(places[j].v - places[i].v) - widest_spot;
             if (across > widest_side) break;
             if (up > widest_side) continue;
-            sums[table.of_distance[static_cast<std::size_t>(std::max({across, up, 0.0}) / fine)]] += places[j].energy;
+            sums[table.of_distance[static_cast<std::size_t>(std::max({across, up, 0.0}) / fine)]] +=
+                places[j].energy;
         }
         double sum = 0;
         for (std::size_t k = 0; k < classes; ++k) most[k] = std::max(most[k], sum += sums[k]);
@@ -78,14 +82,17 @@ Ratios bound_of(const LightRatios& light, double narrowest, const Energy& energy
         const double subtense = (shortest + std::clamp(narrowest, alpha_min, shortest)) / 2;
         const double over_limit = share * share * growth_of_limit(alpha_min) / growth_of_limit(subtense);
         for (std::size_t c = 0; c < 4; ++c)
-            bound[c] = std::max(bound[c], over_limit * std::min(light.as_point[c], light.per_energy[c] * energy(k)));
+            bound[c] =
+                std::max(bound[c], over_limit * std::min(light.as_point[c], light.per_energy[c] * energy(k)));
     }
     return bound;
 }
 
 }  // namespace
 
-double growth_of_limit(double subtense) { return subtense * std::exp(-std::log(10.0) / 4 / 98.5e-3 * subtense); }
+double growth_of_limit(double subtense) {
+    return subtense * std::exp(-std::log(10.0) / 4 / 98.5e-3 * subtense);
+}
 
 Ratios image_bound(std::span<const Spot> spots, const LightRatios& light, const Ratios& known) {
     double narrowest = 1e9, widest = 0;

@@ -16,20 +16,21 @@ namespace {
 void add(LimitCurve& curve, std::span<const LimitRow> rows, double wavelength, Interval durations) {
     for (const LimitRow& row : rows) {
         if (row.mechanism != curve.mechanism || !touches(row.wavelength, wavelength)) continue;
-        LimitCurve::Piece piece{
-            .duration = {std::max(row.duration.from, durations.from), std::min(row.duration.to, durations.to)},
-            .coefficient = row.coefficient,
-            .exponent = row.exponent,
-            .C6 = row.times.C6,
-            .T2 = row.times.T2,
-            .watt = row.unit == LimitUnit::watt,
-            .source = row.source,
-            .reach = row.reach};
+        LimitCurve::Piece piece{.duration = {std::max(row.duration.from, durations.from),
+                                             std::min(row.duration.to, durations.to)},
+                                .coefficient = row.coefficient,
+                                .exponent = row.exponent,
+                                .C6 = row.times.C6,
+                                .T2 = row.times.T2,
+                                .watt = row.unit == LimitUnit::watt,
+                                .source = row.source,
+                                .reach = row.reach};
         if (row.times.C3) piece.coefficient *= c3(wavelength);
         if (row.times.C4) piece.coefficient *= c4(wavelength);
         if (row.times.C7) piece.coefficient *= c7(wavelength);
         // The Class 3B rows for up to and beyond 60 ms times C4 meet at a duration that is known here.
-        if (row.reach == Reach::up_to_60_ms_C4) piece.duration.to = std::min(piece.duration.to, 0.06 * c4(wavelength));
+        if (row.reach == Reach::up_to_60_ms_C4)
+            piece.duration.to = std::min(piece.duration.to, 0.06 * c4(wavelength));
         if (row.reach == Reach::beyond_60_ms_C4)
             piece.duration.from = std::max(piece.duration.from, 0.06 * c4(wavelength));
         if (piece.duration.from > piece.duration.to) continue;
@@ -47,10 +48,14 @@ double power(double t, double exponent) {
 
 bool holds_for(SourceSize source, double subtense) {
     switch (source) {
-        case SourceSize::any: return true;
-        case SourceSize::point: return subtense <= point_source;
-        case SourceSize::extended: return subtense > point_source;
-        case SourceSize::extended_to_82_mrad: return subtense > point_source && touches({0, 82e-3}, subtense);
+        case SourceSize::any:
+            return true;
+        case SourceSize::point:
+            return subtense <= point_source;
+        case SourceSize::extended:
+            return subtense > point_source;
+        case SourceSize::extended_to_82_mrad:
+            return subtense > point_source && touches({0, 82e-3}, subtense);
     }
     return false;
 }
@@ -77,7 +82,9 @@ LimitCurve limit_curve(LaserClass laser_class, double wavelength, Mechanism mech
     LimitCurve curve{.mechanism = mechanism, .pieces = {}, .bends = {}};
     switch (laser_class) {
         case LaserClass::class_1:
-        case LaserClass::class_1M: add(curve, limit_rows::class_1, wavelength, limit_durations); break;
+        case LaserClass::class_1M:
+            add(curve, limit_rows::class_1, wavelength, limit_durations);
+            break;
         case LaserClass::class_2:
         case LaserClass::class_2M:
             if (touches({700e-9, 1800e-9}, wavelength))
@@ -86,9 +93,13 @@ LimitCurve limit_curve(LaserClass laser_class, double wavelength, Mechanism mech
             add(curve, limit_rows::class_1, wavelength, {limit_durations.from, aversion_time_base});
             add(curve, limit_rows::class_2, wavelength, {aversion_time_base, limit_durations.to});
             break;
-        case LaserClass::class_3R: add(curve, limit_rows::class_3R, wavelength, limit_durations); break;
-        case LaserClass::class_3B: break;
-        case LaserClass::class_4: refuse("Class 4 has no limit", "Class 1, 1M, 2, 2M, 3R or 3B");
+        case LaserClass::class_3R:
+            add(curve, limit_rows::class_3R, wavelength, limit_durations);
+            break;
+        case LaserClass::class_3B:
+            break;
+        case LaserClass::class_4:
+            refuse("Class 4 has no limit", "Class 1, 1M, 2, 2M, 3R or 3B");
     }
     add(curve, limit_rows::class_3B, wavelength, limit_durations);
     std::ranges::sort(curve.bends);

@@ -12,13 +12,15 @@ constexpr double small_t2 = 10;  // s, T2 of a small source
 // Up to here a retinal limit is C6 times that of a point.
 constexpr double short_of_t2 = small_t2 * (1 - 1e-6);
 constexpr double least_of_c5 = 0.2;
-// Limits without C6 have one row that asks for an extended source; it only lowers the limit, so it always counts.
+// Limits without C6 have one row that asks for an extended source; it only lowers the limit, so it always
+// counts.
 constexpr double without_c6 = 2 * alpha_min;
 
 double in_tables(double duration) { return std::clamp(duration, limit_durations.from, limit_durations.to); }
 
 // Limit of a part for a duration, given that of a point for durations where that is enough.
-double part_limit(const TimePattern& pattern, double duration, double point_limit, double subtense, double T2) {
+double part_limit(const TimePattern& pattern, double duration, double point_limit, double subtense,
+                  double T2) {
     if (pattern.curve.mechanism != Mechanism::retinal_thermal) return point_limit;
     if (duration <= short_of_t2) return point_limit * std::max(1.0, subtense / alpha_min);
     return pattern.curve.energy(in_tables(duration), subtense, T2);
@@ -31,36 +33,43 @@ double point_limit(const TimePattern& pattern, double duration) {
 
 // Whether a duration is within the time base and belongs to the aperture under test.
 bool counts(const TimePattern& pattern, double duration) {
-    return duration <= pattern.rules.time_base && duration >= pattern.rules.durations.from && duration <= pattern.rules.durations.to;
+    return duration <= pattern.rules.time_base && duration >= pattern.rules.durations.from &&
+           duration <= pattern.rules.durations.to;
 }
 
 TimedRatio emission(double duration, double pulses, double ae, double ael) {
     return {.ratio = ae / ael, .duration = duration, .pulses = pulses, .ae = ae, .ael = ael};
 }
 
-double start_of(const TimePattern& pattern, const DwellEnergy& dwell) { return pattern.plan.start[dwell.dwell]; }
+double start_of(const TimePattern& pattern, const DwellEnergy& dwell) {
+    return pattern.plan.start[dwell.dwell];
+}
 
 // Shots of a dwell that start within a stretch that opens with its first shot.
 double shots_within(const TimePattern& pattern, double stretch) {
     if (stretch < 0) return 0;
-    return std::min<double>(pattern.plan.shots, std::floor(stretch / pattern.plan.shot_period * (1 + 1e-12)) + 1);
+    return std::min<double>(pattern.plan.shots,
+                            std::floor(stretch / pattern.plan.shot_period * (1 + 1e-12)) + 1);
 }
 
 struct Within {
     double energy = 0, pulses = 0;
 };
 
-// The most that starts within a stretch shorter than a frame: the stretch opens with the first shot of a dwell or closes with the last shot
-// of one, because between such moments the energy changes at a constant rate. Dwells do not overlap, so all but one of
-// those that it reaches are whole.
+// The most that starts within a stretch shorter than a frame: the stretch opens with the first shot of a
+// dwell or closes with the last shot of one, because between such moments the energy changes at a constant
+// rate. Dwells do not overlap, so all but one of those that it reaches are whole.
 Within most_within(const TimePattern& pattern, std::span<const DwellEnergy> dwells, double stretch) {
     const FiringPlan& plan = pattern.plan;
     const double last_shot = (plan.shots - 1) * plan.shot_period, slack = 1e-12 * plan.frame_period;
     const std::size_t count = dwells.size();
-    const auto time = [&](std::size_t i) { return start_of(pattern, dwells[i % count]) + (i >= count ? plan.frame_period : 0); };
+    const auto time = [&](std::size_t i) {
+        return start_of(pattern, dwells[i % count]) + (i >= count ? plan.frame_period : 0);
+    };
     Within most;
     const auto consider = [&](double whole, std::size_t number, double part, double energy) {
-        const Within found{whole * plan.shots + part * energy, static_cast<double>(number) * plan.shots + part};
+        const Within found{whole * plan.shots + part * energy,
+                           static_cast<double>(number) * plan.shots + part};
         if (found.energy > most.energy) most = found;
     };
     // Opened by dwell `first`: those up to `next` are whole.
@@ -68,8 +77,10 @@ Within most_within(const TimePattern& pattern, std::span<const DwellEnergy> dwel
     std::size_t next = 0;
     for (std::size_t first = 0; first < count; ++first) {
         if (next < first) next = first, sum = 0;
-        while (next < first + count && time(next) + last_shot - time(first) <= stretch + slack) sum += dwells[next++ % count].energy;
-        const double part = next < first + count ? shots_within(pattern, stretch - (time(next) - time(first))) : 0;
+        while (next < first + count && time(next) + last_shot - time(first) <= stretch + slack)
+            sum += dwells[next++ % count].energy;
+        const double part =
+            next < first + count ? shots_within(pattern, stretch - (time(next) - time(first))) : 0;
         consider(sum, next - first, part, dwells[next % count].energy);
         if (next > first) sum -= dwells[first].energy;
     }
@@ -79,36 +90,48 @@ Within most_within(const TimePattern& pattern, std::span<const DwellEnergy> dwel
     for (std::size_t i = 1; i < count; ++i) sum += dwells[i].energy;
     for (std::size_t last = count; last < 2 * count; ++last) {
         sum += dwells[last - count].energy;
-        while (first <= last && time(last) + last_shot - time(first) > stretch + slack) sum -= dwells[first++ % count].energy;
+        while (first <= last && time(last) + last_shot - time(first) > stretch + slack)
+            sum -= dwells[first++ % count].energy;
         const std::size_t before = first - 1;  // reached in part, unless it is `last` of the frame before
-        const double part = before + count > last ? shots_within(pattern, stretch - (time(last) - time(before))) : 0;
+        const double part =
+            before + count > last ? shots_within(pattern, stretch - (time(last) - time(before))) : 0;
         consider(sum, last + 1 - first, std::min<double>(part, plan.shots), dwells[before % count].energy);
         if (first + count == last + 1) sum -= dwells[first++ % count].energy;
     }
     return most;
 }
 
-TimedRatio worst_single(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size) {
+TimedRatio worst_single(const TimePattern& pattern, std::span<const DwellEnergy> dwells,
+                        const PartSize& size) {
     double strongest = 0;
     for (const DwellEnergy& dwell : dwells) strongest = std::max(strongest, dwell.energy);
     const double duration = pattern.plan.pulse_width;
     if (shortest_duration(size.side) > duration || !counts(pattern, duration)) return {};
-    return emission(duration, 1, strongest, part_limit(pattern, duration, pattern.single_limit, size.subtense, small_t2));
+    return emission(duration, 1, strongest,
+                    part_limit(pattern, duration, pattern.single_limit, size.subtense, small_t2));
 }
 
-TimedRatio worst_group(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size) {
-    if (shortest_duration(size.side) > pattern.group_time || pattern.plan.pulse_width > pattern.group_time || !counts(pattern, pattern.group_time)) return {};
+TimedRatio worst_group(const TimePattern& pattern, std::span<const DwellEnergy> dwells,
+                       const PartSize& size) {
+    if (shortest_duration(size.side) > pattern.group_time || pattern.plan.pulse_width > pattern.group_time ||
+        !counts(pattern, pattern.group_time))
+        return {};
     const double frames = std::floor(pattern.group_time / pattern.plan.frame_period * (1 + 1e-12));
-    Within most = most_within(pattern, dwells, std::max(0.0, pattern.group_time - frames * pattern.plan.frame_period));
+    Within most =
+        most_within(pattern, dwells, std::max(0.0, pattern.group_time - frames * pattern.plan.frame_period));
     for (const DwellEnergy& dwell : dwells)
         most.energy += frames * pattern.plan.shots * dwell.energy, most.pulses += frames * pattern.plan.shots;
     if (most.pulses <= 1) return {};
-    return emission(pattern.group_time, most.pulses, most.energy, part_limit(pattern, pattern.group_time, pattern.group_limit, size.subtense, small_t2));
+    return emission(pattern.group_time, most.pulses, most.energy,
+                    part_limit(pattern, pattern.group_time, pattern.group_limit, size.subtense, small_t2));
 }
 
 // Least C5 over a family of subtenses: at its ends and just beyond each bound between cells that lies inside.
 double least_c5(const TimePattern& pattern, const PartSize& size, double count) {
-    TrainPulse pulse{.wavelength = pattern.rules.wavelength, .duration = pattern.plan.pulse_width, .count = count, .time_base = pattern.rules.time_base};
+    TrainPulse pulse{.wavelength = pattern.rules.wavelength,
+                     .duration = pattern.plan.pulse_width,
+                     .count = count,
+                     .time_base = pattern.rules.time_base};
     double least = 1;
     const auto consider = [&](double subtense) {
         pulse.subtense = subtense;
@@ -139,16 +162,21 @@ double dwells_within(const TimePattern& pattern, std::span<const DwellEnergy> dw
     return static_cast<double>(most);
 }
 
-TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size, const TimedRatio& single, const TimedRatio& group, double known) {
+TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size,
+                       const TimedRatio& single, const TimedRatio& group, double known) {
     const FiringPlan& plan = pattern.plan;
-    if (pattern.curve.mechanism != Mechanism::retinal_thermal || plan.pulse_width > aversion_time_base || single.ratio <= 0) return {};
+    if (pattern.curve.mechanism != Mechanism::retinal_thermal || plan.pulse_width > aversion_time_base ||
+        single.ratio <= 0)
+        return {};
     if (std::max(single.ratio, group.ratio) <= least_of_c5 * known) return {};
     const bool grouped = group.pulses > 1;
     const double span = (plan.shots - 1) * plan.shot_period;
-    const double groups_a_dwell = grouped ? std::min<double>(plan.shots, std::floor(span / pattern.group_time) + 1) : plan.shots;
+    const double groups_a_dwell =
+        grouped ? std::min<double>(plan.shots, std::floor(span / pattern.group_time) + 1) : plan.shots;
     const double window = std::min(t2(size.largest_subtense), pattern.rules.time_base);
     const double frames = std::ceil(window / plan.frame_period * (1 - 1e-12));
-    const double dwells_counted = frames > 1 ? frames * static_cast<double>(dwells.size()) : dwells_within(pattern, dwells, window);
+    const double dwells_counted =
+        frames > 1 ? frames * static_cast<double>(dwells.size()) : dwells_within(pattern, dwells, window);
     const double count = groups_a_dwell * dwells_counted;
     TimedRatio worst = grouped && group.ratio > single.ratio ? group : single;
     worst.C5 = least_c5(pattern, size, std::max(1.0, count));
@@ -163,12 +191,20 @@ constexpr double many_frames = 100;  // of which one more or less makes no diffe
 // Classes of duration that need no closer look when a bound is enough.
 constexpr double coarse_of_few = 1.02, coarse_of_many = 1.06;
 
-// The most that one stretch of whole dwells holds, over all durations. Stretches are sorted into classes of duration; a
-// class whose most energy over its least limit is not above what is known is dropped, others are halved.
+// The most that one stretch of whole dwells holds, over all durations. Stretches are sorted into classes of
+// duration; a class whose most energy over its least limit is not above what is known is dropped, others are
+// halved.
 class AverageSearch {
 public:
-    AverageSearch(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size, double known)
-        : pattern_(pattern), dwells_(dwells), size_(size), retinal_(pattern.curve.mechanism == Mechanism::retinal_thermal), t2_(t2(size.subtense)), shortest_(shortest_duration(size.side)), known_(known) {
+    AverageSearch(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size,
+                  double known)
+        : pattern_(pattern),
+          dwells_(dwells),
+          size_(size),
+          retinal_(pattern.curve.mechanism == Mechanism::retinal_thermal),
+          t2_(t2(size.subtense)),
+          shortest_(shortest_duration(size.side)),
+          known_(known) {
         for (const DwellEnergy& dwell : dwells) frame_energy_ += pattern.plan.shots * dwell.energy;
     }
 
@@ -177,8 +213,8 @@ public:
         const double period = pattern_.plan.frame_period, length = pattern_.dwell_length;
         pairs_of_shots();
         stretches(0, {length, period + length});
-        // Between bounds the ratio is quasi-convex in the number of frames, and in how much of a dwell is cut off: worst
-        // just before a bound or just beyond it.
+        // Between bounds the ratio is quasi-convex in the number of frames, and in how much of a dwell is cut
+        // off: worst just before a bound or just beyond it.
         const double base = pattern_.rules.time_base;
         std::vector<double> done{0};  // numbers of frames whose stretches have been looked at
         const auto around = [&](double bound) {
@@ -207,7 +243,9 @@ public:
 
 private:
     [[nodiscard]] double limit(double duration) const {
-        return part_limit(pattern_, duration, duration > short_of_t2 && retinal_ ? 0 : point_limit(pattern_, duration), size_.subtense, t2_);
+        return part_limit(pattern_, duration,
+                          duration > short_of_t2 && retinal_ ? 0 : point_limit(pattern_, duration),
+                          size_.subtense, t2_);
     }
 
     // Least limit from `shorter` to `longer`: it grows but for small steps down where it bends.
@@ -242,21 +280,28 @@ private:
         const double frames = std::floor(duration / pattern_.plan.frame_period * (1 + 1e-12));
         const double least = known_ * limit(duration) - frames * frame_energy_;
         if (frame_energy_ <= least) return;
-        const Within rest = most_within(pattern_, dwells_, std::max(0.0, duration - frames * pattern_.plan.frame_period));
-        const double pulses = frames * static_cast<double>(dwells_.size()) * pattern_.plan.shots + rest.pulses;
+        const Within rest =
+            most_within(pattern_, dwells_, std::max(0.0, duration - frames * pattern_.plan.frame_period));
+        const double pulses =
+            frames * static_cast<double>(dwells_.size()) * pattern_.plan.shots + rest.pulses;
         consider(duration, frames * frame_energy_ + rest.energy, pulses);
     }
 
-    // The longest windows of at most a duration, or the shortest of at least it: opened by the first shot of a dwell or
-    // closed by the last shot of one. Among many dwells a part of one matters little.
+    // The longest windows of at most a duration, or the shortest of at least it: opened by the first shot of
+    // a dwell or closed by the last shot of one. Among many dwells a part of one matters little.
     void beside(double duration, bool beyond) {
         const FiringPlan& plan = pattern_.plan;
         if ((!beyond && duration < plan.pulse_width) || dwells_.size() > few) return;
-        const double last_shot = (plan.shots - 1) * plan.shot_period, apart = std::max(0.0, duration - plan.pulse_width);
-        const double frames = std::floor(apart / plan.frame_period), rest = apart - frames * plan.frame_period;
+        const double last_shot = (plan.shots - 1) * plan.shot_period,
+                     apart = std::max(0.0, duration - plan.pulse_width);
+        const double frames = std::floor(apart / plan.frame_period),
+                     rest = apart - frames * plan.frame_period;
         if ((frames + 2) * frame_energy_ <= known_ * limit(std::max(duration, plan.pulse_width))) return;
         const std::size_t count = dwells_.size();
-        const auto time = [&](std::size_t i) { return start_of(pattern_, dwells_[i % count]) + static_cast<double>(i / count) * plan.frame_period; };
+        const auto time = [&](std::size_t i) {
+            return start_of(pattern_, dwells_[i % count]) +
+                   static_cast<double>(i / count) * plan.frame_period;
+        };
         for (std::size_t first = 0; first < count; ++first)
             for (const bool ahead : {true, false}) {
                 double energy = 0, pulses = 0, length = 0;
@@ -266,9 +311,13 @@ private:
                     if (!beyond && (away > rest || k == count)) break;
                     const bool whole = away + last_shot < rest;
                     const double cut = std::max(0.0, (rest - away) / plan.shot_period);
-                    const double shots = whole ? plan.shots
-                                               : std::min<double>(plan.shots, (beyond ? std::ceil(cut * (1 - 1e-12)) : std::floor(cut * (1 + 1e-12))) + 1);
-                    energy += shots * dwells_[i % count].energy, pulses += shots, length = away + (shots - 1) * plan.shot_period;
+                    const double shots =
+                        whole ? plan.shots
+                              : std::min<double>(plan.shots, (beyond ? std::ceil(cut * (1 - 1e-12))
+                                                                     : std::floor(cut * (1 + 1e-12))) +
+                                                                 1);
+                    energy += shots * dwells_[i % count].energy, pulses += shots,
+                        length = away + (shots - 1) * plan.shot_period;
                     if (!whole) break;
                 }
                 const double longest = frames * plan.frame_period + length + plan.pulse_width;
@@ -277,17 +326,20 @@ private:
             }
     }
 
-    // Whole frames and a stretch from the first pulse of a dwell to the last of one, its length within `range`.
+    // Whole frames and a stretch from the first pulse of a dwell to the last of one, its length within
+    // `range`.
     void stretches(double frames, Interval range) {
         if (frames < 0) return;
-        range.from = std::max(range.from, pattern_.dwell_length);  // never 0: halving by the root would not end
+        range.from =
+            std::max(range.from, pattern_.dwell_length);  // never 0: halving by the root would not end
         range.to = std::min(range.to, pattern_.rules.time_base - frames * pattern_.plan.frame_period);
         search(frames, range, most_over_least(frames, range));
     }
 
     // Most energy over the least limit of such stretches.
     [[nodiscard]] double most_over_least(double frames, const Interval& range) const {
-        const double before = frames * pattern_.plan.frame_period, shorter = std::max(before + range.from, shortest_);
+        const double before = frames * pattern_.plan.frame_period,
+                     shorter = std::max(before + range.from, shortest_);
         if (range.from > range.to || before + range.to < shortest_) return 0;
         const double least = least_limit(shorter, before + range.to);
         if ((frames + 1) * frame_energy_ <= known_ * least) return 0;
@@ -306,14 +358,16 @@ private:
             const double least = least_limit(std::max(before + range.from, shortest_), before + range.to);
             each_stretch(range, [&](double duration, double energy, std::size_t count) {
                 if (frames * frame_energy_ + energy <= known_ * least) return;
-                const double dwells = frames * static_cast<double>(dwells_.size()) + static_cast<double>(count);
+                const double dwells =
+                    frames * static_cast<double>(dwells_.size()) + static_cast<double>(count);
                 consider(before + duration, frames * frame_energy_ + energy, dwells * pattern_.plan.shots);
             });
             return;
         }
         const double middle = std::sqrt(range.from * range.to);
         const Interval shorter{range.from, middle}, longer{middle, range.to};
-        const double of_shorter = most_over_least(frames, shorter), of_longer = most_over_least(frames, longer);
+        const double of_shorter = most_over_least(frames, shorter),
+                     of_longer = most_over_least(frames, longer);
         if (of_shorter > of_longer) search(frames, shorter, of_shorter);
         search(frames, longer, of_longer);
         if (of_shorter <= of_longer) search(frames, shorter, of_shorter);
@@ -321,7 +375,8 @@ private:
 
     [[nodiscard]] double time(std::size_t i) const {
         const std::size_t count = dwells_.size();
-        return i < count ? start_of(pattern_, dwells_[i]) : start_of(pattern_, dwells_[i - count]) + pattern_.plan.frame_period;
+        return i < count ? start_of(pattern_, dwells_[i])
+                         : start_of(pattern_, dwells_[i - count]) + pattern_.plan.frame_period;
     }
     [[nodiscard]] double energy(std::size_t i) const {
         return dwells_[i < dwells_.size() ? i : i - dwells_.size()].energy * pattern_.plan.shots;
@@ -344,11 +399,13 @@ private:
     template <class Visit>
     void each_stretch(const Interval& range, const Visit& visit) const {
         const double slack = 1e-12 * pattern_.plan.frame_period, length = pattern_.dwell_length;
-        double sum = 0;  // of dwells from `first` up to but not `next`, the first that makes the stretch long enough
+        double sum =
+            0;  // of dwells from `first` up to but not `next`, the first that makes the stretch long enough
         std::size_t next = 0;
         for (std::size_t first = 0; first < dwells_.size(); ++first) {
             if (next < first) next = first, sum = 0;
-            while (next < first + dwells_.size() && time(next) - time(first) + length < range.from - slack) sum += energy(next++);
+            while (next < first + dwells_.size() && time(next) - time(first) + length < range.from - slack)
+                sum += energy(next++);
             double energies = sum;
             for (std::size_t last = next; last < first + dwells_.size(); ++last) {
                 energies += energy(last);
@@ -394,15 +451,18 @@ double energy_within(const TimePattern& pattern, std::span<const DwellEnergy> dw
     return most_within(pattern, dwells, stretch).energy;
 }
 
-TimedRatios worst_over_time(const TimePattern& pattern, std::span<const DwellEnergy> dwells, const PartSize& size, const Ratios& known) {
+TimedRatios worst_over_time(const TimePattern& pattern, std::span<const DwellEnergy> dwells,
+                            const PartSize& size, const Ratios& known) {
     TimedRatios worst;
     if (dwells.empty()) return worst;
     TimedRatio& single = worst[static_cast<int>(PulseCriterion::single)];
     TimedRatio& group = worst[static_cast<int>(PulseCriterion::group)];
     single = worst_single(pattern, dwells, size);
     group = worst_group(pattern, dwells, size);
-    worst[static_cast<int>(PulseCriterion::train)] = worst_train(pattern, dwells, size, single, group, known[static_cast<int>(PulseCriterion::train)]);
-    worst[static_cast<int>(PulseCriterion::average)] = AverageSearch(pattern, dwells, size, known[static_cast<int>(PulseCriterion::average)]).run();
+    worst[static_cast<int>(PulseCriterion::train)] =
+        worst_train(pattern, dwells, size, single, group, known[static_cast<int>(PulseCriterion::train)]);
+    worst[static_cast<int>(PulseCriterion::average)] =
+        AverageSearch(pattern, dwells, size, known[static_cast<int>(PulseCriterion::average)]).run();
     return worst;
 }
 

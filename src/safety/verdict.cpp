@@ -11,7 +11,8 @@ namespace glint {
 namespace {
 
 LaserClass class_of(AskedClass asked) {
-    constexpr LaserClass classes[] = {LaserClass::class_1, LaserClass::class_1M, LaserClass::class_2, LaserClass::class_2M, LaserClass::class_3R, LaserClass::class_3B};
+    constexpr LaserClass classes[] = {LaserClass::class_1,  LaserClass::class_1M, LaserClass::class_2,
+                                      LaserClass::class_2M, LaserClass::class_3R, LaserClass::class_3B};
     return classes[static_cast<int>(asked)];
 }
 
@@ -20,7 +21,9 @@ EyeSafetyRequirement asked_of(const Design& design) {
     std::optional<EyeSafetyRequirement> asked;
     for (const Requirement& each : design.requirements.list)
         if (const auto* safety = std::get_if<EyeSafetyRequirement>(&each)) {
-            const bool stricter = !asked || safety->laser_class < asked->laser_class || (safety->laser_class == asked->laser_class && safety->margin > asked->margin);
+            const bool stricter =
+                !asked || safety->laser_class < asked->laser_class ||
+                (safety->laser_class == asked->laser_class && safety->margin > asked->margin);
             if (stricter) asked = *safety;
         }
     return asked.value_or(EyeSafetyRequirement{});
@@ -59,29 +62,37 @@ SafetyVerdict judge_safety(const Design& design, const EmitterArray& array, cons
     verdict.criteria = exposure_cases(found);
     verdict.worst_ratio = found.bound();
     verdict.margin = 1 - verdict.worst_ratio;
-    verdict.laser_class = classify(verdict.light, found, time_base, Effort::everywhere, Vec3::UnitX(), progress);
+    verdict.laser_class =
+        classify(verdict.light, found, time_base, Effort::everywhere, Vec3::UnitX(), progress);
 
     const EyeSafetyRequirement asked = asked_of(design);
     verdict.asked = class_of(asked.laser_class);
     verdict.asked_margin = asked.margin;
     verdict.asked_ratio = verdict.worst_ratio;
     if (verdict.asked != LaserClass::class_1) {
-        const ExposureQuestion question{verdict.asked, time_base_of(verdict.asked, verdict.light.wavelength, time_base), conditions_of(verdict.asked)};
+        const ExposureQuestion question{verdict.asked,
+                                        time_base_of(verdict.asked, verdict.light.wavelength, time_base),
+                                        conditions_of(verdict.asked)};
         verdict.asked_ratio = search_exposure(verdict.light, question, {}, progress).bound();
     }
     if (verdict.asked_ratio > 0) {
         const double scale = (1 - asked.margin) / verdict.asked_ratio;
         const FiringPlan& plan = verdict.light.plan;
-        verdict.largest_shot_energy = scale * shot_power(plan, array, worst_design.drive.peak_power) * plan.pulse_width;
+        verdict.largest_shot_energy =
+            scale * shot_power(plan, array, worst_design.drive.peak_power) * plan.pulse_width;
         verdict.largest_average_power = scale * average_power(plan, array, worst_design.drive.peak_power);
     }
     if (verdict.worst_ratio > 1) {
         const Vec3 worst_eye = verdict.criteria.front().eye;
-        verdict.hazard_distance = search_hazard_distance(verdict.light, Condition::naked_eye, time_base, worst_eye, progress);
-        verdict.aided_hazard_distance = search_hazard_distance(verdict.light, Condition::telescope, time_base, worst_eye, progress);
+        verdict.hazard_distance =
+            search_hazard_distance(verdict.light, Condition::naked_eye, time_base, worst_eye, progress);
+        verdict.aided_hazard_distance =
+            search_hazard_distance(verdict.light, Condition::telescope, time_base, worst_eye, progress);
     }
     for (const Fault& fault : design.eye_safety.faults.list)
-        verdict.faults.push_back(judge_fault(worst_design, array, fault, verdict.asked, verdict.criteria.empty() ? Vec3::UnitX() : verdict.criteria.front().eye, progress));
+        verdict.faults.push_back(
+            judge_fault(worst_design, array, fault, verdict.asked,
+                        verdict.criteria.empty() ? Vec3::UnitX() : verdict.criteria.front().eye, progress));
     verdict.found = std::move(found);
     return verdict;
 }

@@ -26,14 +26,15 @@ std::vector<Box> boxes_of(std::span<const Spot> spots, std::span<const int> dwel
     std::vector<Box> boxes;
     boxes.reserve(spots.size());
     for (const Spot& spot : spots)
-        boxes.push_back({spot.middle.x() - spot.half.x(), spot.middle.x() + spot.half.x(), spot.middle.y() - spot.half.y(),
-                         spot.middle.y() + spot.half.y(), spot.energy, dwell_of_zone[spot.zone]});
+        boxes.push_back({spot.middle.x() - spot.half.x(), spot.middle.x() + spot.half.x(),
+                         spot.middle.y() - spot.half.y(), spot.middle.y() + spot.half.y(), spot.energy,
+                         dwell_of_zone[spot.zone]});
     std::ranges::stable_sort(boxes, {}, &Box::dwell);
     return boxes;
 }
 
-// Edges that all but coincide become one: arithmetic on one row of emitters differs by less, and so do beams of one
-// kind that a lens treats a little differently. Low edges go down and high edges up.
+// Edges that all but coincide become one: arithmetic on one row of emitters differs by less, and so do beams
+// of one kind that a lens treats a little differently. Low edges go down and high edges up.
 template <class Less>
 void snap(std::vector<Box>& boxes, double Box::*edge, double tolerance, const Less& less) {
     std::vector<Box*> order;
@@ -48,8 +49,11 @@ void snap(std::vector<Box>& boxes, double Box::*edge, double tolerance, const Le
 
 void snap_edges(std::vector<Box>& boxes) {
     double u = 1, v = 1;
-    for (const Box& box : boxes) u = std::min(u, box.high_u - box.low_u), v = std::min(v, box.high_v - box.low_v);
-    const auto tolerance = [](double side) { return std::max(1e-9, snapping * std::max(side, 0.2 * alpha_min)); };
+    for (const Box& box : boxes)
+        u = std::min(u, box.high_u - box.low_u), v = std::min(v, box.high_v - box.low_v);
+    const auto tolerance = [](double side) {
+        return std::max(1e-9, snapping * std::max(side, 0.2 * alpha_min));
+    };
     snap(boxes, &Box::low_u, tolerance(u), std::less{});
     snap(boxes, &Box::high_u, tolerance(u), std::greater{});
     snap(boxes, &Box::low_v, tolerance(v), std::less{});
@@ -68,9 +72,10 @@ struct Interval1 {
     [[nodiscard]] double width() const { return end - begin; }
 };
 
-// Sides that a best window can have: from the low edge of a spot to the high edge of one, or of a set length with one
-// end on such an edge.
-std::vector<Interval1> candidate_sides(const std::vector<Box>& boxes, double Box::*low, double Box::*high, std::span<const double> lengths) {
+// Sides that a best window can have: from the low edge of a spot to the high edge of one, or of a set length
+// with one end on such an edge.
+std::vector<Interval1> candidate_sides(const std::vector<Box>& boxes, double Box::*low, double Box::*high,
+                                       std::span<const double> lengths) {
     std::vector<double> lows, highs;
     for (const Box& box : boxes) lows.push_back(box.*low), highs.push_back(box.*high);
     lows = distinct(std::move(lows)), highs = distinct(std::move(highs));
@@ -88,8 +93,8 @@ std::vector<Interval1> candidate_sides(const std::vector<Box>& boxes, double Box
     return sides;
 }
 
-// alpha_max of every stretch of time that the dwells of an image can make, those within half a percent (with many dwells
-// one percent) as the smallest.
+// alpha_max of every stretch of time that the dwells of an image can make, those within half a percent (with
+// many dwells one percent) as the smallest.
 std::vector<double> side_limits(const TimePattern& pattern, const std::vector<Box>& boxes) {
     double apart = 1.005;
     std::vector<double> limits{alpha_max(pattern.plan.pulse_width), short_side, widest_side};
@@ -104,7 +109,8 @@ std::vector<double> side_limits(const TimePattern& pattern, const std::vector<Bo
         for (double frames = 0; frames * period < 0.25; ++frames)
             for (const double first : starts)
                 for (const double last : starts) {
-                    const double duration = frames * period + last - first + (last < first ? period : 0) + pattern.dwell_length;
+                    const double duration =
+                        frames * period + last - first + (last < first ? period : 0) + pattern.dwell_length;
                     if (duration < 0.25) limits.push_back(alpha_max(duration));
                 }
     }
@@ -116,8 +122,8 @@ std::vector<double> side_limits(const TimePattern& pattern, const std::vector<Bo
     return kept;
 }
 
-// Candidate sides in a binary tree: first apart by length, then by place. A node knows what holds for all below it, and
-// is divided when it is first asked for its children.
+// Candidate sides in a binary tree: first apart by length, then by place. A node knows what holds for all
+// below it, and is divided when it is first asked for its children.
 class SideTree {
 public:
     struct Node {
@@ -137,10 +143,15 @@ public:
             const Node parent = nodes_[node];
             const auto begin = sides_.begin() + static_cast<std::ptrdiff_t>(parent.first);
             const std::size_t half = parent.count / 2;
-            const auto middle = begin + static_cast<std::ptrdiff_t>(half), end = begin + static_cast<std::ptrdiff_t>(parent.count);
+            const auto middle = begin + static_cast<std::ptrdiff_t>(half),
+                       end = begin + static_cast<std::ptrdiff_t>(parent.count);
             if (parent.longest > 1.25 * parent.shortest)
-                std::nth_element(begin, middle, end, [](const Interval1& a, const Interval1& b) { return a.width() < b.width(); });
-            else std::nth_element(begin, middle, end, [](const Interval1& a, const Interval1& b) { return a.begin < b.begin; });
+                std::nth_element(begin, middle, end, [](const Interval1& a, const Interval1& b) {
+                    return a.width() < b.width();
+                });
+            else
+                std::nth_element(begin, middle, end,
+                                 [](const Interval1& a, const Interval1& b) { return a.begin < b.begin; });
             nodes_[node].left = static_cast<int>(nodes_.size());
             add(parent.first, half);
             add(parent.first + half, parent.count - half);
@@ -154,7 +165,8 @@ private:
         for (std::size_t i = first; i < first + count; ++i) {
             const Interval1& side = sides_[i];
             node.low = std::min(node.low, side.begin), node.high = std::max(node.high, side.end);
-            node.shortest = std::min(node.shortest, side.width()), node.longest = std::max(node.longest, side.width());
+            node.shortest = std::min(node.shortest, side.width()),
+            node.longest = std::max(node.longest, side.width());
         }
         nodes_.push_back(node);
     }
@@ -178,7 +190,8 @@ double overlap(double low, double high, double from, double to, double longest) 
 }
 
 // Bounds on the size of a family of windows.
-PartSize size_of_family(double shortest_u, double longest_u, double shortest_v, double longest_v, double whole) {
+PartSize size_of_family(double shortest_u, double longest_u, double shortest_v, double longest_v,
+                        double whole) {
     return {.subtense = (clamped(shortest_u) + clamped(shortest_v)) / 2,
             .largest_subtense = (std::max(longest_u, alpha_min) + std::max(longest_v, alpha_min)) / 2,
             .side = std::max(shortest_u, shortest_v),
@@ -203,10 +216,12 @@ public:
         : Search(pattern, boxes, side_limits(pattern, boxes), floor, slack) {}
 
     WindowSearch run() {
-        Family root{.side_u = 0, .side_v = 0, .members = std::vector<int>(boxes_.size()), .excess = 0, .bound = {}};
+        Family root{
+            .side_u = 0, .side_v = 0, .members = std::vector<int>(boxes_.size()), .excess = 0, .bound = {}};
         for (std::size_t i = 0; i < boxes_.size(); ++i) root.members[i] = static_cast<int>(i);
         if (weigh(root)) open_.push_back(std::move(root));
-        // Straight down to a good window of each criterion: with something known most families are dropped at once.
+        // Straight down to a good window of each criterion: with something known most families are dropped at
+        // once.
         for (std::size_t c = 0; c < 4; ++c) dive(c);
         std::ranges::make_heap(open_, LessPromising{});
         while (!open_.empty()) {
@@ -226,10 +241,17 @@ public:
     }
 
 private:
-    Search(const TimePattern& pattern, const std::vector<Box>& boxes, const std::vector<double>& lengths, const Ratios& floor, double slack)
-        : pattern_(pattern), boxes_(boxes), tree_u_(candidate_sides(boxes, &Box::low_u, &Box::high_u, lengths)),
-          tree_v_(candidate_sides(boxes, &Box::low_v, &Box::high_v, lengths)), slack_(slack), known_(floor) {
-        const auto extent = [](const SideTree& tree) { return std::max(tree[0].high - tree[0].low, alpha_min); };
+    Search(const TimePattern& pattern, const std::vector<Box>& boxes, const std::vector<double>& lengths,
+           const Ratios& floor, double slack)
+        : pattern_(pattern),
+          boxes_(boxes),
+          tree_u_(candidate_sides(boxes, &Box::low_u, &Box::high_u, lengths)),
+          tree_v_(candidate_sides(boxes, &Box::low_v, &Box::high_v, lengths)),
+          slack_(slack),
+          known_(floor) {
+        const auto extent = [](const SideTree& tree) {
+            return std::max(tree[0].high - tree[0].low, alpha_min);
+        };
         whole_ = (extent(tree_u_) + extent(tree_v_)) / 2;
     }
 
@@ -244,7 +266,8 @@ private:
         for (std::size_t c = 0; c < 4; ++c) found_.bound[c] = std::max(found_.bound[c], bound[c]);
     }
 
-    // Bounds a family; false when it need not be looked into any more, or is a single window, which is then kept.
+    // Bounds a family; false when it need not be looked into any more, or is a single window, which is then
+    // kept.
     bool weigh(Family& family) {
         const SideTree::Node u = tree_u_[family.side_u], v = tree_v_[family.side_v];
         ++found_.nodes;
@@ -266,7 +289,8 @@ private:
 
     void dive(std::size_t c) {
         if (open_.empty()) return;
-        const auto best = std::ranges::max_element(open_, {}, [c](const Family& family) { return family.bound[c]; });
+        const auto best =
+            std::ranges::max_element(open_, {}, [c](const Family& family) { return family.bound[c]; });
         Family family = std::move(*best);
         open_.erase(best);
         while (true) {
@@ -279,9 +303,10 @@ private:
         }
     }
 
-    // Most energy by dwell, in time order, that a window of the family can hold, as if its limit were that of the
-    // smallest. What a window takes of a spot grows no faster than its sides until they are those of the spot, and so
-    // does its limit: over its limit it takes most at that size, or at the nearest to it that the family has.
+    // Most energy by dwell, in time order, that a window of the family can hold, as if its limit were that of
+    // the smallest. What a window takes of a spot grows no faster than its sides until they are those of the
+    // spot, and so does its limit: over its limit it takes most at that size, or at the nearest to it that
+    // the family has.
     void gather(std::span<const int> members, const SideTree::Node& u, const SideTree::Node& v) {
         energies_.clear();
         const double least = growth_of_limit((clamped(u.shortest) + clamped(v.shortest)) / 2);
@@ -293,10 +318,12 @@ private:
             const double share = share_u * overlap(box.low_v, box.high_v, v.low, v.high, v.longest);
             if (share <= 0) continue;
             // Only the part of a spot that the family can reach counts.
-            const double size_u = std::min(box.high_u, u.high) - std::max(box.low_u, u.low), size_v = std::min(box.high_v, v.high) - std::max(box.low_v, v.low);
+            const double size_u = std::min(box.high_u, u.high) - std::max(box.low_u, u.low),
+                         size_v = std::min(box.high_v, v.high) - std::max(box.low_v, v.low);
             if (size_u != spot_u || size_v != spot_v) {
                 spot_u = size_u, spot_v = size_v;
-                const double best_u = clamped(std::clamp(size_u, u.shortest, u.longest)), best_v = clamped(std::clamp(size_v, v.shortest, v.longest));
+                const double best_u = clamped(std::clamp(size_u, u.shortest, u.longest)),
+                             best_v = clamped(std::clamp(size_v, v.shortest, v.longest));
                 factor = std::min(1.0, least / growth_of_limit((best_u + best_v) / 2));
             }
             if (energies_.empty() || energies_.back().dwell != box.dwell) energies_.push_back({box.dwell, 0});
@@ -309,23 +336,34 @@ private:
             if (ratios[c].ratio <= known_[c]) continue;
             known_[c] = ratios[c].ratio;
             found_.bound[c] = std::max(found_.bound[c], ratios[c].ratio);
-            found_.parts[c] = {.worst = ratios[c], .low = {window.low_u, window.low_v}, .high = {window.high_u, window.high_v}, .subtense = subtense, .zones = {}};
+            found_.parts[c] = {.worst = ratios[c],
+                               .low = {window.low_u, window.low_v},
+                               .high = {window.high_u, window.high_v},
+                               .subtense = subtense,
+                               .zones = {}};
         }
     }
 
-    // Divides the side whose family is wider than its windows by more; halves that need not be looked into are left out.
+    // Divides the side whose family is wider than its windows by more; halves that need not be looked into
+    // are left out.
     std::vector<Family> halves(const Family& family) {
         const SideTree::Node u = tree_u_[family.side_u], v = tree_v_[family.side_v];
-        const double loose_u = u.count == 1 ? -1 : (u.high - u.low) / u.shortest, loose_v = v.count == 1 ? -1 : (v.high - v.low) / v.shortest;
+        const double loose_u = u.count == 1 ? -1 : (u.high - u.low) / u.shortest,
+                     loose_v = v.count == 1 ? -1 : (v.high - v.low) / v.shortest;
         const bool along_u = loose_u >= loose_v;
         const int left = along_u ? tree_u_.children(family.side_u) : tree_v_.children(family.side_v);
         std::vector<Family> pair;
         for (const int child : {left, left + 1}) {
-            Family half{.side_u = along_u ? child : family.side_u, .side_v = along_u ? family.side_v : child, .members = {}, .excess = 0, .bound = {}};
+            Family half{.side_u = along_u ? child : family.side_u,
+                        .side_v = along_u ? family.side_v : child,
+                        .members = {},
+                        .excess = 0,
+                        .bound = {}};
             const SideTree::Node &hu = tree_u_[half.side_u], &hv = tree_v_[half.side_v];
             for (const int i : family.members) {
                 const Box& box = boxes_[i];
-                if (box.high_u > hu.low && box.low_u < hu.high && box.high_v > hv.low && box.low_v < hv.high) half.members.push_back(i);
+                if (box.high_u > hu.low && box.low_u < hu.high && box.high_v > hv.low && box.low_v < hv.high)
+                    half.members.push_back(i);
             }
             if (!half.members.empty() && weigh(half)) pair.push_back(std::move(half));
         }
@@ -354,14 +392,17 @@ bool matters(const TimePattern& pattern, const std::vector<Box>& boxes, const Ra
     const double longest_u = longest(high_u - low_u), longest_v = longest(high_v - low_v);
     std::vector<DwellEnergy> energies;
     for (const Box& box : boxes) {
-        const double share = std::min(1.0, longest_u / (box.high_u - box.low_u)) * std::min(1.0, longest_v / (box.high_v - box.low_v));
-        const double best_u = std::clamp(box.high_u - box.low_u, alpha_min, longest_u), best_v = std::clamp(box.high_v - box.low_v, alpha_min, longest_v);
+        const double share = std::min(1.0, longest_u / (box.high_u - box.low_u)) *
+                             std::min(1.0, longest_v / (box.high_v - box.low_v));
+        const double best_u = std::clamp(box.high_u - box.low_u, alpha_min, longest_u),
+                     best_v = std::clamp(box.high_v - box.low_v, alpha_min, longest_v);
         const double factor = growth_of_limit(alpha_min) / growth_of_limit((best_u + best_v) / 2);
         if (energies.empty() || energies.back().dwell != box.dwell) energies.push_back({box.dwell, 0});
         energies.back().energy += share * factor * box.energy;
     }
     const double whole = (std::max(high_u - low_u, alpha_min) + std::max(high_v - low_v, alpha_min)) / 2;
-    const TimedRatios worst = worst_over_time(pattern, energies, size_of_family(alpha_min, longest_u, alpha_min, longest_v, whole), floor);
+    const TimedRatios worst = worst_over_time(
+        pattern, energies, size_of_family(alpha_min, longest_u, alpha_min, longest_v, whole), floor);
     for (std::size_t c = 0; c < 4; ++c)
         if (worst[c].ratio > floor[c] * (1 + slack)) return true;
     return false;
@@ -369,7 +410,8 @@ bool matters(const TimePattern& pattern, const std::vector<Box>& boxes, const Ra
 
 }  // namespace
 
-WindowSearch search_windows(const TimePattern& pattern, std::span<const Spot> spots, std::span<const int> dwell_of_zone, const Ratios& floor, double slack) {
+WindowSearch search_windows(const TimePattern& pattern, std::span<const Spot> spots,
+                            std::span<const int> dwell_of_zone, const Ratios& floor, double slack) {
     if (spots.empty()) return {};
     std::vector<Box> boxes = boxes_of(spots, dwell_of_zone);
     if (!matters(pattern, boxes, floor, slack)) return {};
@@ -378,8 +420,10 @@ WindowSearch search_windows(const TimePattern& pattern, std::span<const Spot> sp
     for (ImagePart& part : found.parts) {
         if (part.worst.ratio <= 0) continue;
         for (const Spot& spot : spots) {
-            const bool inside = spot.middle.x() + spot.half.x() > part.low.x() && spot.middle.x() - spot.half.x() < part.high.x() &&
-                                spot.middle.y() + spot.half.y() > part.low.y() && spot.middle.y() - spot.half.y() < part.high.y();
+            const bool inside = spot.middle.x() + spot.half.x() > part.low.x() &&
+                                spot.middle.x() - spot.half.x() < part.high.x() &&
+                                spot.middle.y() + spot.half.y() > part.low.y() &&
+                                spot.middle.y() - spot.half.y() < part.high.y();
             if (inside) part.zones.push_back(spot.zone);
         }
         std::ranges::sort(part.zones);

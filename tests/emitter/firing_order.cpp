@@ -70,7 +70,8 @@ std::string fault_of_farthest(const EmitterArray& array, const Order& order) {
     if (order.front() != 0) return "does not begin with zone 0";
     const std::vector<Vec2> middles = slow_middles(array);
     double span = 0;
-    for (const Vec2& middle : middles) span = std::max(span, (middle - middles.front()).cwiseAbs().maxCoeff());
+    for (const Vec2& middle : middles)
+        span = std::max(span, (middle - middles.front()).cwiseAbs().maxCoeff());
     std::vector<double> gap(middles.size(), std::numeric_limits<double>::infinity());
     std::vector<bool> fired(middles.size(), false);
     for (std::size_t step = 0; step < order.size(); ++step) {
@@ -79,7 +80,8 @@ std::string fault_of_farthest(const EmitterArray& array, const Order& order) {
             for (int other = 0; other < array.zones; ++other) {
                 if (fired[other] || other == taken) continue;
                 // Distances are told apart down to 1e-9 of the span by contract; two of them may be off.
-                if (gap[other] > gap[taken] + 2e-9 * span) return "not the farthest at " + std::to_string(step);
+                if (gap[other] > gap[taken] + 2e-9 * span)
+                    return "not the farthest at " + std::to_string(step);
                 // Equal but for rounding: a few times 1e-16 of coordinates of the size of the span.
                 if (other < taken && gap[other] > gap[taken] - 1e-13 * span)
                     return "not the lowest at " + std::to_string(step);
@@ -133,7 +135,8 @@ TEST_CASE("stride fires every n-th zone, then those beside them") {
 }
 
 TEST_CASE("bit_reversed is the van der Corput order without the numbers that are no zone") {
-    CHECK(order_zones({.order = FiringOrder::bit_reversed}, raster_of(1, 8)) == Order{0, 4, 2, 6, 1, 5, 3, 7});
+    CHECK(order_zones({.order = FiringOrder::bit_reversed}, raster_of(1, 8)) ==
+          Order{0, 4, 2, 6, 1, 5, 3, 7});
     CHECK(order_zones({.order = FiringOrder::bit_reversed}, raster_of(2, 3)) == Order{0, 4, 2, 1, 5, 3});
     CHECK(order_zones({.order = FiringOrder::bit_reversed}, raster_of(1, 9)) ==
           Order{0, 8, 4, 2, 6, 1, 5, 3, 7});
@@ -161,7 +164,8 @@ TEST_CASE("farthest_next takes a farthest zone at every step, and of equal ones 
                 CHECK(fault_of_farthest(array, farthest(array)) == "");
             }
         }
-    const Layout grid{.kind = LayoutKind::grid, .rows = 48, .columns = 60, .pitch = 11e-6, .row_pitch = 17e-6};
+    const Layout grid{
+        .kind = LayoutKind::grid, .rows = 48, .columns = 60, .pitch = 11e-6, .row_pitch = 17e-6};
     for (const AddressingScheme scheme : {AddressingScheme::blocks, AddressingScheme::interleaved}) {
         const EmitterArray array = built(grid, {.scheme = scheme, .rows = 12, .columns = 15});
         CHECK(fault_of_farthest(array, farthest(array)) == "");
@@ -187,7 +191,8 @@ TEST_CASE("farthest_next holds for clusters, lines and zones that share a middle
         CHECK(fault_of_farthest(array, farthest(array)) == "");
     }
     // Two crosses: all four zones have their middles at 0, the fifth lies aside.
-    EmitterArray crosses = loose({{1, 0}, {0, 1}, {2, 0}, {0, 2}, {5, 5}, {-1, 0}, {0, -1}, {-2, 0}, {0, -2}});
+    EmitterArray crosses =
+        loose({{1, 0}, {0, 1}, {2, 0}, {0, 2}, {5, 5}, {-1, 0}, {0, -1}, {-2, 0}, {0, -2}});
     crosses.zone_of = {0, 1, 2, 3, 4, 0, 1, 2, 3};
     crosses.zones = 5;
     CHECK(farthest(crosses) == Order{0, 4, 1, 2, 3});
@@ -197,7 +202,8 @@ TEST_CASE("farthest_next holds for clusters, lines and zones that share a middle
 TEST_CASE("shuffled repeats by seed and differs with it") {
     const EmitterArray array = raster_of(2, 5);
     // From a Python version of SplitMix64 and of the Fisher-Yates shuffle, written apart from this one.
-    CHECK(order_zones({.order = FiringOrder::shuffled, .seed = 7}, array) == Order{9, 5, 8, 6, 1, 2, 4, 7, 0, 3});
+    CHECK(order_zones({.order = FiringOrder::shuffled, .seed = 7}, array) ==
+          Order{9, 5, 8, 6, 1, 2, 4, 7, 0, 3});
     const EmitterArray large = raster_of(16, 16);
     CHECK(order_zones({.order = FiringOrder::shuffled, .seed = 3}, large) ==
           order_zones({.order = FiringOrder::shuffled, .seed = 3}, large));
@@ -211,6 +217,7 @@ TEST_CASE("shuffled favours no order over the seeds") {
     for (int seed = 0; seed < 6000; ++seed)
         ++times[order_zones({.order = FiringOrder::shuffled, .seed = seed}, array)];
     CHECK(times.size() == 6);
-    // Binomial, 1000 +- 29: within 4.5 standard deviations, which chance alone breaks once in 20 000 such tests.
+    // Binomial, 1000 +- 29: within 4.5 standard deviations, which chance alone breaks once in 20 000 such
+    // tests.
     for (const auto& [order, count] : times) CHECK(std::abs(count - 1000) < 130);
 }

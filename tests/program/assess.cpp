@@ -167,6 +167,8 @@ TEST_CASE("preview draws one view, and says which there are") {
     const Run wrong =
         run("glintplan preview " + design + " --view sideways --quiet --out " + folder.path("n.png"));
     CHECK(wrong.status == 2);
-    CHECK(holds(wrong.err, "there is no view 'sideways'; accepted: points, zones, retinal-image, emission-limits or safety-map"));
+    CHECK(holds(wrong.err,
+                "there is no view 'sideways'; accepted: points, zones, retinal-image, emission-limits or "
+                "safety-map"));
     CHECK(!fs::exists(folder.path("n.png")));
 }

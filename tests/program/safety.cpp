@@ -13,32 +13,37 @@ namespace {
 // A design of one's own with an entry of eye_safety.
 std::string with_eye_safety(const Folder& folder, const std::string& inside) {
     folder.write("scene.xml", small_scene);
-    return folder.write("d.xml", replaced(small_design, "</design>", "<eye_safety>" + inside + "</eye_safety></design>"));
+    return folder.write(
+        "d.xml", replaced(small_design, "</design>", "<eye_safety>" + inside + "</eye_safety></design>"));
 }
 
 }  // namespace
 
 TEST_CASE("safety prints one JSON object with the keys that are promised") {
     const Folder folder;
-    const std::string design = with_eye_safety(folder, "<faults><zone_stuck_on/><over_current factor=\"2\"/></faults>");
+    const std::string design =
+        with_eye_safety(folder, "<faults><zone_stuck_on/><over_current factor=\"2\"/></faults>");
     const Run asked = run("glintplan safety " + design + " --json");
     CHECK(asked.err.empty());
     const auto answer = nlohmann::json::parse(asked.out);
-    for (const char* key : {"class", "worst_ratio", "margin", "governing", "criteria", "faults", "hazard_distance_m",
-                            "aided_hazard_distance_m", "largest_shot_energy_J", "largest_average_power_W", "caution"})
+    for (const char* key :
+         {"class", "worst_ratio", "margin", "governing", "criteria", "faults", "hazard_distance_m",
+          "aided_hazard_distance_m", "largest_shot_energy_J", "largest_average_power_W", "caution"})
         CHECK_MESSAGE(answer.contains(key), key);
     REQUIRE(!answer["criteria"].empty());
-    for (const char* key : {"criterion", "condition", "duration_s", "pulses", "C5", "C6", "subtense_rad", "part_rad", "ae_J", "ael_J",
-                            "ratio", "zones", "eye_m", "focus_m"})
+    for (const char* key : {"criterion", "condition", "duration_s", "pulses", "C5", "C6", "subtense_rad",
+                            "part_rad", "ae_J", "ael_J", "ratio", "zones", "eye_m", "focus_m"})
         CHECK_MESSAGE(answer["criteria"][0].contains(key), key);
     CHECK(answer["governing"] == answer["criteria"][0]);
-    const double ratio = answer["governing"]["ae_J"].get<double>() / answer["governing"]["ael_J"].get<double>();
+    const double ratio =
+        answer["governing"]["ae_J"].get<double>() / answer["governing"]["ael_J"].get<double>();
     CHECK(answer["governing"]["ratio"].get<double>() == about(ratio).epsilon(1e-12));
     CHECK(answer["worst_ratio"].get<double>() == about(ratio).epsilon(1e-12));
     CHECK(answer["margin"].get<double>() == about(1 - ratio).epsilon(1e-12));
     REQUIRE(answer["faults"].size() == 2);
     CHECK(answer["faults"][0]["name"] == "a zone stuck on");
-    for (const char* key : {"name", "class", "worst_ratio", "reaction_time_s"}) CHECK_MESSAGE(answer["faults"][1].contains(key), key);
+    for (const char* key : {"name", "class", "worst_ratio", "reaction_time_s"})
+        CHECK_MESSAGE(answer["faults"][1].contains(key), key);
     // Twice the power is twice the ratio; the quick search of faults adds 10.5 % instead of 1.5 %.
     CHECK(answer["faults"][1]["worst_ratio"].get<double>() >= 2 * ratio);
     CHECK(answer["faults"][1]["worst_ratio"].get<double>() <= 2 * ratio * 1.105);
@@ -69,7 +74,8 @@ TEST_CASE("bad eye-safety input: status 2 with file, line and what would be acce
         CHECK_MESSAGE(holds(bad.err, message), bad.err);
         CHECK(holds(bad.err, "d.xml:"));
     };
-    refused("<faults><element_missing element=\"fan_out\"/></faults>", "an element that the optics do not hold");
+    refused("<faults><element_missing element=\"fan_out\"/></faults>",
+            "an element that the optics do not hold");
     refused("<faults><pulse_too_long/></faults>", "factor");
     refused("<faults><pulse_too_long factor=\"0.5\"/></faults>", "0.5");
     refused("<faults><zone_stuck/></faults>", "zone_stuck_on");

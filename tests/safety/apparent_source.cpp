@@ -31,7 +31,8 @@ Design line_of_emitters(int columns, double pitch, double divergence) {
 }
 
 FarField field_of(const Design& design) {
-    return far_field(project(build_array(design.emitters, field_sense(design.optics), ""), design), Merge::no);
+    return far_field(project(build_array(design.emitters, field_sense(design.optics), ""), design),
+                     Merge::no);
 }
 
 FarField bare(double divergence) { return field_of(line_of_emitters(1, 50e-6, divergence)); }
@@ -44,8 +45,8 @@ FarField behind_lens(double focal_length, double defocus, double beside = 0) {
     return field_of(design);
 }
 
-// Half the side of the square that stands for a Gaussian, over its standard deviation: the side is sqrt(pi/2) times the
-// 1/e2 radius, which is two standard deviations.
+// Half the side of the square that stands for a Gaussian, over its standard deviation: the side is sqrt(pi/2)
+// times the 1/e2 radius, which is two standard deviations.
 const double half_over_deviation = std::sqrt(pi / 2);
 
 // A retinal image made by rays.
@@ -68,7 +69,9 @@ public:
     explicit Raster(const Spot& spot) : spot_(spot) {}
     void add(const Vec2& angle) {
         const Vec2 cell =
-            ((angle - spot_.middle).cwiseQuotient(2 * spot_.half) * 20 + Vec2::Constant(cells / 2)).array().floor();
+            ((angle - spot_.middle).cwiseQuotient(2 * spot_.half) * 20 + Vec2::Constant(cells / 2))
+                .array()
+                .floor();
         if (cell.minCoeff() >= 0 && cell.maxCoeff() < cells)
             count_[static_cast<std::size_t>(cell.x() * cells + cell.y())] += 1;
     }
@@ -91,10 +94,12 @@ private:
     std::vector<double> count_ = std::vector<double>(cells * cells, 0.0);
 };
 
-// A million rays start where the beam does, in the plane normal to the module's axis: place Gaussian of the beam's exit
-// radius, slope that of the axis, changed by the curvature, and Gaussian with the rest of the kernel's width. They go
-// straight to the disc of the pupil; behind it the focus turns a ray by its place in the pupil over the focal distance.
-Rays draw(const Beam& beam, const EyePlace& eye, std::span<const double> vergences, std::span<const Spot> spots) {
+// A million rays start where the beam does, in the plane normal to the module's axis: place Gaussian of the
+// beam's exit radius, slope that of the axis, changed by the curvature, and Gaussian with the rest of the
+// kernel's width. They go straight to the disc of the pupil; behind it the focus turns a ray by its place in
+// the pupil over the focal distance.
+Rays draw(const Beam& beam, const EyePlace& eye, std::span<const double> vergences,
+          std::span<const Spot> spots) {
     constexpr std::uint32_t count = 1'000'000;
     const double bent = beam.curvature * beam.exit_radius, narrower = std::min(beam.kernel.a, beam.kernel.b);
     const double spread = std::sqrt(std::max(0.0, narrower * narrower - bent * bent));
@@ -118,7 +123,8 @@ Rays draw(const Beam& beam, const EyePlace& eye, std::span<const double> vergenc
         const Vec3 hit = start + (eye.place - start).dot(sight) / ray.dot(sight) * ray - eye.place;
         if (hit.squaredNorm() > eye.pupil_radius * eye.pupil_radius) continue;
         passed += 1;
-        const Vec2 arriving = Vec2(ray.dot(across), ray.dot(up)) / ray.dot(sight), at(hit.dot(across), hit.dot(up));
+        const Vec2 arriving = Vec2(ray.dot(across), ray.dot(up)) / ray.dot(sight),
+                   at(hit.dot(across), hit.dot(up));
         for (std::size_t v = 0; v < vergences.size(); ++v) {
             const Vec2 angle = arriving - vergences[v] * at;
             sums[v] += angle, squares[v] += angle.cwiseProduct(angle);
@@ -128,9 +134,10 @@ Rays draw(const Beam& beam, const EyePlace& eye, std::span<const double> vergenc
     Rays rays{.share = passed / count, .images = {}};
     for (std::size_t v = 0; v < vergences.size(); ++v) {
         const Vec2 mean = sums[v] / passed;
-        rays.images.push_back({.mean = mean,
-                               .deviation = (squares[v] / passed - mean.cwiseProduct(mean)).cwiseMax(0).cwiseSqrt(),
-                               .densest = rasters[v].densest() / passed * 16});
+        rays.images.push_back(
+            {.mean = mean,
+             .deviation = (squares[v] / passed - mean.cwiseProduct(mean)).cwiseMax(0).cwiseSqrt(),
+             .densest = rasters[v].densest() / passed * 16});
     }
     return rays;
 }
@@ -143,11 +150,12 @@ double energy_of(const std::vector<Spot>& spots) {
 }  // namespace
 
 TEST_CASE("collection through 7 mm at 100 mm and 50 mm at 2 m, Gaussian of 20 degrees") {
-    // Derived (A5): d86 = 2 * 100 mm * tan 10 deg = 35.265 mm; 1 - exp(-2 (7 / 35.265)^2) = 0.075776; 50 mm at 2 m:
-    // 0.010001.
+    // Derived (A5): d86 = 2 * 100 mm * tan 10 deg = 35.265 mm; 1 - exp(-2 (7 / 35.265)^2) = 0.075776; 50 mm
+    // at 2 m: 0.010001.
     const FarField field = bare(radians(20));
     const auto share = [&](double distance, double radius) {
-        return entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = radius}, pulse_width).passed /
+        return entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = radius}, pulse_width)
+                   .passed /
                pulse_width;
     };
     // The pupil is integrated by seven points; the digits are five.
@@ -186,9 +194,10 @@ TEST_CASE("energy, middle and width of spots against rays") {
             const Rays rays = draw(beam, eye, vergences, spots);
             // A million rays leave 0.1 %.
             CHECK(entering->energy / (beam.power * pulse_width) == about(rays.share).epsilon(5e-3));
-            // A beam well inside the pupil is cut evenly: between 0.88 (a beam of radius 0.7 of the pupil's keeps more
-            // of its deviation than two Gaussians do) and 1.124 (an even disc of radius a has the deviation a/2, the
-            // spot 1.124 a/2). One that meets the rim is cut on one side, and up to a quarter narrower that way.
+            // A beam well inside the pupil is cut evenly: between 0.88 (a beam of radius 0.7 of the pupil's
+            // keeps more of its deviation than two Gaussians do) and 1.124 (an even disc of radius a has the
+            // deviation a/2, the spot 1.124 a/2). One that meets the rim is cut on one side, and up to a
+            // quarter narrower that way.
             const bool well_inside = entering->offset.norm() < 0.6 * eye.pupil_radius;
             for (std::size_t v = 0; v < vergences.size(); ++v) {
                 CAPTURE(vergences[v]);
@@ -200,8 +209,8 @@ TEST_CASE("energy, middle and width of spots against rays") {
                     CHECK(deviation[axis] > 0.88 * image.deviation[axis]);
                     CHECK(deviation[axis] < (well_inside ? 1.13 : 1.25) * image.deviation[axis]);
                 }
-                // No window holds more of the beam than of its spot; at the rim, a fifth more. 1 % for the count of
-                // rays.
+                // No window holds more of the beam than of its spot; at the rim, a fifth more. 1 % for the
+                // count of rays.
                 CHECK(image.densest < (well_inside ? 1.01 : 1.2));
             }
         }
@@ -211,16 +220,18 @@ TEST_CASE("the spots of an image hold what passed the pupil, for every focus") {
     Design design = line_of_emitters(7, 60e-6, radians(20));
     design.emitters.layout.rows = 5;
     SUBCASE("bare") {}
-    SUBCASE("lens") { design.optics.elements = {Lens{.focal_length = 4e-3, .clear_aperture = 6e-3, .defocus = 50e-6}}; }
+    SUBCASE("lens") {
+        design.optics.elements = {Lens{.focal_length = 4e-3, .clear_aperture = 6e-3, .defocus = 50e-6}};
+    }
     SUBCASE("diffuser") {
-        design.optics.elements = {
-            Diffuser{.horizontal = radians(60), .vertical = radians(40), .roll_off = radians(3), .distance = 1e-3}};
+        design.optics.elements = {Diffuser{
+            .horizontal = radians(60), .vertical = radians(40), .roll_off = radians(3), .distance = 1e-3}};
     }
     const FarField field = field_of(design);
     RandomStream random(72);
     for (int i = 0; i < 200; ++i) {
-        const Vec3 place =
-            (0.1 + random.uniform()) * Vec3(1, 0.4 * random.uniform() - 0.2, 0.4 * random.uniform() - 0.2).normalized();
+        const Vec3 place = (0.1 + random.uniform()) *
+                           Vec3(1, 0.4 * random.uniform() - 0.2, 0.4 * random.uniform() - 0.2).normalized();
         const EnteringLight light = entering_light(field, {.place = place}, pulse_width);
         double beams = 0;
         for (const EnteringBeam& beam : light.beams) beams += beam.energy;
@@ -249,22 +260,24 @@ TEST_CASE("foci tried: all of accommodation, and where the beams come from") {
 }
 
 TEST_CASE("a relaxed eye sees the divergence of a beam, wherever it stands") {
-    // Schulmeister, BiOS Ophthalmic Technologies XV (2005) 401-410: focused at infinity, the subtense is that of the
-    // far field. A pupil wide enough not to cut; 1e-3 for what it cuts all the same.
+    // Schulmeister, BiOS Ophthalmic Technologies XV (2005) 401-410: focused at infinity, the subtense is that
+    // of the far field. A pupil wide enough not to cut; 1e-3 for what it cuts all the same.
     for (const double defocus : {0.0, 30e-6, -30e-6}) {
         const FarField field = behind_lens(4e-3, defocus);
         for (const double distance : {0.1, 0.5, 2.0}) {
             const EnteringLight light =
                 entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = 1}, pulse_width);
             const Spot spot = retinal_image(light, 0).front();
-            CHECK(spot.half.x() == about(half_over_deviation / 2 * field.beams.front().kernel.a).epsilon(1e-3));
+            CHECK(spot.half.x() ==
+                  about(half_over_deviation / 2 * field.beams.front().kernel.a).epsilon(1e-3));
         }
     }
 }
 
 TEST_CASE("an eye focused on a bare emitter sees its size over the distance") {
     for (const double distance : {0.1, 0.3, 1.0}) {
-        const EnteringLight light = entering_light(bare(radians(20)), {.place = Vec3(distance, 0, 0)}, pulse_width);
+        const EnteringLight light =
+            entering_light(bare(radians(20)), {.place = Vec3(distance, 0, 0)}, pulse_width);
         const Spot spot = retinal_image(light, 1 / distance).front();
         CHECK(spot.half.x() == about(half_over_deviation / 2 * emitter_radius / distance).epsilon(1e-6));
         CHECK(spot.middle.norm() < 1e-12);
@@ -281,7 +294,8 @@ TEST_CASE("spots of a bare array sit at pitch over distance when the eye is focu
         for (std::size_t i = 1; i < 5; ++i)
             CHECK(spots[i].middle.x() - spots[i - 1].middle.x() == about(200e-6 / distance).epsilon(1e-6));
     }
-    // Off the axis, the row is seen under an angle: cos of it shorter, and at the distance along the line of sight.
+    // Off the axis, the row is seen under an angle: cos of it shorter, and at the distance along the line of
+    // sight.
     const double angle = radians(15);
     const EyePlace eye{.place = 0.1 * Vec3(std::cos(angle), std::sin(angle), 0)};
     std::vector<Spot> spots = retinal_image(entering_light(field, eye, pulse_width), 10);
@@ -297,8 +311,8 @@ TEST_CASE("behind a lens spots are pitch over focal length apart for a relaxed e
     design.optics.elements = {Lens{.focal_length = 4e-3, .clear_aperture = 8e-3}};
     const FarField field = field_of(design);
     for (const double distance : {0.1, 0.5}) {
-        std::vector<Spot> spots =
-            retinal_image(entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = 1}, pulse_width), 0);
+        std::vector<Spot> spots = retinal_image(
+            entering_light(field, {.place = Vec3(distance, 0, 0), .pupil_radius = 1}, pulse_width), 0);
         REQUIRE(spots.size() == 5);
         std::ranges::sort(spots, {}, [](const Spot& spot) { return spot.middle.x(); });
         for (std::size_t i = 1; i < 5; ++i)

@@ -10,7 +10,8 @@
 namespace glint::test {
 namespace {
 
-// Beyond so many frames a part of a frame is less than 2e-4 of all energy, and only fixed durations are tried.
+// Beyond so many frames a part of a frame is less than 2e-4 of all energy, and only fixed durations are
+// tried.
 constexpr double many_frames = 5000;
 constexpr double largest_of_pulses = 5e-3;  // alpha_max of single pulses and groups [rad]
 
@@ -21,8 +22,9 @@ struct Piece {
     [[nodiscard]] double side() const { return std::max(smallest_side, to - from); }
 };
 
-// Every piece that begins and ends at an edge of a spot or at one of a few places between, and those that have one end
-// there and one of the given lengths. What is shorter than alpha_min lies in one that is as long.
+// Every piece that begins and ends at an edge of a spot or at one of a few places between, and those that
+// have one end there and one of the given lengths. What is shorter than alpha_min lies in one that is as
+// long.
 std::vector<Piece> pieces(const std::vector<BruteSpot>& image, int axis, const std::vector<double>& lengths) {
     std::vector<double> begins, ends;
     double narrowest = 1e300;
@@ -32,8 +34,8 @@ std::vector<Piece> pieces(const std::vector<BruteSpot>& image, int axis, const s
     }
     const double first = *std::ranges::min_element(begins), last = *std::ranges::max_element(ends),
                  whole = last - first;
-    // Parts that hold only a hair of a spot count its dwells in N. Of many spots, those that begin where one ends, or
-    // end where one begins, are left out.
+    // Parts that hold only a hair of a spot count its dwells in N. Of many spots, those that begin where one
+    // ends, or end where one begins, are left out.
     if (image.size() <= 16) {
         std::vector<double> touching;
         for (const BruteSpot& spot : image) {
@@ -89,7 +91,10 @@ struct Pulse {
 class Judge {
 public:
     Judge(const BrutePlan& plan, const std::vector<BruteSpot>& image)
-        : plan_(plan), image_(image), cells_(brute_cells(plan.wavelength)), energies_(plan.shots_of_dwell.size()) {
+        : plan_(plan),
+          image_(image),
+          cells_(brute_cells(plan.wavelength)),
+          energies_(plan.shots_of_dwell.size()) {
         Vec2 low = image.front().low, high = image.front().high;
         for (const BruteSpot& spot : image) low = low.cwiseMin(spot.low), high = high.cwiseMax(spot.high);
         whole_subtense_ = (high - low).cwiseMax(smallest_side).mean();
@@ -97,7 +102,8 @@ public:
 
     // Parts in the order of what they could reach at most: first all of one piece across, then one by one.
     BruteWorst worst() {
-        const std::vector<Piece> across = pieces(image_, 0, plan_.lengths), up = pieces(image_, 1, plan_.lengths);
+        const std::vector<Piece> across = pieces(image_, 0, plan_.lengths),
+                                 up = pieces(image_, 1, plan_.lengths);
         const Piece any{0, 0, std::vector<double>(image_.size(), 1.0)};
         worst_.parts = static_cast<long>(across.size() * up.size());
         std::vector<Part> families, parts;
@@ -141,7 +147,8 @@ private:
         double groups = 0;
         for (std::size_t d = 0; d < energies_.size(); ++d)
             if (energies_[d] > 0) groups += plan_.groups_of_dwell[d];
-        return groups * std::ceil(std::min(brute_T2(subtense), plan_.time_base) / plan_.frame * (1 - equal_share));
+        return groups *
+               std::ceil(std::min(brute_T2(subtense), plan_.time_base) / plan_.frame * (1 - equal_share));
     }
 
     double C5(double N) const {
@@ -151,8 +158,8 @@ private:
         return std::min(of(subtense_), of(whole_subtense_));
     }
 
-    // What no emission of the part under test exceeds: pulses and groups; averages within a frame; longer ones. Nor of
-    // any larger part with the same energies, when N is counted for the largest subtense.
+    // What no emission of the part under test exceeds: pulses and groups; averages within a frame; longer
+    // ones. Nor of any larger part with the same energies, when N is counted for the largest subtense.
     struct Bounds {
         double pulse = 0, within = 0, longer = 0;
     };
@@ -164,21 +171,24 @@ private:
         const auto most = [&](double all, double one) { return std::min(strongest_ * all, one_shot * one); };
         Bounds bounds;
         if (shortest_ == 0)
-            bounds.pulse = std::max(strongest_ / limit(plan_.pulse_width),
-                                    most(plan_.most_in_group, plan_.most_of_one_in_group) / limit(cells_.Ti)) /
-                           C5(pulses_counted(std::max(subtense_, largest_subtense)));
+            bounds.pulse =
+                std::max(strongest_ / limit(plan_.pulse_width),
+                         most(plan_.most_in_group, plan_.most_of_one_in_group) / limit(cells_.Ti)) /
+                C5(pulses_counted(std::max(subtense_, largest_subtense)));
         // From the longest stretch shorter than `shortest` on.
         const auto above = std::ranges::lower_bound(plan_.stretches, shortest_ * (1 - equal_share), {},
                                                     &BrutePlan::Stretch::duration);
-        if (above != plan_.stretches.end()) bounds.within = most(above->all_over_limit, above->one_over_limit) / C6;
+        if (above != plan_.stretches.end())
+            bounds.within = most(above->all_over_limit, above->one_over_limit) / C6;
         if (above != plan_.stretches.begin())
-            bounds.within =
-                std::max(bounds.within, most((above - 1)->all_dwells, (above - 1)->one_dwell) / limit(shortest_));
-        // At most one frame more than there is room for. The limit is nowhere below 99 % of rising t^0.75 to T2, and
-        // (1 + t/F)/t^0.75 is largest at an end.
-        for (const double t : {std::max(F, shortest_), std::max(F, std::min(brute_T2(subtense_), plan_.time_base))})
-            bounds.longer =
-                std::max(bounds.longer, frame_ * (1 + t / F) / (0.99 * cells_.rising * C6 * std::pow(t, 0.75)));
+            bounds.within = std::max(
+                bounds.within, most((above - 1)->all_dwells, (above - 1)->one_dwell) / limit(shortest_));
+        // At most one frame more than there is room for. The limit is nowhere below 99 % of rising t^0.75 to
+        // T2, and (1 + t/F)/t^0.75 is largest at an end.
+        for (const double t :
+             {std::max(F, shortest_), std::max(F, std::min(brute_T2(subtense_), plan_.time_base))})
+            bounds.longer = std::max(bounds.longer,
+                                     frame_ * (1 + t / F) / (0.99 * cells_.rising * C6 * std::pow(t, 0.75)));
         return bounds;
     }
 
@@ -188,8 +198,8 @@ private:
         return std::max({b.pulse, b.within, b.longer});
     }
 
-    void found(const Part& part, double ae, double ael, PulseCriterion criterion, double duration, double N = 1,
-               double factor = 1) {
+    void found(const Part& part, double ae, double ael, PulseCriterion criterion, double duration,
+               double N = 1, double factor = 1) {
         if (!(ae > worst_.ratio * ael * factor)) return;
         worst_ = {.ratio = ae / (ael * factor),
                   .criterion = criterion,
@@ -246,8 +256,8 @@ private:
         found(part, ratio, 1, PulseCriterion::train, plan_.pulse_width, N, C5(N));
     }
 
-    // From the start of a pulse to the end of another, with whole frames between: the fewest, and as many as there are
-    // just before and after every bend of the limit.
+    // From the start of a pulse to the end of another, with whole frames between: the fewest, and as many as
+    // there are just before and after every bend of the limit.
     void stretches(const Part& part, bool with_frames) {
         const double F = plan_.frame;
         const auto hold = [&](double energy, double t) {
@@ -280,7 +290,8 @@ private:
             for (const double t : {bend, F * std::floor(bend / F)}) {
                 if (!(t >= shortest_ && t > 0 && t <= plan_.time_base)) continue;
                 // A pulse counts whole, so the duration has to hold one.
-                if (t >= plan_.pulse_width) found(part, most_within(t).energy, limit(t), PulseCriterion::average, t);
+                if (t >= plan_.pulse_width)
+                    found(part, most_within(t).energy, limit(t), PulseCriterion::average, t);
             }
     }
 
@@ -304,12 +315,14 @@ BruteWorst brute_force(const BrutePlan& plan, const std::vector<BruteSpot>& imag
 
 double brute_force_ratio(const Beams& beams, const FiringPlan& plan, const BruteEye& eye, double wavelength,
                          double time_base) {
-    return brute_force(brute_plan(plan, wavelength, time_base), brute_image(beams, eye, plan.pulse_width)).ratio;
+    return brute_force(brute_plan(plan, wavelength, time_base), brute_image(beams, eye, plan.pulse_width))
+        .ratio;
 }
 
 std::string describe(const BruteWorst& worst) {
     return fmt::format(
-        "ratio {:.6g}, {}, {:.6g} s, N {}, C5 {:.4g}, {:.6g} mrad, part {:.6g} to {:.6g} by {:.6g} to {:.6g} mrad, "
+        "ratio {:.6g}, {}, {:.6g} s, N {}, C5 {:.4g}, {:.6g} mrad, part {:.6g} to {:.6g} by {:.6g} to {:.6g} "
+        "mrad, "
         "{} of {} parts tried",
         worst.ratio, name_of(worst.criterion), worst.duration, worst.N, worst.C5, worst.subtense * 1e3,
         worst.low.x() * 1e3, worst.high.x() * 1e3, worst.low.y() * 1e3, worst.high.y() * 1e3, worst.tried,

@@ -1,7 +1,8 @@
-// An evaluator of eye safety that shares nothing with the search but beams and firing plan: every part, start and
-// duration one by one.
+// An evaluator of eye safety that shares nothing with the search but beams and firing plan: every part, start
+// and duration one by one.
 //
-// Written from docs/safety.md ("How a design is judged") and the printed tables. Class 1, retinal thermal limit only.
+// Written from docs/safety.md ("How a design is judged") and the printed tables. Class 1, retinal thermal
+// limit only.
 #pragma once
 
 #include "brute_image.h"
@@ -25,11 +26,13 @@ struct BrutePlan {
     std::vector<int> shots_of_dwell;
     std::vector<int> groups_of_dwell;  ///< pulses, or groups within Ti where these hold several
     double pulse_width = 0, frame = 0, wavelength = 0, time_base = 0;  ///< [s], [m]
-    double most_in_group = 1, most_of_one_in_group = 1;  ///< pulses that start within Ti: of all dwells, of one
+    double most_in_group = 1,
+           most_of_one_in_group = 1;  ///< pulses that start within Ti: of all dwells, of one
 
-    /// A stretch from the start of a pulse to the end of another: the most pulses in any as short, of all dwells and of
-    /// one dwell, and the largest such number over the limit of a point in any as long [1/J]. With the energy of the
-    /// strongest pulse they bound what a part can reach, so that hopeless parts need not be tried.
+    /// A stretch from the start of a pulse to the end of another: the most pulses in any as short, of all
+    /// dwells and of one dwell, and the largest such number over the limit of a point in any as long [1/J].
+    /// With the energy of the strongest pulse they bound what a part can reach, so that hopeless parts need
+    /// not be tried.
     struct Stretch {
         double duration;  ///< [s]
         double all_dwells = 0, one_dwell = 0;

@@ -1,4 +1,5 @@
-// What an eye sees of a module, worked out a second time: energies by sums over the pupil, the image by matrices.
+// What an eye sees of a module, worked out a second time: energies by sums over the pupil, the image by
+// matrices.
 #include "brute_image.h"
 
 #include <glint/core/constants.h>
@@ -18,7 +19,8 @@ double radius_along(const Beam& beam, double along) {
     return std::sqrt(grown * grown + along * along * own2);
 }
 
-// Share of a round Gaussian inside a disc beside it: rings around the beam's middle, each by its part in the disc.
+// Share of a round Gaussian inside a disc beside it: rings around the beam's middle, each by its part in the
+// disc.
 double share_beside(double width, double beside, double radius) {
     constexpr int rings = 400;
     const double from = std::max(0.0, beside - radius), to = std::min(beside + radius, 4 * width);
@@ -26,10 +28,11 @@ double share_beside(double width, double beside, double radius) {
     for (int i = 0; i < rings; ++i) {
         const double r = from + (to - from) * (i + 0.5) / rings, r0 = from + (to - from) * i / rings,
                      r1 = from + (to - from) * (i + 1) / rings;
-        const double cosine =
-            beside > 0 ? (r * r + beside * beside - radius * radius) / (2 * r * beside) : (r < radius ? -1.0 : 1.0);
+        const double cosine = beside > 0 ? (r * r + beside * beside - radius * radius) / (2 * r * beside)
+                                         : (r < radius ? -1.0 : 1.0);
         const double inside = std::acos(std::clamp(cosine, -1.0, 1.0)) / pi;
-        share += inside * (std::exp(-2 * r0 * r0 / (width * width)) - std::exp(-2 * r1 * r1 / (width * width)));
+        share +=
+            inside * (std::exp(-2 * r0 * r0 / (width * width)) - std::exp(-2 * r1 * r1 / (width * width)));
     }
     return to > from ? share : 0;
 }
@@ -46,7 +49,8 @@ double power_over(const Beam& beam, const BruteEye& eye) {
                          turn = 2 * pi * (k + 0.5 * (i % 2)) / spokes;
             const Vec3 ray = eye.place + r * std::cos(turn) * across + r * std::sin(turn) * up - beam.origin;
             const double length = ray.norm();
-            sum += intensity(beam, ray / length) * std::max(0.0, ray.dot(facing)) / (length * length * length);
+            sum +=
+                intensity(beam, ray / length) * std::max(0.0, ray.dot(facing)) / (length * length * length);
         }
     return sum / (rings * spokes) * pi * eye.pupil_radius * eye.pupil_radius;
 }
@@ -66,7 +70,8 @@ double brute_energy(const Beam& beam, const BruteEye& eye, double pulse_width) {
 }
 
 std::vector<BruteSpot> brute_image(const Beams& beams, const BruteEye& eye, double pulse_width) {
-    const double p = eye.place.y() / eye.place.x(), q = eye.place.z() / eye.place.x();  // slopes of the line of sight
+    const double p = eye.place.y() / eye.place.x(),
+                 q = eye.place.z() / eye.place.x();  // slopes of the line of sight
     const double secant2 = 1 + p * p + q * q;
     const Vec2 angle_per_slope(std::sqrt(1 + q * q) / secant2, std::sqrt(1 + p * p) / secant2);
     const double V = eye.vergence * std::sqrt(secant2);  // along the axis
@@ -75,8 +80,8 @@ std::vector<BruteSpot> brute_image(const Beams& beams, const BruteEye& eye, doub
     for (const Beam& beam : beams.beams) {
         const double energy = brute_energy(beam, eye, pulse_width);
         if (energy <= 0) continue;
-        // Moments of (place, slope) where the beam leaves the optics, as squares of 1/e2 radii. The slopes of a
-        // wide field are even over what the pupil takes: 20 is as good as no end.
+        // Moments of (place, slope) where the beam leaves the optics, as squares of 1/e2 radii. The slopes of
+        // a wide field are even over what the pupil takes: 20 is as good as no end.
         const double cosine = beam.axis.x(), W = beam.exit_radius, c = beam.curvature;
         double half = std::min(beam.kernel.a / (cosine * cosine), beam.kernel.b / cosine);
         if (beam.kernel.shape != KernelShape::gaussian) half = 20;

@@ -1,4 +1,5 @@
-// What an eye sees of a module, worked out a second time: energies by sums over the pupil, the image by matrices.
+// What an eye sees of a module, worked out a second time: energies by sums over the pupil, the image by
+// matrices.
 #pragma once
 
 #include <glint/optics/beam.h>
@@ -14,8 +15,9 @@ struct BruteEye {
     double vergence = 0;           ///< 1/focus distance [1/m]
 };
 
-/// Energy [J] of one beam through the pupil per pulse, summed over rings (narrow beams) or over a polar grid (wide
-/// ones); better than 1e-3 where the kernel has no hard edge. Nothing where the pupil is beyond three 1/e2 radii.
+/// Energy [J] of one beam through the pupil per pulse, summed over rings (narrow beams) or over a polar grid
+/// (wide ones); better than 1e-3 where the kernel has no hard edge. Nothing where the pupil is beyond three
+/// 1/e2 radii.
 [[nodiscard]] double brute_energy(const Beam& beam, const BruteEye& eye, double pulse_width);
 
 /// The image of one beam: a rectangle of even energy [rad].

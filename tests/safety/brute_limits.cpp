@@ -1,6 +1,7 @@
 // Limits and factors of Class 1, retinal thermal, written a second time from the printed tables.
 //
-// Sources as in docs/safety.md: IEC 60825-1:2014 Tables 3, 4 and 9 and 4.3 f), from memory where that page says so.
+// Sources as in docs/safety.md: IEC 60825-1:2014 Tables 3, 4 and 9 and 4.3 f), from memory where that page
+// says so.
 #include "brute_limits.h"
 
 #include <algorithm>

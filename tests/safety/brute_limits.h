@@ -4,9 +4,10 @@
 namespace glint::test {
 
 inline constexpr double smallest_side = 1.5e-3;  ///< alpha_min [rad]
-inline constexpr double equal_share = 1e-9;      ///< by which times and sides may differ and still be the same
+inline constexpr double equal_share = 1e-9;  ///< by which times and sides may differ and still be the same
 
-/// Ti [s]: 5 us below 1050 nm, 13 us from there on. `wavelength` 400 nm to below 1400 nm, for all that follows [m].
+/// Ti [s]: 5 us below 1050 nm, 13 us from there on. `wavelength` 400 nm to below 1400 nm, for all that
+/// follows [m].
 [[nodiscard]] double brute_Ti(double wavelength);
 /// T2 [s] of a subtense [rad]: 10 s to 100 s.
 [[nodiscard]] double brute_T2(double subtense);
@@ -15,7 +16,8 @@ inline constexpr double equal_share = 1e-9;      ///< by which times and sides m
 /// The shortest duration [s] with alpha_max of at least `side` [rad]: 0 up to 5 mrad; `side` up to 100 mrad.
 [[nodiscard]] double brute_shortest(double side);
 /// C5 for N pulses of one width [s].
-[[nodiscard]] double brute_C5(double wavelength, double pulse_width, double subtense, double N, double time_base);
+[[nodiscard]] double brute_C5(double wavelength, double pulse_width, double subtense, double N,
+                              double time_base);
 
 /// The cells of one wavelength.
 struct BruteCells {

@@ -50,7 +50,8 @@ std::vector<BrutePlan::Stretch> stretches_of(const BrutePlan& plan) {
     double all = 0, one = 0;
     for (std::size_t i = stretches.size(); i-- > 0;) {
         BrutePlan::Stretch& s = stretches[i];
-        // Fixed durations may end with the start of the last pulse. 4 %: the limit's step down at Ti; 1 %: at 10 s.
+        // Fixed durations may end with the start of the last pulse. 4 %: the limit's step down at Ti; 1 %: at
+        // 10 s.
         const double shortest = std::max(plan.pulse_width, s.duration - plan.pulse_width);
         const double limit = std::min(brute_limit(cells, shortest, smallest_side) / 1.04,
                                       0.99 * cells.rising * std::pow(shortest, 0.75));
@@ -60,7 +61,8 @@ std::vector<BrutePlan::Stretch> stretches_of(const BrutePlan& plan) {
     return stretches;
 }
 
-// alpha_min, 5 mrad and 100 mrad; a coarse series between; alpha_max of the stretches that hold most for their length.
+// alpha_min, 5 mrad and 100 mrad; a coarse series between; alpha_max of the stretches that hold most for
+// their length.
 std::vector<double> lengths_of(const BrutePlan& plan) {
     std::vector<double> lengths{smallest_side, brute_alpha_max(0), brute_alpha_max(1)};
     for (int i = 1; i < 5; ++i) lengths.push_back(5e-3 * std::pow(20.0, i / 5.0));
@@ -69,10 +71,12 @@ std::vector<double> lengths_of(const BrutePlan& plan) {
         if (brute_alpha_max(s.duration) <= 5.001e-3 || brute_alpha_max(s.duration) >= 99.9e-3) continue;
         if (candidates.empty() || s.duration > 1.002 * candidates.back().duration) candidates.push_back(s);
     }
-    // Energy over limit of a part that grows with alpha_max in both directions goes with t^-0.25, in one with t^-0.5,
-    // in none with t^-0.75.
+    // Energy over limit of a part that grows with alpha_max in both directions goes with t^-0.25, in one with
+    // t^-0.5, in none with t^-0.75.
     for (const double power : {0.25, 0.5, 0.75}) {
-        const auto worth = [&](const BrutePlan::Stretch& s) { return s.all_dwells * std::pow(s.duration, -power); };
+        const auto worth = [&](const BrutePlan::Stretch& s) {
+            return s.all_dwells * std::pow(s.duration, -power);
+        };
         std::ranges::sort(candidates, std::greater{}, worth);
         for (std::size_t i = 0; i < std::min<std::size_t>(3, candidates.size()); ++i)
             lengths.push_back(brute_alpha_max(candidates[i].duration));

@@ -15,7 +15,8 @@ namespace {
 constexpr Mechanism mechanisms[] = {Mechanism::retinal_thermal, Mechanism::photochemical, Mechanism::corneal,
                                     Mechanism::ceiling};
 constexpr LaserClass invisible[] = {LaserClass::class_1, LaserClass::class_3R, LaserClass::class_3B};
-constexpr LaserClass visible[] = {LaserClass::class_1, LaserClass::class_2, LaserClass::class_3R, LaserClass::class_3B};
+constexpr LaserClass visible[] = {LaserClass::class_1, LaserClass::class_2, LaserClass::class_3R,
+                                  LaserClass::class_3B};
 
 std::span<const LaserClass> classes_at(double wavelength) {
     return wavelength < 700 * nm * (1 - 1e-8) ? std::span<const LaserClass>(visible)
@@ -31,8 +32,8 @@ void compare(const LimitCurve& curve, LaserClass laser_class, const EmissionWind
     const bool same = slow ? near(ready, slow->energy, rounding) : std::isinf(ready);
     if (!same)
         FAIL_CHECK(name_of(laser_class), ", ", name_of(curve.mechanism), ": ", ready, " J, not ",
-                   slow ? slow->energy : INFINITY, " J at ", window.wavelength, " m, ", window.duration, " s, ",
-                   window.subtense, " rad");
+                   slow ? slow->energy : INFINITY, " J at ", window.wavelength, " m, ", window.duration,
+                   " s, ", window.subtense, " rad");
 }
 
 // Anything up to alpha_max, with the ends more often than chance would have them.
@@ -53,7 +54,8 @@ double random_subtense(RandomStream& random, double duration) {
 }  // namespace
 
 TEST_CASE("a limit curve is the limit of every class and mechanism, all over the tables") {
-    constexpr int wavelengths = 20'000, points_each = 10;  // 200,000 points, each for all classes and mechanisms
+    constexpr int wavelengths = 20'000,
+                  points_each = 10;  // 200,000 points, each for all classes and mechanisms
     RandomStream random(51);
     for (int i = 0; i < wavelengths; ++i) {
         const double wavelength = uniform_between(random, 400 * nm, 1800 * nm);
@@ -84,7 +86,8 @@ TEST_CASE("a limit curve is the limit where cells meet") {
                     for (const double duration : durations)
                         // On the bound itself, within what counts as on it, and on either side of it.
                         for (const double beside : {1 - 1e-7, 1 - 1e-10, 1.0, 1 + 1e-10, 1 + 1e-7}) {
-                            const double at = std::clamp(duration * beside, limit_durations.from, limit_durations.to);
+                            const double at =
+                                std::clamp(duration * beside, limit_durations.from, limit_durations.to);
                             compare(curve, laser_class, {wavelength, at, std::min(subtense, alpha_max(at))});
                         }
                 }
@@ -101,7 +104,8 @@ TEST_CASE("a limit curve falls nowhere but at its bends") {
                 CHECK(std::ranges::is_sorted(curve.bends));
                 for (std::size_t k = 1; k < curve.bends.size(); ++k) {
                     const double from = curve.bends[k - 1] * (1 + 1e-8), to = curve.bends[k] * (1 - 1e-8);
-                    const double early = decade_between(random, from, to), late = decade_between(random, early, to);
+                    const double early = decade_between(random, from, to),
+                                 late = decade_between(random, early, to);
                     const double subtense = random_subtense(random, early);
                     const double before = curve.energy(early, subtense, t2(subtense));
                     const double after = curve.energy(late, subtense, t2(subtense));
@@ -121,5 +125,6 @@ TEST_CASE("limit curves are refused where there is no limit") {
     // A class without limits of a mechanism is no error: nothing holds.
     CHECK(limit_curve(LaserClass::class_3B, 905 * nm, Mechanism::retinal_thermal).pieces.empty());
     CHECK(limit_curve(LaserClass::class_1, 905 * nm, Mechanism::photochemical).pieces.empty());
-    CHECK(std::isinf(limit_curve(LaserClass::class_1, 905 * nm, Mechanism::corneal).energy(1, alpha_min, 10)));
+    CHECK(
+        std::isinf(limit_curve(LaserClass::class_1, 905 * nm, Mechanism::corneal).energy(1, alpha_min, 10)));
 }

@@ -1,4 +1,5 @@
-// What the eye search must find whatever the numbers: where the worst place is, and what may not make it worse.
+// What the eye search must find whatever the numbers: where the worst place is, and what may not make it
+// worse.
 #include <glint/core/constants.h>
 #include <glint/core/samples.h>
 #include <glint/safety/eye_search.h>
@@ -62,11 +63,12 @@ struct Bench {
 };
 
 const EyeCase& worst_of(const EyeSearch& found) {
-    return *std::ranges::max_element(found.worst, {}, [](const EyeCase& each) { return each.part.worst.ratio; });
+    return *std::ranges::max_element(found.worst, {},
+                                     [](const EyeCase& each) { return each.part.worst.ratio; });
 }
 
-// Nothing in front of the module is worse than the nearest place on the axis, but for what the search itself leaves
-// open.
+// Nothing in front of the module is worse than the nearest place on the axis, but for what the search itself
+// leaves open.
 void check_nearest_is_worst(const Design& design, double nearest) {
     const Bench bench(design);
     const double there = bench.at({nearest, 0, 0}).worst_ratio();
@@ -79,7 +81,8 @@ void check_nearest_is_worst(const Design& design, double nearest) {
 }  // namespace
 
 TEST_CASE("a bare array is worst at 100 mm, or as near as it can be reached") {
-    // The light through the pupil falls as 1/r^2 and the limit as 1/r. An array of 0.35 mm: within 5 mrad everywhere.
+    // The light through the pupil falls as 1/r^2 and the limit as 1/r. An array of 0.35 mm: within 5 mrad
+    // everywhere.
     Design design = array_of(8, 8, 50e-6);
     const EyeCase nearest = worst_of(Bench(design).naked_eye());
     CHECK(nearest.eye.place.norm() == about(0.1).epsilon(1e-9));
@@ -88,22 +91,27 @@ TEST_CASE("a bare array is worst at 100 mm, or as near as it can be reached") {
     design.eye_safety.closest_access = 0.2;
     CHECK(worst_of(Bench(design).naked_eye()).eye.place.norm() == about(0.2).epsilon(1e-9));
     const Bench bench(design);
-    CHECK(worst_of(search_eyes(bench.question(Condition::telescope), {})).eye.place.norm() == about(2).epsilon(1e-9));
+    CHECK(worst_of(search_eyes(bench.question(Condition::telescope), {})).eye.place.norm() ==
+          about(2).epsilon(1e-9));
 }
 
 TEST_CASE("a Lambertian diffuser is worst at 100 mm") {
-    // Patches of 40 um on the diffuser, which lies on the chip: the eye can focus on it from 100 mm. n = -1: intensity
-    // as the cosine; 80 degrees hold 97 % of a half space.
+    // Patches of 40 um on the diffuser, which lies on the chip: the eye can focus on it from 100 mm. n = -1:
+    // intensity as the cosine; 80 degrees hold 97 % of a half space.
     Design design = array_of(3, 3, 100e-6);
     design.emitters.near_field_radius = 20e-6;
-    design.optics.elements = {Diffuser{
-        .shape = FieldShape::round, .diameter = radians(160), .roll_off = radians(1), .exponent = -1, .distance = 0}};
+    design.optics.elements = {Diffuser{.shape = FieldShape::round,
+                                       .diameter = radians(160),
+                                       .roll_off = radians(1),
+                                       .exponent = -1,
+                                       .distance = 0}};
     CHECK(worst_of(Bench(design).naked_eye()).eye.place.norm() == about(0.1).epsilon(1e-9));
     check_nearest_is_worst(design, 0.1);
 }
 
 TEST_CASE("a point behind a lens is worst at the nearest place when its beam does not converge") {
-    // 3 um over 4 mm: 0.75 mrad, a point for every eye. All of the beam enters near the lens, less farther on.
+    // 3 um over 4 mm: 0.75 mrad, a point for every eye. All of the beam enters near the lens, less farther
+    // on.
     Design design = array_of(1, 1, 50e-6);
     design.emitters.near_field_radius = 3e-6;
     SUBCASE("collimated") { design = behind_lens(design); }
@@ -118,8 +126,11 @@ TEST_CASE("a point behind a lens is worst at the nearest place when its beam doe
 TEST_CASE("with distance the ratio falls as 1/r, and as 1/r^2 once the array is a point") {
     const Bench bench(array_of(8, 8, 50e-6));
     constexpr std::size_t single = static_cast<std::size_t>(PulseCriterion::single);
-    const auto ratio = [&](double distance) { return bench.at({distance, 0, 0}).worst[single].part.worst.ratio; };
-    // 3.6 mrad and 1.8 mrad; the pupil takes 0.0758 of a beam at 100 mm and 4 * 0.0195 as much at 200 mm: 3 %.
+    const auto ratio = [&](double distance) {
+        return bench.at({distance, 0, 0}).worst[single].part.worst.ratio;
+    };
+    // 3.6 mrad and 1.8 mrad; the pupil takes 0.0758 of a beam at 100 mm and 4 * 0.0195 as much at 200 mm: 3
+    // %.
     CHECK(ratio(0.1) * 0.1 == about(ratio(0.2) * 0.2).epsilon(0.04));
     CHECK(ratio(0.5) * 0.25 == about(ratio(1)).epsilon(5e-3));
     CHECK(ratio(1) == about(ratio(2) * 4).epsilon(2e-3));
@@ -128,15 +139,18 @@ TEST_CASE("with distance the ratio falls as 1/r, and as 1/r^2 once the array is 
 TEST_CASE("zones that fire apart in time are never worse than all of them at once") {
     RandomStream random(81);
     for (int i = 0; i < 6; ++i) {
-        const int rows = 2 + static_cast<int>(random.below(3)), columns = 2 + static_cast<int>(random.below(3));
+        const int rows = 2 + static_cast<int>(random.below(3)),
+                  columns = 2 + static_cast<int>(random.below(3));
         Design whole = array_of(rows, columns, 30e-6 + 120e-6 * random.uniform());
         whole.firing.shots = 1 + static_cast<int>(random.below(20));
         whole.firing.frame_period = 0.08;
         if (i % 2 == 1) whole = behind_lens(whole, 100e-6 * random.uniform() - 50e-6);
         Design split = whole;
-        split.emitters.addressing = {.scheme = i % 3 == 0 ? AddressingScheme::individual : AddressingScheme::rows};
+        split.emitters.addressing = {.scheme =
+                                         i % 3 == 0 ? AddressingScheme::individual : AddressingScheme::rows};
         split.firing.gap = 5e-3;
-        const double together = Bench(whole).naked_eye().worst_ratio(), apart = Bench(split).naked_eye().worst_ratio();
+        const double together = Bench(whole).naked_eye().worst_ratio(),
+                     apart = Bench(split).naked_eye().worst_ratio();
         CAPTURE(i);
         CHECK(apart > 0);
         CHECK(apart <= together * search_allowance);
@@ -159,7 +173,8 @@ TEST_CASE("the ratio is in proportion to the power") {
         design.drive.peak_power *= 0.37;
         const EyeSearch other = Bench(design).both();
         for (std::size_t c = 0; c < 4; ++c)
-            CHECK(other.worst[c].part.worst.ratio == about(4 * 0.37 * before.worst[c].part.worst.ratio).epsilon(1e-12));
+            CHECK(other.worst[c].part.worst.ratio ==
+                  about(4 * 0.37 * before.worst[c].part.worst.ratio).epsilon(1e-12));
     }
 }
 
@@ -171,7 +186,8 @@ TEST_CASE("a quarter turn of the array changes nothing but what the search leave
         Design standing = lying;
         standing.emitters.layout.rows = 5, standing.emitters.layout.columns = 2;
         standing.emitters.layout.pitch = 60e-6, standing.emitters.layout.row_pitch = 120e-6;
-        CHECK(Bench(standing).both().worst_ratio() == about(Bench(lying).both().worst_ratio()).epsilon(search_slack));
+        CHECK(Bench(standing).both().worst_ratio() ==
+              about(Bench(lying).both().worst_ratio()).epsilon(search_slack));
     }
 }
 
@@ -221,9 +237,10 @@ TEST_CASE("no eye at random finds more than the search allows for") {
             const double distance = 0.1 * std::pow(50, random.uniform());
             const Vec3 place =
                 distance * Vec3(1, 0.1 * random.uniform() - 0.05, 0.1 * random.uniform() - 0.05).normalized();
-            const EnteringLight light = entering_light(bench.field, {.place = place}, bench.pattern.plan.pulse_width);
-            const WindowSearch windows =
-                search_windows(bench.pattern, retinal_image(light, 10 * random.uniform()), dwell_of_zone, {}, 0);
+            const EnteringLight light =
+                entering_light(bench.field, {.place = place}, bench.pattern.plan.pulse_width);
+            const WindowSearch windows = search_windows(
+                bench.pattern, retinal_image(light, 10 * random.uniform()), dwell_of_zone, {}, 0);
             for (const ImagePart& part : windows.parts) most = std::max(most, part.worst.ratio);
         }
         CAPTURE(i);

@@ -13,8 +13,9 @@
 namespace glint::test {
 namespace {
 
-constexpr std::array firing_orders{FiringOrder::raster,       FiringOrder::serpentine,    FiringOrder::stride,
-                                   FiringOrder::bit_reversed, FiringOrder::farthest_next, FiringOrder::shuffled};
+constexpr std::array firing_orders{FiringOrder::raster,        FiringOrder::serpentine,
+                                   FiringOrder::stride,        FiringOrder::bit_reversed,
+                                   FiringOrder::farthest_next, FiringOrder::shuffled};
 
 // Every choice a design makes, drawn one after the other.
 struct Draw {
@@ -40,12 +41,16 @@ struct Draw {
 
 Layout layout(Draw& draw) {
     const int most = draw.chance(0.75) ? 3 : draw.chance(0.8) ? 4 : 8;
-    Layout layout{.rows = draw.whole(1, most), .columns = draw.whole(1, most), .pitch = draw.decades(10e-6, 2e-3)};
-    layout.kind = draw.one_of({LayoutKind::grid, LayoutKind::grid, LayoutKind::hexagonal, LayoutKind::scattered});
-    if (layout.kind == LayoutKind::grid && draw.chance(0.3)) layout.row_pitch = layout.pitch * draw.between(0.6, 3);
+    Layout layout{
+        .rows = draw.whole(1, most), .columns = draw.whole(1, most), .pitch = draw.decades(10e-6, 2e-3)};
+    layout.kind =
+        draw.one_of({LayoutKind::grid, LayoutKind::grid, LayoutKind::hexagonal, LayoutKind::scattered});
+    if (layout.kind == LayoutKind::grid && draw.chance(0.3))
+        layout.row_pitch = layout.pitch * draw.between(0.6, 3);
     if (layout.kind == LayoutKind::scattered) {
         layout.spacing = layout.pitch;
-        layout.width = layout.pitch * draw.between(0.5, 4), layout.height = layout.pitch * draw.between(0.5, 4);
+        layout.width = layout.pitch * draw.between(0.5, 4),
+        layout.height = layout.pitch * draw.between(0.5, 4);
         layout.seed = draw.whole(1, 1000);
         layout.rows = layout.columns = 1;
     }
@@ -70,13 +75,15 @@ Addressing addressing(Draw& draw, const Layout& layout) {
 // Extent of the chip from its middle.
 double half_width(const Layout& layout) {
     if (layout.kind == LayoutKind::scattered) return std::hypot(layout.width, layout.height) / 2;
-    return std::hypot(layout.rows * layout.row_pitch.value_or(layout.pitch), (layout.columns + 0.5) * layout.pitch) /
+    return std::hypot(layout.rows * layout.row_pitch.value_or(layout.pitch),
+                      (layout.columns + 0.5) * layout.pitch) /
            2;
 }
 
 // Neighbours are sent 0.3 mrad to 50 mrad apart, and the field stays within 30 degrees.
 Lens lens(Draw& draw, double pitch, double half, double lobe) {
-    Lens lens{.focal_length = std::max(std::clamp(pitch / draw.decades(0.3e-3, 50e-3), 1e-3, 50e-3), 1.8 * half)};
+    Lens lens{.focal_length =
+                  std::max(std::clamp(pitch / draw.decades(0.3e-3, 50e-3), 1e-3, 50e-3), 1.8 * half)};
     lens.clear_aperture = 2 * (half + lens.focal_length * std::tan(lobe / 2) * draw.between(0.7, 1.5));
     lens.mapping = draw.one_of({LensMapping::tangent, LensMapping::f_theta});
     if (draw.chance(0.5)) lens.defocus = lens.focal_length * draw.between(-0.1, 0.1) * draw.decades(0.01, 1);
@@ -137,7 +144,8 @@ Design random_design(std::uint64_t seed) {
     if (draw.chance(0.3)) emitters.near_field_radius = emitters.aperture * draw.between(0.3, 0.6);
     emitters.lobe.divergence = radians(draw.decades(1, 40));
     if (draw.chance(0.15))
-        emitters.lobe.shape = LobeShape::ring, emitters.lobe.ring = emitters.lobe.divergence * draw.between(0.5, 1.5);
+        emitters.lobe.shape = LobeShape::ring,
+        emitters.lobe.ring = emitters.lobe.divergence * draw.between(0.5, 1.5);
     emitters.lobe.width = draw.one_of({BeamWidth::full_1e2, BeamWidth::full_1e2, BeamWidth::fwhm});
 
     design.drive.peak_power = draw.decades(1e-3, 10);
@@ -165,7 +173,8 @@ Design random_design(std::uint64_t seed) {
             elements = {lens(draw, places.pitch, half, emitters.lobe.divergence), diffuser(draw)};
             break;
         default:
-            elements = {lens(draw, places.pitch, half, emitters.lobe.divergence), fan_out(draw, emitters.wavelength)};
+            elements = {lens(draw, places.pitch, half, emitters.lobe.divergence),
+                        fan_out(draw, emitters.wavelength)};
     }
     design.eye_safety.time_base = draw.one_of({100.0, 100.0, 100.0, 30e3, 0.25});
     return design;

@@ -1,4 +1,5 @@
-// The time pattern against published rules for regular trains, and against every start and duration tried one by one.
+// The time pattern against published rules for regular trains, and against every start and duration tried one
+// by one.
 #include <glint/safety/limits.h>
 #include <glint/safety/time_pattern.h>
 #include "points.h"
@@ -63,7 +64,8 @@ constexpr Light lights[] = {
     {440, photochemical, class_1},   {1450, corneal, class_1},         {1450, corneal, class_3R},
     {1550, corneal, class_1},        {940, ceiling, class_1}};
 
-// Dwells of unequal energy at irregular times, from microseconds to seconds; up to 200 frames in the time base.
+// Dwells of unequal energy at irregular times, from microseconds to seconds; up to 200 frames in the time
+// base.
 Trial random_trial(RandomStream& random) {
     const Light& light = lights[random.below(std::size(lights))];
     constexpr double time_bases[] = {0.25, 1, 10, 30, 100};
@@ -98,11 +100,11 @@ Trial random_trial(RandomStream& random) {
 std::string text_of(const Trial& trial) {
     std::ostringstream text;
     text.precision(10);
-    text << name_of(trial.rules.laser_class) << ", " << name_of(trial.rules.mechanism) << ", " << trial.rules.wavelength
-         << " m, base " << trial.rules.time_base << " s, frame " << trial.plan.frame_period << " s, "
-         << trial.plan.shots << " shots every " << trial.plan.shot_period << " s of " << trial.plan.pulse_width
-         << " s, subtense " << trial.size.subtense << ", side " << trial.size.side << ", whole "
-         << trial.size.whole_subtense << " rad; dwells";
+    text << name_of(trial.rules.laser_class) << ", " << name_of(trial.rules.mechanism) << ", "
+         << trial.rules.wavelength << " m, base " << trial.rules.time_base << " s, frame "
+         << trial.plan.frame_period << " s, " << trial.plan.shots << " shots every " << trial.plan.shot_period
+         << " s of " << trial.plan.pulse_width << " s, subtense " << trial.size.subtense << ", side "
+         << trial.size.side << ", whole " << trial.size.whole_subtense << " rad; dwells";
     for (const DwellEnergy& dwell : trial.dwells)
         text << " at " << trial.plan.start[dwell.dwell] << " s " << dwell.energy << " J,";
     return text.str();
@@ -114,7 +116,8 @@ public:
     explicit Slow(const Trial& trial)
         : trial_(trial), width_(trial.plan.pulse_width), shortest_(shortest_duration(trial.size.side)) {
         const FiringPlan& plan = trial.plan;
-        const double base = trial.rules.time_base, later = 0.06 * c4(std::min(trial.rules.wavelength, 1400 * nm));
+        const double base = trial.rules.time_base,
+                     later = 0.06 * c4(std::min(trial.rules.wavelength, 1400 * nm));
         for (int f = 0; f < base / plan.frame_period + 2; ++f)
             for (const DwellEnergy& dwell : trial.dwells)
                 for (int k = 0; k < plan.shots; ++k) {
@@ -146,8 +149,9 @@ public:
         return most;
     }
 
-    // Largest ratio of at least `least` whole pulses, from the start of one to the end of another. A window may be
-    // longer than what it holds: as long as the side asks for, or up to a bend where the tables step down.
+    // Largest ratio of at least `least` whole pulses, from the start of one to the end of another. A window
+    // may be longer than what it holds: as long as the side asks for, or up to a bend where the tables step
+    // down.
     [[nodiscard]] double whole_pulses(std::size_t least) const {
         double worst = 0;
         for (std::size_t i = 0; i < in_a_frame_; ++i)
@@ -169,8 +173,8 @@ public:
         return worst;
     }
 
-    // Largest number of groups that starts within a closed stretch: a group is all that starts within `length` of its
-    // first pulse.
+    // Largest number of groups that starts within a closed stretch: a group is all that starts within
+    // `length` of its first pulse.
     [[nodiscard]] double groups(double stretch, double length) const {
         double most = 0;
         for (std::size_t i = 0; i < in_a_frame_; ++i) {
@@ -188,7 +192,8 @@ private:
     };
 
     [[nodiscard]] std::size_t first_after(double time) const {
-        return static_cast<std::size_t>(std::ranges::upper_bound(starts_, time * (1 + 1e-12)) - starts_.begin());
+        return static_cast<std::size_t>(std::ranges::upper_bound(starts_, time * (1 + 1e-12)) -
+                                        starts_.begin());
     }
 
     const Trial& trial_;
@@ -199,8 +204,8 @@ private:
     std::vector<Bend> bends_;
 };
 
-// Nothing that lies wholly within a duration is missed, and nothing is found that does not start within one. A pulse
-// alone is left to its own criterion.
+// Nothing that lies wholly within a duration is missed, and nothing is found that does not start within one.
+// A pulse alone is left to its own criterion.
 void check_average(const Trial& trial) {
     CAPTURE(text_of(trial));
     const TimedRatios found = worst_of(trial);
@@ -214,8 +219,8 @@ void check_average(const Trial& trial) {
 }  // namespace
 
 TEST_CASE("regular trains of one zone: limits per pulse by the 2014 rules") {
-    // Derived by hand from IEC 60825-1:2014, 4.3 f) and Tables 3 and 4 (from memory); energies per pulse in J, five
-    // digits printed. The pulse is seen in alpha_max of its duration, the average in up to 100 mrad.
+    // Derived by hand from IEC 60825-1:2014, 4.3 f) and Tables 3 and 4 (from memory); energies per pulse in
+    // J, five digits printed. The pulse is seen in alpha_max of its duration, the average in up to 100 mrad.
     struct Row {
         const char* name;
         double nanometres, width, repetition, milliradians, T2, single, average, train;
@@ -249,20 +254,22 @@ TEST_CASE("regular trains of one zone: limits per pulse by the 2014 rules") {
         const double pulses = row.repetition * row.T2;
         CHECK(1e-9 / whole[average].ratio <= row.average * (1 + digits));
         CHECK(1e-9 / whole[average].ratio >= row.average * pulses / (pulses + 1) * (1 - digits));
-        // N is counted upward. C5 also looks at the part itself, 6.3 mrad in D11, where the whole source alone has 1.
+        // N is counted upward. C5 also looks at the part itself, 6.3 mrad in D11, where the whole source
+        // alone has 1.
         if (row.milliradians > 100)
             CHECK(1e-9 / pulse[train].ratio <= row.train);
         else {
             CHECK(1e-9 / pulse[train].ratio <= row.train * (1 + digits));
-            CHECK(1e-9 / pulse[train].ratio >= row.train * std::pow(pulses / (pulses + 1), 0.25) * (1 - digits));
+            CHECK(1e-9 / pulse[train].ratio >=
+                  row.train * std::pow(pulses / (pulses + 1), 0.25) * (1 - digits));
         }
     }
 }
 
 TEST_CASE("a fast train of one zone, Ti group included") {
     // Derived (D5): 905 nm, 5 ns at 1 MHz, point source: Ti holds 5 pulses, limits per pulse 1.9792e-7
-    // single, 1.0025e-9 average, 3.8050e-8 group, 1.5220e-8 train (2e6 groups, C5 = 0.4). A pulse that starts as Ti
-    // ends counts too: 6.
+    // single, 1.0025e-9 average, 3.8050e-8 group, 1.5220e-8 train (2e6 groups, C5 = 0.4). A pulse that starts
+    // as Ti ends counts too: 6.
     const auto check = [](const Trial& trial) {
         const TimedRatios found = worst_of(trial);
         CHECK(1e-9 / found[single].ratio == about(1.9792e-7, 5e-5));
@@ -278,8 +285,8 @@ TEST_CASE("a fast train of one zone, Ti group included") {
 
 TEST_CASE("a burst of pulses in every frame, criterion by criterion") {
     // Derived: 940 nm, 5 mrad, 2 ns at 10 MHz in bursts of 500 us, 30 bursts a second. Limits per pulse:
-    // single 7.7512e-7, 5 us group of 50 1.4902e-8, C5 = 0.4 (32,558 groups in T2) 5.9607e-9, one burst 4.7123e-9
-    // (governs), T2 2.5882e-8.
+    // single 7.7512e-7, 5 us group of 50 1.4902e-8, C5 = 0.4 (32,558 groups in T2) 5.9607e-9, one
+    // burst 4.7123e-9 (governs), T2 2.5882e-8.
     Trial trial = one_zone(940 * nm, 2e-9, 5000, 1e-7, 1.0 / 30);
     trial.size = part_of(5 * mrad, 5 * mrad);
     const TimedRatios found = worst_of(trial);
@@ -289,7 +296,8 @@ TEST_CASE("a burst of pulses in every frame, criterion by criterion") {
     CHECK(found[train].pulses == about(32'558, 2e-3));  // frames counted upward
     CHECK(1e-9 / found[train].ratio == about(5.9607e-9 * 50 / 51, 5e-5));
     CHECK(found[average].pulses == 5000);
-    CHECK(1e-9 / found[average].ratio == about(4.7123e-9, 2e-4));  // from the first pulse to the last 499.902 us
+    CHECK(1e-9 / found[average].ratio ==
+          about(4.7123e-9, 2e-4));  // from the first pulse to the last 499.902 us
     trial.rules.durations = {1, 3e4};
     // A window may hold up to one burst more than the 325.6 in T2 that the vector counts.
     CHECK(1e-9 / worst_of(trial)[average].ratio == about(2.5882e-8, 3.1e-3));
@@ -317,8 +325,8 @@ TEST_CASE("single pulse, group and train against all pulses one by one") {
             CHECK(found[train].ratio == 0);
             continue;
         }
-        // N is at least the number of groups that the pulses of T2 need, and at most all pulses of frames counted
-        // upward.
+        // N is at least the number of groups that the pulses of T2 need, and at most all pulses of frames
+        // counted upward.
         const double window = std::min(t2(trial.size.subtense), base);
         CHECK(found[train].pulses >= slow.groups(window, found[group].ratio > 0 ? Ti : 0));
         CHECK(found[train].pulses <=
@@ -363,7 +371,8 @@ TEST_CASE("energy within a stretch against explicit counting") {
 }
 
 TEST_CASE("more energy, or a smaller part of a larger family, never lowers the worst ratio") {
-    // The worst of all criteria: a pulse that outweighs its group is left to the single one, and so is a pulse alone.
+    // The worst of all criteria: a pulse that outweighs its group is left to the single one, and so is a
+    // pulse alone.
     const auto worst = [](const Trial& trial) {
         const TimedRatios found = worst_of(trial);
         return std::ranges::max(found, {}, &TimedRatio::ratio).ratio;
@@ -390,8 +399,8 @@ TEST_CASE("more energy, or a smaller part of a larger family, never lowers the w
         other = trial;
         other.size.largest_subtense *= decade_between(random, 1, 3);
         CHECK(worst(other) >= before * printed_step);
-        // What starts within the shortest duration counts, even if it sticks out by almost its width; a little longer
-        // and it would lie inside.
+        // What starts within the shortest duration counts, even if it sticks out by almost its width; a
+        // little longer and it would lie inside.
         other = trial;
         other.size.side = decade_between(random, alpha_min, trial.size.side);
         const double shortest = shortest_duration(trial.size.side);

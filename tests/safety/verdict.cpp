@@ -28,7 +28,9 @@ Design small_module() {
     return design;
 }
 
-SafetyVerdict judged(const Design& design) { return judge_safety(design, build_array(design.emitters, field_sense(design.optics), ".")); }
+SafetyVerdict judged(const Design& design) {
+    return judge_safety(design, build_array(design.emitters, field_sense(design.optics), "."));
+}
 
 }  // namespace
 
@@ -54,17 +56,20 @@ TEST_CASE("the class follows the ratio") {
     };
     CHECK(class_at(0.99) == LaserClass::class_1);
     CHECK(class_at(1.01) != LaserClass::class_1);
-    // Five times Class 1 is the limit of Class 3R outside 400 nm to 700 nm, at most (its printed values are rounded down).
+    // Five times Class 1 is the limit of Class 3R outside 400 nm to 700 nm, at most (its printed values are
+    // rounded down).
     CHECK(static_cast<int>(class_at(5.1)) > static_cast<int>(LaserClass::class_3R));
     CHECK(class_at(1e9) == LaserClass::class_4);
 }
 
 TEST_CASE("the verdict is that of the worst corner") {
     Design design = small_module();
-    design.eye_safety.tolerances = {.power = 0.1, .divergence = 0.1, .pulse_width = 0.05, .wavelength = 10e-9, .focal_length = 0.02};
+    design.eye_safety.tolerances = {
+        .power = 0.1, .divergence = 0.1, .pulse_width = 0.05, .wavelength = 10e-9, .focal_length = 0.02};
     const SafetyVerdict verdict = judged(design);
     const std::vector<Corner> corners = tolerance_corners(design);
-    CHECK(corners.size() == 4);  // divergence and focal length to both sides; longer pulses and the shorter wavelength are stricter
+    CHECK(corners.size() == 4);  // divergence and focal length to both sides; longer pulses and the shorter
+                                 // wavelength are stricter
     double worst = 0;
     for (const Corner& corner : corners) worst = std::max(worst, judged(corner.design).worst_ratio);
     // Each search may miss what the other finds by its slack.
@@ -78,7 +83,8 @@ TEST_CASE("wavelength: a band is judged by the strictest limit in it") {
     design.emitters.wavelength = 1050e-9;
     design.eye_safety.tolerances.wavelength = 5e-9;
     // Below 1050 nm the limit of nanosecond pulses is about half of that above.
-    for (const Corner& corner : tolerance_corners(design)) CHECK(corner.design.emitters.wavelength <= 1050e-9 * (1 + 1e-9));
+    for (const Corner& corner : tolerance_corners(design))
+        CHECK(corner.design.emitters.wavelength <= 1050e-9 * (1 + 1e-9));
 }
 
 TEST_CASE("hazard distance: safe beyond, not safe just before") {
@@ -89,7 +95,8 @@ TEST_CASE("hazard distance: safe beyond, not safe just before") {
     REQUIRE(verdict.worst_ratio > 1);
     REQUIRE(verdict.aided_hazard_distance > 2);
     CHECK(verdict.aided_hazard_distance >= verdict.hazard_distance);
-    // With the access moved beyond it no place is left that exceeds Class 1; with the access well before it one is.
+    // With the access moved beyond it no place is left that exceeds Class 1; with the access well before it
+    // one is.
     LightSource light = verdict.light;
     light.closest_access = 1.02 * verdict.aided_hazard_distance;
     CHECK(holds(light, LaserClass::class_1, {Condition::telescope}, 100));
@@ -105,7 +112,8 @@ TEST_CASE("a zone stuck on: the reaction time is that of the continuous limit") 
     const FaultVerdict fault = judge_fault(design, array, ZoneStuckOn{}, LaserClass::class_1);
     REQUIRE(!fault.holds);
     REQUIRE(fault.reaction_time);
-    // For emission that lasts, P t = 7e-4 C4 t^0.75 C6 J up to 10 s: power and time go as P^-4, C6 unknown but the same.
+    // For emission that lasts, P t = 7e-4 C4 t^0.75 C6 J up to 10 s: power and time go as P^-4, C6 unknown
+    // but the same.
     design.drive.peak_power *= 1.1;
     const FaultVerdict more = judge_fault(design, array, ZoneStuckOn{}, LaserClass::class_1);
     REQUIRE(more.reaction_time);
@@ -133,7 +141,8 @@ TEST_CASE("a fault that changes nothing holds for the time base") {
 }
 
 TEST_CASE("wavelengths from end to end: every band has a verdict") {
-    for (const double wavelength : {405e-9, 532e-9, 650e-9, 850e-9, 1064e-9, 1310e-9, 1399e-9, 1450e-9, 1550e-9, 1790e-9}) {
+    for (const double wavelength :
+         {405e-9, 532e-9, 650e-9, 850e-9, 1064e-9, 1310e-9, 1399e-9, 1450e-9, 1550e-9, 1790e-9}) {
         Design design = small_module();
         design.emitters.wavelength = wavelength;
         CAPTURE(wavelength);

@@ -1,4 +1,5 @@
-// The window search against arrays worked out by hand and against every window tried one by one; the bound above it.
+// The window search against arrays worked out by hand and against every window tried one by one; the bound
+// above it.
 #include <glint/safety/image_bound.h>
 #include <glint/safety/window_search.h>
 #include "points.h"
@@ -27,24 +28,29 @@ Spot spot(double u, double v, double half_u, double half_v, double energy, int z
 std::vector<Spot> raster(int columns, int rows, double pitch) {
     std::vector<Spot> spots;
     for (int i = 0; i < columns; ++i)
-        for (int k = 0; k < rows; ++k) spots.push_back(spot(i * pitch, k * pitch, 0.05 * mrad, 0.05 * mrad, 1e-9));
+        for (int k = 0; k < rows; ++k)
+            spots.push_back(spot(i * pitch, k * pitch, 0.05 * mrad, 0.05 * mrad, 1e-9));
     return spots;
 }
 
 TimePattern one_zone(double frame_period) {
-    return time_pattern(
-        {.zones = {0}, .start = {0}, .shot_period = frame_period, .pulse_width = 5e-9, .frame_period = frame_period},
-        {.wavelength = 905 * nm});
+    return time_pattern({.zones = {0},
+                         .start = {0},
+                         .shot_period = frame_period,
+                         .pulse_width = 5e-9,
+                         .frame_period = frame_period},
+                        {.wavelength = 905 * nm});
 }
 
 WindowSearch search(const TimePattern& pattern, std::span<const Spot> spots) {
     return search_windows(pattern, spots, std::array{0}, {}, 0);
 }
 
-// Emission over C6 T2^-0.25, in emitters: the average over the time base, of pulses so dense that they are steady
-// light.
+// Emission over C6 T2^-0.25, in emitters: the average over the time base, of pulses so dense that they are
+// steady light.
 double steady_value(const ImagePart& part, double period) {
-    return part.worst.ratio * 7e-4 * c4(905 * nm) * part.worst.duration / (1e-9 * part.worst.duration / period);
+    return part.worst.ratio * 7e-4 * c4(905 * nm) * part.worst.duration /
+           (1e-9 * part.worst.duration / period);
 }
 
 // An image, its firing plan and rules.
@@ -55,7 +61,8 @@ struct Trial {
     ExposureRules rules;
 };
 
-// 1 to `most` spots of up to four dwells, points to wide patches, on up to 150 mrad. Dwells are farther apart than Ti.
+// 1 to `most` spots of up to four dwells, points to wide patches, on up to 150 mrad. Dwells are farther apart
+// than Ti.
 Trial random_trial(RandomStream& random, std::uint64_t most) {
     Trial trial;
     FiringPlan& plan = trial.plan;
@@ -74,12 +81,13 @@ Trial random_trial(RandomStream& random, std::uint64_t most) {
     // Half of the images are of spots that overlap and are about as wide as windows can be.
     const bool overlapping = most <= 25 && random.below(2) == 0;
     const double extent = decade_between(random, 1, overlapping ? 6 : 150) * mrad;
-    const double size = (overlapping ? uniform_between(random, 0.5, 4) : decade_between(random, 0.01, 40)) * mrad;
+    const double size =
+        (overlapping ? uniform_between(random, 0.5, 4) : decade_between(random, 0.01, 40)) * mrad;
     for (int i = 0; i < count; ++i)
-        trial.spots.push_back(spot(extent * random.uniform(), extent * random.uniform(),
-                                   size * uniform_between(random, 0.5, 1), size * uniform_between(random, 0.5, 1),
-                                   decade_between(random, 0.03, 1) * 1e-9,
-                                   static_cast<int>(random.below(static_cast<std::uint64_t>(dwells)))));
+        trial.spots.push_back(
+            spot(extent * random.uniform(), extent * random.uniform(), size * uniform_between(random, 0.5, 1),
+                 size * uniform_between(random, 0.5, 1), decade_between(random, 0.03, 1) * 1e-9,
+                 static_cast<int>(random.below(static_cast<std::uint64_t>(dwells)))));
     return trial;
 }
 
@@ -87,12 +95,13 @@ std::string text_of(const Trial& trial) {
     std::ostringstream text;
     text.precision(12);
     text << trial.rules.wavelength << " m, frame " << trial.plan.frame_period << " s, " << trial.plan.shots
-         << " shots every " << trial.plan.shot_period << " s of " << trial.plan.pulse_width << " s, dwells at";
+         << " shots every " << trial.plan.shot_period << " s of " << trial.plan.pulse_width
+         << " s, dwells at";
     for (const double start : trial.plan.start) text << " " << start;
     text << "; spots (u v half_u half_v energy zone)";
     for (const Spot& each : trial.spots)
-        text << " {" << each.middle.x() << " " << each.middle.y() << " " << each.half.x() << " " << each.half.y() << " "
-             << each.energy << " " << each.zone << "}";
+        text << " {" << each.middle.x() << " " << each.middle.y() << " " << each.half.x() << " "
+             << each.half.y() << " " << each.energy << " " << each.zone << "}";
     return text.str();
 }
 
@@ -102,7 +111,8 @@ struct Side {
 };
 
 double covered(const Side& side, double middle, double half) {
-    return std::clamp((std::min(side.high, middle + half) - std::max(side.low, middle - half)) / (2 * half), 0.0, 1.0);
+    return std::clamp((std::min(side.high, middle + half) - std::max(side.low, middle - half)) / (2 * half),
+                      0.0, 1.0);
 }
 
 // What windows give, by the rules alone.
@@ -123,7 +133,8 @@ public:
         std::array<double, 4> energy{};
         for (const Spot& each : trial_.spots)
             energy[static_cast<std::size_t>(trial_.dwell_of_zone[each.zone])] +=
-                each.energy * covered(u, each.middle.x(), each.half.x()) * covered(v, each.middle.y(), each.half.y());
+                each.energy * covered(u, each.middle.x(), each.half.x()) *
+                covered(v, each.middle.y(), each.half.y());
         const double subtense = (u.clamped() + v.clamped()) / 2;
         const PartSize size{.subtense = subtense,
                             .largest_subtense = subtense,
@@ -147,7 +158,8 @@ public:
         const auto any = [&](int axis) {
             const Spot& each = trial_.spots[random.below(trial_.spots.size())];
             const double edge =
-                each.middle[axis] + each.half[axis] * (random.below(2) == 0 ? -1 : uniform_between(random, -1, 1));
+                each.middle[axis] +
+                each.half[axis] * (random.below(2) == 0 ? -1 : uniform_between(random, -1, 1));
             const double length = decade_between(random, alpha_min, 100e-3);
             return random.below(2) == 0 ? Side{edge, edge + length} : Side{edge - length, edge};
         };
@@ -164,8 +176,8 @@ public:
             for (const Spot& one : trial_.spots)
                 for (const Spot& other : trial_.spots)
                     for (const int end : {-1, 1})
-                        if (&one < &other &&
-                            std::abs(one.middle[a] + end * one.half[a] - other.middle[a] - end * other.half[a]) < apart)
+                        if (&one < &other && std::abs(one.middle[a] + end * one.half[a] - other.middle[a] -
+                                                      end * other.half[a]) < apart)
                             return false;
         }
         return true;
@@ -173,14 +185,16 @@ public:
 
     // What the image bound takes as known: all light as a point, and one beam.
     [[nodiscard]] LightRatios light() const {
-        constexpr PartSize point{.subtense = alpha_min, .largest_subtense = 0.2, .side = 0, .whole_subtense = 0.2};
+        constexpr PartSize point{
+            .subtense = alpha_min, .largest_subtense = 0.2, .side = 0, .whole_subtense = 0.2};
         std::array<double, 4> energy{};
         for (const Spot& each : trial_.spots)
             energy[static_cast<std::size_t>(trial_.dwell_of_zone[each.zone])] += each.energy;
         const TimedRatios all = worst_over_time(pattern_, dwells_of(energy), point);
         const TimedRatios one = worst_over_time(pattern_, std::array{DwellEnergy{0, 1}}, point);
         LightRatios light;
-        for (std::size_t c = 0; c < 4; ++c) light.as_point[c] = all[c].ratio, light.per_energy[c] = one[c].ratio;
+        for (std::size_t c = 0; c < 4; ++c)
+            light.as_point[c] = all[c].ratio, light.per_energy[c] = one[c].ratio;
         // A shot alone is no group, but may be part of one with those of other dwells.
         if (trial_.plan.pulse_width <= pattern_.group_time)
             light.per_energy[group] = std::max(one[group].ratio, 1 / pattern_.group_limit);
@@ -192,7 +206,8 @@ private:
     static std::vector<DwellEnergy> dwells_of(const std::array<double, 4>& energy) {
         std::vector<DwellEnergy> dwells;
         for (int d = 0; d < 4; ++d)
-            if (energy[static_cast<std::size_t>(d)] > 0) dwells.push_back({d, energy[static_cast<std::size_t>(d)]});
+            if (energy[static_cast<std::size_t>(d)] > 0)
+                dwells.push_back({d, energy[static_cast<std::size_t>(d)]});
         return dwells;
     }
 
@@ -212,7 +227,8 @@ private:
 };
 
 Ratios search(const Windows& windows, const Trial& trial, double slack, const Ratios& floor = {}) {
-    const WindowSearch found = search_windows(windows.pattern(), trial.spots, trial.dwell_of_zone, floor, slack);
+    const WindowSearch found =
+        search_windows(windows.pattern(), trial.spots, trial.dwell_of_zone, floor, slack);
     Ratios ratios;
     for (std::size_t c = 0; c < 4; ++c) ratios[c] = found.parts[c].worst.ratio;
     // A pulse alone in its window counts as an average too, but is searched for as a single one.
@@ -230,7 +246,8 @@ void check_at_least(const Ratios& found, const Ratios& slow, double share) {
 }  // namespace
 
 TEST_CASE("dense array, one pulse: the whole of it governs") {
-    // Derived (A1): 10 x 10 emitters of 0.1 mrad at 0.5 mrad; emitters over subtense in 1/mrad for windows of k x k.
+    // Derived (A1): 10 x 10 emitters of 0.1 mrad at 0.5 mrad; emitters over subtense in 1/mrad for windows of
+    // k x k.
     constexpr double value[] = {0.667, 2.667, 6, 10, 11.90, 13.85, 15.81, 17.78, 19.76, 21.74};
     for (int k = 1; k <= 10; ++k) {
         const ImagePart part = search(one_zone(1), raster(k, k, 0.5 * mrad)).parts[single];
@@ -241,9 +258,10 @@ TEST_CASE("dense array, one pulse: the whole of it governs") {
 }
 
 TEST_CASE("sparse array, steady light: one emitter, or the whole once it is large") {
-    // Derived (A2): 10 x 10 emitters at 10 mrad; emitters over C6 T2^-0.25 for windows of k x k, the largest of which
-    // governs. One emitter is a point: the printed 3.9e-4 W, not 7e-4 * 10^-0.25.
-    constexpr double value[] = {1.7783, 1.1109, 1.3315, 1.6758, 2.0838, 2.5463, 3.0630, 3.6363, 4.2701, 4.9687};
+    // Derived (A2): 10 x 10 emitters at 10 mrad; emitters over C6 T2^-0.25 for windows of k x k, the largest
+    // of which governs. One emitter is a point: the printed 3.9e-4 W, not 7e-4 * 10^-0.25.
+    constexpr double value[] = {1.7783, 1.1109, 1.3315, 1.6758, 2.0838,
+                                2.5463, 3.0630, 3.6363, 4.2701, 4.9687};
     constexpr double one_emitter = 7 / 3.9;
     constexpr double period = 1e-6;
     for (int k = 1; k <= 10; ++k) {
@@ -255,7 +273,8 @@ TEST_CASE("sparse array, steady light: one emitter, or the whole once it is larg
 }
 
 TEST_CASE("sparse line, steady light: one emitter governs") {
-    // Derived (A3): a line of up to 10 emitters at 10 mrad gives 1.7783 (1), 0.9432 (2), 0.7150 (6), 0.7545 (10).
+    // Derived (A3): a line of up to 10 emitters at 10 mrad gives 1.7783 (1), 0.9432 (2), 0.7150 (6), 0.7545
+    // (10).
     constexpr double period = 1e-6;
     for (const bool upright : {false, true}) {
         const ImagePart part =
@@ -266,7 +285,8 @@ TEST_CASE("sparse line, steady light: one emitter governs") {
 }
 
 TEST_CASE("sparse array, one pulse: alpha_max holds one emitter only") {
-    // Derived (A4): 5 mrad below 625 us; the limit of each emitter is that of a point, however many there are.
+    // Derived (A4): 5 mrad below 625 us; the limit of each emitter is that of a point, however many there
+    // are.
     for (const int k : {1, 4, 10}) {
         const ImagePart part = search(one_zone(1), raster(k, k, 10 * mrad)).parts[single];
         CHECK(part.worst.ae == about(1e-9, 1e-12));
@@ -278,7 +298,8 @@ TEST_CASE("of a wide even patch the largest window of the duration governs") {
     // A window of side a takes a^2 and its limit grows as a: the longest side that alpha_max allows.
     RandomStream random(60);
     for (int i = 0; i < 300; ++i) {
-        const double width = i % 2 == 0 ? decade_between(random, 1e-9, 1e-6) : decade_between(random, 626e-6, 0.24);
+        const double width =
+            i % 2 == 0 ? decade_between(random, 1e-9, 1e-6) : decade_between(random, 626e-6, 0.24);
         const FiringPlan plan{.zones = {0},
                               .start = {0},
                               .shots = 3,
@@ -290,7 +311,8 @@ TEST_CASE("of a wide even patch the largest window of the duration governs") {
         const WindowSearch found = search(pattern, std::array{spot(u, v, 0.06, 0.06, 1e-9)});
         const auto expected = [&](double duration, double energy) {
             const double side = alpha_max(duration), share = side / 0.12;
-            return energy * share * share / class_limit(LaserClass::class_1, {905 * nm, duration, side}).energy;
+            return energy * share * share /
+                   class_limit(LaserClass::class_1, {905 * nm, duration, side}).energy;
         };
         CAPTURE(width);
         CHECK(found.parts[single].worst.ratio == about(expected(width, 1e-9), 1e-9));
@@ -317,8 +339,8 @@ TEST_CASE("the search against every window between edges of spots") {
 }
 
 TEST_CASE("edges that all but coincide cost no more than half a percent") {
-    // Rows and columns of spots, off their places by up to a thousandth of a spot: such edges are taken as one, which
-    // makes a window up to two thousandths of a spot longer each way.
+    // Rows and columns of spots, off their places by up to a thousandth of a spot: such edges are taken as
+    // one, which makes a window up to two thousandths of a spot longer each way.
     RandomStream random(62);
     for (int i = 0; i < 500; ++i) {
         Trial trial = random_trial(random, 1);
@@ -341,7 +363,8 @@ TEST_CASE("edges that all but coincide cost no more than half a percent") {
 }
 
 TEST_CASE("no window at random is worse than what the search allows for") {
-    // Over spots wider than 5 mrad lengths are tried that are 1 % apart or lie half a percent apart for the plan.
+    // Over spots wider than 5 mrad lengths are tried that are 1 % apart or lie half a percent apart for the
+    // plan.
     RandomStream random(63);
     for (int i = 0; i < 1000; ++i) {
         const Trial trial = random_trial(random, 8);
@@ -358,21 +381,27 @@ TEST_CASE("the image bound is above what the search finds") {
         const Windows windows(trial);
         CAPTURE(text_of(trial));
         const Ratios bound = image_bound(trial.spots, windows.light(), {});
-        const WindowSearch found = search_windows(windows.pattern(), trial.spots, trial.dwell_of_zone, {}, 0.01);
+        const WindowSearch found =
+            search_windows(windows.pattern(), trial.spots, trial.dwell_of_zone, {}, 0.01);
         for (std::size_t c = 0; c < 4; ++c) CHECK(bound[c] >= found.parts[c].worst.ratio * (1 - 1e-9));
     }
 }
 
 TEST_CASE("the image bound holds for zones that fire one shot each within Ti") {
     // Two spots 1 mrad apart that fire 1 us apart are a group, though neither is one alone.
-    Trial trial{
-        .spots = {spot(0, 0, 0.05 * mrad, 0.05 * mrad, 1e-9, 0), spot(1 * mrad, 0, 0.05 * mrad, 0.05 * mrad, 1e-9, 1)},
-        .dwell_of_zone = {0, 1},
-        .plan = {.zones = {0, 1}, .start = {0, 1e-6}, .shot_period = 1e-6, .pulse_width = 5e-9, .frame_period = 1e-4},
-        .rules = {.wavelength = 905 * nm}};
+    Trial trial{.spots = {spot(0, 0, 0.05 * mrad, 0.05 * mrad, 1e-9, 0),
+                          spot(1 * mrad, 0, 0.05 * mrad, 0.05 * mrad, 1e-9, 1)},
+                .dwell_of_zone = {0, 1},
+                .plan = {.zones = {0, 1},
+                         .start = {0, 1e-6},
+                         .shot_period = 1e-6,
+                         .pulse_width = 5e-9,
+                         .frame_period = 1e-4},
+                .rules = {.wavelength = 905 * nm}};
     const Windows windows(trial);
     const Ratios bound = image_bound(trial.spots, windows.light(), {});
     const Ratios found = search(windows, trial, 0);
-    CHECK(found[group] == about(2e-9 / class_limit(LaserClass::class_1, {905 * nm, 5e-6, alpha_min}).energy, 1e-9));
+    CHECK(found[group] ==
+          about(2e-9 / class_limit(LaserClass::class_1, {905 * nm, 5e-6, alpha_min}).energy, 1e-9));
     for (const std::size_t c : {single, average, group, train}) CHECK(bound[c] >= found[c] * (1 - 1e-9));
 }

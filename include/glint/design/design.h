@@ -196,7 +196,8 @@ struct Environment {
 };
 
 /// How the eye-safety evaluation is set up.
-/// How far a built module may be from its nominal values, each to both sides. The verdict is for the worst corner.
+/// How far a built module may be from its nominal values, each to both sides. The verdict is for the worst
+/// corner.
 struct Tolerances {
     double power = 0;         ///< share of the peak power
     double divergence = 0;    ///< share of the emitters' divergence
@@ -241,7 +242,8 @@ struct OverCurrent {
     bool operator==(const OverCurrent&) const = default;
 };
 
-using Fault = std::variant<ElementMissing, ZoneStuckOn, AllZonesAtOnce, PulseTooLong, RepetitionTooHigh, OverCurrent>;
+using Fault =
+    std::variant<ElementMissing, ZoneStuckOn, AllZonesAtOnce, PulseTooLong, RepetitionTooHigh, OverCurrent>;
 
 /// Single faults to be judged, one at a time.
 struct Faults {

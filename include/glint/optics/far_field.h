@@ -18,10 +18,12 @@ struct FarField {
     double spread = 0;            ///< radius of the sphere around the origin that holds all beam origins [m]
     double widest_exit = 0;       ///< largest 1/e2 radius of a beam at its origin [m]
     int zones = 0;
-    bool alike = false;  ///< all beams share axis, kernel, curvature and plane of origin: bare arrays, or a diffuser on one
+    bool alike = false;  ///< all beams share axis, kernel, curvature and plane of origin: bare arrays, or a
+                         ///< diffuser on one
 };
 
-/// Whether beams of a zone that share axis and kernel become one. The eye sees them apart, the scene does not.
+/// Whether beams of a zone that share axis and kernel become one. The eye sees them apart, the scene does
+/// not.
 enum class Merge { no, yes };
 
 [[nodiscard]] FarField far_field(const Beams& beams, Merge merge = Merge::yes);

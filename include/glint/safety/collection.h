@@ -11,9 +11,9 @@ struct Aperture {
     double radius = 0;
 };
 
-/// Share of a beam's power that passes the aperture, 0 to 1. Narrow Gaussian beams: the offset disc of a round
-/// Gaussian whose radius is the smaller one of the beam there (radius_at), which gathers most. Wide kernels: the
-/// integral of the intensity over the disc by seven points, exact to the fifth degree.
+/// Share of a beam's power that passes the aperture, 0 to 1. Narrow Gaussian beams: the offset disc of a
+/// round Gaussian whose radius is the smaller one of the beam there (radius_at), which gathers most. Wide
+/// kernels: the integral of the intensity over the disc by seven points, exact to the fifth degree.
 [[nodiscard]] double collected_share(const Beam& beam, const Aperture& aperture);
 
 }  // namespace glint

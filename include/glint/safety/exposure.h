@@ -17,7 +17,8 @@ struct LightSource {
 };
 
 /// Light of an array through its optics. Errors: those of project().
-[[nodiscard]] LightSource light_source(const Design& design, const EmitterArray& array, const FiringPlan& plan);
+[[nodiscard]] LightSource light_source(const Design& design, const EmitterArray& array,
+                                       const FiringPlan& plan);
 
 /// Ratio that a search may find while no place, focus or part exceeds the limit.
 [[nodiscard]] double limit_of_search(const LightSource& light, Effort effort = Effort::everywhere);
@@ -32,14 +33,16 @@ struct ExposureQuestion {
     Vec3 also = Vec3::UnitX();  ///< direction in which a quick search looks besides
 };
 
-/// Worst cases over the conditions and every mechanism with a limit of the class: retinal thermal (parts of the image),
-/// photochemical, corneal and the Class 3B ceiling (all that enters). From 1400 nm on durations up to 0.35 s are held
-/// against the small aperture, longer ones against that of 10 s and more, which is the stricter reading in between.
-[[nodiscard]] EyeSearch search_exposure(const LightSource& light, const ExposureQuestion& question, EyeSearch before = {},
-                                        const Progress& progress = {});
+/// Worst cases over the conditions and every mechanism with a limit of the class: retinal thermal (parts of
+/// the image), photochemical, corneal and the Class 3B ceiling (all that enters). From 1400 nm on durations
+/// up to 0.35 s are held against the small aperture, longer ones against that of 10 s and more, which is the
+/// stricter reading in between.
+[[nodiscard]] EyeSearch search_exposure(const LightSource& light, const ExposureQuestion& question,
+                                        EyeSearch before = {}, const Progress& progress = {});
 
 /// The limits that some of the searches above test, one pattern for each mechanism and range of durations.
-[[nodiscard]] std::vector<TimePattern> patterns_of(const LightSource& light, LaserClass laser_class, double time_base);
+[[nodiscard]] std::vector<TimePattern> patterns_of(const LightSource& light, LaserClass laser_class,
+                                                   double time_base);
 
 /// One emission held against its limit, the search's allowance included.
 struct ExposureCase {
@@ -50,8 +53,9 @@ struct ExposureCase {
     double pulses = 1;    ///< pulses in it; for the train criterion N
     double C5 = 1;
     double C6 = 1;
-    double subtense = 0;           ///< of the part [rad]; 0 for limits without an angle
-    Vec2 part_low = Vec2::Zero();  ///< corners of the part, to the module's right and up, from the line of sight [rad]
+    double subtense = 0;  ///< of the part [rad]; 0 for limits without an angle
+    Vec2 part_low =
+        Vec2::Zero();  ///< corners of the part, to the module's right and up, from the line of sight [rad]
     Vec2 part_high = Vec2::Zero();
     double ae = 0;            ///< accessible emission [J]
     double ael = 0;           ///< its limit, C5 included [J]

@@ -1,4 +1,5 @@
-// The eye search: the place and focus of the eye, and the part of its image, with the largest ratio to the limit.
+// The eye search: the place and focus of the eye, and the part of its image, with the largest ratio to the
+// limit.
 #pragma once
 
 #include <glint/core/parallel.h>
@@ -33,16 +34,17 @@ struct SearchWork {
 
 /// Share by which what a search drops may exceed what it found.
 inline constexpr double search_slack = 0.01;
-/// The same for arrays of more than 1024 beams that all go the same way: their images hold every beam, and searching them
-/// as closely would take minutes.
+/// The same for arrays of more than 1024 beams that all go the same way: their images hold every beam, and
+/// searching them as closely would take minutes.
 inline constexpr double search_slack_of_many = 0.1;
-/// Factor on a ratio found: the slack of the search, and half a percent meant for places between those of the raster and for
-/// edges of spots taken as one. Not a bound in every case yet, see the known faults in docs/safety.md.
+/// Factor on a ratio found: the slack of the search, and half a percent meant for places between those of the
+/// raster and for edges of spots taken as one. Not a bound in every case yet, see the known faults in
+/// docs/safety.md.
 [[nodiscard]] constexpr double allowance_for(double slack) { return 1 + slack + 0.005; }
 /// How closely places are looked at.
 enum class Effort {
     everywhere,  ///< the whole raster
-    quick,       ///< the middle, edges and corners of the field at every distance, and around the worst of them
+    quick,  ///< the middle, edges and corners of the field at every distance, and around the worst of them
 };
 
 /// Slack of a search of a field; a quick one counts as one of many beams.
@@ -74,16 +76,17 @@ struct EyeQuestion {
     Vec3 also = Vec3::UnitX();  ///< direction in which a quick search looks besides
 };
 
-/// Searches all places in front of the module from the closest the condition and the access allow (100 mm or 2 m from
-/// the chip) outward, each with every vergence of vergences(), for cases worse than known `before`. Places form a raster
-/// in direction, half a pupil radius apart or a fifth of the beams' radius there, whichever is more, and at most 0.06
-/// rad; distances grow by 1.2 until all that enters, taken as a point, is below what was found. Around the worst it
-/// looks in ever smaller steps of place, distance and focus.
-/// The result is the same for any number of threads.
-[[nodiscard]] EyeSearch search_eyes(const EyeQuestion& question, EyeSearch before, const Progress& progress = {});
+/// Searches all places in front of the module from the closest the condition and the access allow (100 mm or
+/// 2 m from the chip) outward, each with every vergence of vergences(), for cases worse than known `before`.
+/// Places form a raster in direction, half a pupil radius apart or a fifth of the beams' radius there,
+/// whichever is more, and at most 0.06 rad; distances grow by 1.2 until all that enters, taken as a point, is
+/// below what was found. Around the worst it looks in ever smaller steps of place, distance and focus. The
+/// result is the same for any number of threads.
+[[nodiscard]] EyeSearch search_eyes(const EyeQuestion& question, EyeSearch before,
+                                    const Progress& progress = {});
 
 /// The same for given places of the eye, module frame [m].
-[[nodiscard]] EyeSearch search_eyes_at(const EyeQuestion& question, std::span<const Vec3> places, EyeSearch before,
-                                       const Progress& progress = {});
+[[nodiscard]] EyeSearch search_eyes_at(const EyeQuestion& question, std::span<const Vec3> places,
+                                       EyeSearch before, const Progress& progress = {});
 
 }  // namespace glint

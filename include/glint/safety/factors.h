@@ -9,7 +9,8 @@ namespace glint {
 /// Smallest angular subtense alpha_min [rad]: 1.5 mrad for every duration.
 /// Source: IEC 60825-1:2014, 3.x and 4.3; three secondary sources agree.
 inline constexpr double alpha_min = 1.5e-3;
-inline constexpr double point_source = alpha_min * (1 + 1e-9);  // rad, up to here by arithmetic alpha_min itself
+inline constexpr double point_source =
+    alpha_min * (1 + 1e-9);  // rad, up to here by arithmetic alpha_min itself
 
 /// C3, photochemical: 1 (400-450 nm); 10^(0.02 (lambda - 450)) (450-600 nm), lambda in nm.
 /// `wavelength` in m, 400 nm to 600 nm, else Error. Source: IEC 60825-1:2014 Table 9; one secondary source.

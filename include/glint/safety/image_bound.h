@@ -14,14 +14,14 @@ struct LightRatios {
     Ratios per_energy{};  ///< AE/AEL of one beam as a point source, over its energy per shot [1/J]
 };
 
-/// For each criterion at least the largest AE/AEL of any window of the image. A window whose longest side is m holds no
-/// more than all that lies within m beside some spot; that many beams give together at most the sum of what each gives.
-/// Looks no closer once no bound exceeds `known`; images of more than 128 spots are bounded by the size of their spots
-/// only.
+/// For each criterion at least the largest AE/AEL of any window of the image. A window whose longest side is
+/// m holds no more than all that lies within m beside some spot; that many beams give together at most the
+/// sum of what each gives. Looks no closer once no bound exceeds `known`; images of more than 128 spots are
+/// bounded by the size of their spots only.
 [[nodiscard]] Ratios image_bound(std::span<const Spot> spots, const LightRatios& light, const Ratios& known);
 
-/// The limit of a part grows with its subtense [rad] at least in proportion to this, for every duration: alpha while T2
-/// plays no part, alpha T2^-0.25 beyond.
+/// The limit of a part grows with its subtense [rad] at least in proportion to this, for every duration:
+/// alpha while T2 plays no part, alpha T2^-0.25 beyond.
 [[nodiscard]] double growth_of_limit(double subtense);
 
 }  // namespace glint

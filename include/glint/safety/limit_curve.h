@@ -22,13 +22,13 @@ struct LimitCurve {
     std::vector<Piece> pieces;  ///< empty where the class has no such limit
     std::vector<double> bends;  ///< [s] durations at which pieces meet, ascending
 
-    /// The limit for a duration [J]: the smallest of the pieces that cover it, as class_limit gives it; infinite where
-    /// none does. `subtense` at most alpha_max(duration); `t2` is that of the subtense.
+    /// The limit for a duration [J]: the smallest of the pieces that cover it, as class_limit gives it;
+    /// infinite where none does. `subtense` at most alpha_max(duration); `t2` is that of the subtense.
     [[nodiscard]] double energy(double duration, double subtense, double t2) const;
 };
 
-/// Rows of a class, as class_limit finds them: Class 2 is Class 1 below 0.25 s, every class has the Class 3B rows as its
-/// ceiling. Errors: Class 4; Class 2 and 2M outside 400 nm to 700 nm; wavelength out of range.
+/// Rows of a class, as class_limit finds them: Class 2 is Class 1 below 0.25 s, every class has the Class 3B
+/// rows as its ceiling. Errors: Class 4; Class 2 and 2M outside 400 nm to 700 nm; wavelength out of range.
 [[nodiscard]] LimitCurve limit_curve(LaserClass laser_class, double wavelength, Mechanism mechanism);
 
 }  // namespace glint

@@ -3,8 +3,8 @@
 
 #include <glint/emitter/firing.h>
 #include <glint/safety/class.h>
-#include <glint/safety/pulses.h>
 #include <glint/safety/limit_curve.h>
+#include <glint/safety/pulses.h>
 
 #include <array>
 #include <span>
@@ -47,7 +47,8 @@ struct PartSize {
     double largest_subtense = 0;  ///< largest of the family: sets N, and C5 where that depends on it
     double side = 0;              ///< longest side [rad]: must not exceed alpha_max(T)
     double whole_subtense = 0;    ///< of the whole image, for C5
-    bool family = false;          ///< a bound is enough: averages may come out up to 2 % high, with more than 64 dwells 5 %
+    bool family =
+        false;  ///< a bound is enough: averages may come out up to 2 % high, with more than 64 dwells 5 %
 };
 
 /// One emission held against its limit.
@@ -67,17 +68,20 @@ using TimedRatios = std::array<TimedRatio, 4>;
 using Ratios = std::array<double, 4>;
 
 /// Largest AE/AEL over every emission duration and start, for each criterion of IEC 60825-1:2014, 4.3 f).
-/// single: the strongest pulse. group: the most that starts within Ti. train: the stricter of both over C5, with N
-/// every group in min(T2, time base), frames counted upward. average: two shots of a dwell; every stretch from the first pulse of one dwell to
-/// the last of another, with or without whole frames before it; the shortest duration that the side of the part allows;
-/// 10 s, T2 and the time base. What starts and ends within dwells is never worse than one of these (the ratio is
-/// quasi-convex in how much of a dwell is cut off). The train is for retinal limits only. An average not above `known` may come back as 0.
-/// `dwells` in time order. Monotone: more energy, a smaller subtense or side, a larger largest_subtense never lower it.
+/// single: the strongest pulse. group: the most that starts within Ti. train: the stricter of both over C5,
+/// with N every group in min(T2, time base), frames counted upward. average: two shots of a dwell; every
+/// stretch from the first pulse of one dwell to the last of another, with or without whole frames before it;
+/// the shortest duration that the side of the part allows; 10 s, T2 and the time base. What starts and ends
+/// within dwells is never worse than one of these (the ratio is quasi-convex in how much of a dwell is cut
+/// off). The train is for retinal limits only. An average not above `known` may come back as 0. `dwells` in
+/// time order. Monotone: more energy, a smaller subtense or side, a larger largest_subtense never lower it.
 [[nodiscard]] TimedRatios worst_over_time(const TimePattern& pattern, std::span<const DwellEnergy> dwells,
                                           const PartSize& size, const Ratios& known = {});
 
-/// Largest energy whose pulses start within a stretch of time, over all starts [J]. `stretch` below the frame period.
-[[nodiscard]] double energy_within(const TimePattern& pattern, std::span<const DwellEnergy> dwells, double stretch);
+/// Largest energy whose pulses start within a stretch of time, over all starts [J]. `stretch` below the frame
+/// period.
+[[nodiscard]] double energy_within(const TimePattern& pattern, std::span<const DwellEnergy> dwells,
+                                   double stretch);
 
 /// Shortest duration whose alpha_max is at least `side` [rad]: 0 s up to 5 mrad, infinite beyond 100 mrad.
 [[nodiscard]] double shortest_duration(double side);

@@ -12,11 +12,11 @@ namespace glint {
 
 /// A part of an image held against the limits.
 struct ImagePart {
-    TimedRatio worst;           ///< ratio 0: nothing above the floor
-    Vec2 low = Vec2::Zero();    ///< corners of the window [rad]
+    TimedRatio worst;         ///< ratio 0: nothing above the floor
+    Vec2 low = Vec2::Zero();  ///< corners of the window [rad]
     Vec2 high = Vec2::Zero();
-    double subtense = 0;        ///< clamped mean of the sides [rad]
-    std::vector<int> zones;     ///< that contribute
+    double subtense = 0;     ///< clamped mean of the sides [rad]
+    std::vector<int> zones;  ///< that contribute
 };
 
 /// Worst part for each criterion, indexed by PulseCriterion.
@@ -28,14 +28,15 @@ struct WindowSearch {
     std::size_t nodes = 0;  ///< families of windows tried
 };
 
-/// Maximises AE/AEL over every rectangular window of an image, for each criterion, as far as it exceeds `floor`.
-/// Sides count as at least 1.5 mrad and must not exceed alpha_max of the duration; the subtense is their mean
-/// (IEC 60825-1:2014, 4.3, from memory). The sides of the best window run from the low edge of a spot to the high edge
-/// of one, or have one end there and are 1.5 mrad, 5 mrad or 100 mrad long, or, over spots larger than 5 mrad, one of a
-/// series 1 % apart. Families of such windows are halved; a family is dropped when the energy around all its
-/// windows over the limit of its smallest exceeds what was found by no more than `slack`, a share.
-/// `dwell_of_zone` [zones].
+/// Maximises AE/AEL over every rectangular window of an image, for each criterion, as far as it exceeds
+/// `floor`. Sides count as at least 1.5 mrad and must not exceed alpha_max of the duration; the subtense is
+/// their mean (IEC 60825-1:2014, 4.3, from memory). The sides of the best window run from the low edge of a
+/// spot to the high edge of one, or have one end there and are 1.5 mrad, 5 mrad or 100 mrad long, or, over
+/// spots larger than 5 mrad, one of a series 1 % apart. Families of such windows are halved; a family is
+/// dropped when the energy around all its windows over the limit of its smallest exceeds what was found by no
+/// more than `slack`, a share. `dwell_of_zone` [zones].
 [[nodiscard]] WindowSearch search_windows(const TimePattern& pattern, std::span<const Spot> spots,
-                                          std::span<const int> dwell_of_zone, const Ratios& floor, double slack);
+                                          std::span<const int> dwell_of_zone, const Ratios& floor,
+                                          double slack);
 
 }  // namespace glint

@@ -45,9 +45,9 @@ struct PlaneEntry {
 };
 enum class UpAxis { z, y };
 struct MeshEntry {
-    std::string file;         ///< OBJ
-    UpAxis up = UpAxis::z;    ///< axis of the file that points up
-    double scale = 1;  ///< metres per unit of the file
+    std::string file;       ///< OBJ
+    UpAxis up = UpAxis::z;  ///< axis of the file that points up
+    double scale = 1;       ///< metres per unit of the file
     double x = 0, y = 0, z = 0;
     double turn = 0;
 };
