@@ -1,10 +1,12 @@
 // Angular kernels: normalisation, intensity, sampling.
 #include <glint/core/constants.h>
+#include <glint/core/quadrature.h>
 #include <glint/core/samples.h>
 #include <glint/optics/kernel.h>
 
 #include <algorithm>
 #include <cmath>
+#include <limits>
 
 namespace glint {
 namespace {
@@ -26,24 +28,6 @@ double window(const Kernel& kernel, double p, double q) {
     return soft_step(std::abs(p) - kernel.a, kernel.edge) * soft_step(std::abs(q) - kernel.b, kernel.edge);
 }
 
-// Gauss-Legendre with 5 points on [-1, 1]: the middle one and two on each side.
-constexpr double gauss_node[] = {0, 0.5384693101056831, 0.9061798459386640};
-constexpr double gauss_weight[] = {0.5688888888888889, 0.4786286704993665, 0.2369268850561891};
-
-// Integral of f over [low, high] by Gauss-Legendre, 5 points on each of n pieces.
-template <class F>
-double integral(double low, double high, int pieces, const F& f) {
-    const double half = (high - low) / (2 * pieces);
-    double sum = 0;
-    for (int i = 0; i < pieces; ++i) {
-        const double middle = low + (2 * i + 1) * half;
-        sum += gauss_weight[0] * f(middle);
-        for (int k = 1; k < 3; ++k)
-            sum += gauss_weight[k] * (f(middle - half * gauss_node[k]) + f(middle + half * gauss_node[k]));
-    }
-    return sum * half;
-}
-
 // Pieces that meet at the edge, so that a hard edge is integrated exactly.
 template <class F>
 double integral_with_edge(double edge_at, double end, const F& f) {
@@ -62,21 +46,6 @@ double field_power(const Kernel& kernel, double end_p, double end_q) {
                });
            });
 }
-
-// Nodes of a Gauss-Legendre rule over half a circle: 5 points on each of 16 pieces.
-struct HalfCircle {
-    static constexpr int nodes = 80;
-    double cosine[nodes], sine[nodes], weight[nodes];
-    HalfCircle() {
-        constexpr int pieces = nodes / 5;
-        constexpr double half = pi / (2 * pieces);
-        for (int i = 0; i < nodes; ++i) {
-            const int k = i % 5 - 2;  // -2 ... 2 from the middle of the piece
-            const double phi = (2 * (i / 5) + 1) * half + (k < 0 ? -1 : 1) * half * gauss_node[std::abs(k)];
-            cosine[i] = std::cos(phi), sine[i] = std::sin(phi), weight[i] = half * gauss_weight[std::abs(k)];
-        }
-    }
-};
 
 // Integral of t exp(-2 ((t - crest) / wall)^2) from 0 to r.
 double ring_moment(double crest, double wall, double r) {
@@ -199,6 +168,40 @@ double power_within(const Kernel& kernel, double r) {
     return -std::expm1(-2 * r * r / (kernel.a * kernel.b));
 }
 
+double finest_width(const Kernel& kernel) {
+    switch (kernel.shape) {
+        case KernelShape::gaussian:
+            return std::min(kernel.a, kernel.b);
+        case KernelShape::ring:
+            return kernel.b;
+        case KernelShape::rectangle:
+        case KernelShape::round:
+            return kernel.edge;
+    }
+    return 0;
+}
+
+double finest_width_near(const Kernel& kernel, double p, double q, double r) {
+    // A Gaussian wall or edge has done all but 1e-6 of its work so many half widths away.
+    constexpr double far = 2.5;
+    const double smooth = std::numeric_limits<double>::infinity(), finest = finest_width(kernel);
+    const auto near = [&](double place, double edge) { return std::abs(place - edge) < r + far * finest; };
+    switch (kernel.shape) {
+        case KernelShape::gaussian:
+            return finest;
+        case KernelShape::ring:
+        case KernelShape::round: {
+            const double beside = std::hypot(p, q);
+            // An edge that reaches the axis makes a tip there.
+            if (beside < r && kernel.a < far * finest) return std::min(finest, r);
+            return near(beside, kernel.a) ? finest : smooth;
+        }
+        case KernelShape::rectangle:
+            return near(std::abs(p), kernel.a) || near(std::abs(q), kernel.b) ? finest : smooth;
+    }
+    return 0;
+}
+
 double captured_share(const Kernel& kernel, double distance, double offset, double radius) {
     const double within = offset < radius ? power_within(kernel, (radius - offset) / distance) : 0;
     if (offset <= 0) return within;
@@ -206,21 +209,18 @@ double captured_share(const Kernel& kernel, double distance, double offset, doub
     // integrand is smooth at both ends.
     const double low = std::abs(radius - offset), high = radius + offset;
     const double middle = (low + high) / 2, half = (high - low) / 2;
-    static const HalfCircle circle;
-    double sum = 0;
-    for (int i = 0; i < circle.nodes; ++i) {
-        const double rho = middle - half * circle.cosine[i], t = rho / distance;
-        if (t > kernel.reach) break;  // rho rises with i
-        if (rho <= 0) continue;
+    const double partly = integral(0, pi, 16, [&](double phi) {
+        const double rho = middle - half * std::cos(phi), t = rho / distance;
+        if (t > kernel.reach || rho <= 0) return 0.0;
         const double cosine = (offset * offset + rho * rho - radius * radius) / (2 * offset * rho);
         const double arc =
             std::acos(std::clamp(cosine, -1.0, 1.0)) / pi;  // share of the circle inside the lens
         const double x = kernel.shape == KernelShape::ring ? (t - kernel.a) / kernel.b
                                                            : t / std::sqrt(kernel.a * kernel.b);
         const double density = 2 * pi * t / distance * kernel.scale * std::exp(-2 * x * x);  // power per rho
-        sum += density * arc * half * circle.sine[i] * circle.weight[i];
-    }
-    return std::min(1.0, within + sum);
+        return density * arc * half * std::sin(phi);
+    });
+    return std::min(1.0, within + partly);
 }
 
 }  // namespace glint

@@ -1,6 +1,7 @@
 // The apparent source: the image of every beam on the retina of an eye at a place, focused at a distance.
 #include <glint/core/constants.h>
 #include <glint/safety/apparent_source.h>
+#include <glint/safety/factors.h>
 
 #include <algorithm>
 #include <array>
@@ -167,6 +168,33 @@ std::vector<Spot> retinal_image(const EnteringLight& light, double vergence) {
     spots.reserve(light.beams.size());
     for (const EnteringBeam& beam : light.beams) spots.push_back(spot_of(beam, light, vergence));
     return spots;
+}
+
+double whole_subtense(std::span<const Spot> image) {
+    Vec2 low = Vec2::Constant(1e9), high = -low;
+    for (const Spot& spot : image)
+        low = low.cwiseMin(spot.middle - spot.half), high = high.cwiseMax(spot.middle + spot.half);
+    return (high - low).cwiseMax(alpha_min).mean();
+}
+
+std::vector<double> crossings(const EnteringLight& light, std::span<const double> vergences,
+                              std::span<const double> subtenses) {
+    constexpr double close = 1e-4;  // 1/m: 1 urad of blur
+    std::vector<double> found;
+    for (std::size_t i = 1; i < vergences.size(); ++i)
+        for (const double subtense : subtenses) {
+            const auto larger = [&](double v) { return whole_subtense(retinal_image(light, v)) > subtense; };
+            double from = vergences[i - 1], to = vergences[i];
+            const bool larger_first = larger(from);
+            if (larger_first == larger(to)) continue;
+            while (to - from > close) {
+                const double middle = (from + to) / 2;
+                (larger(middle) == larger_first ? from : to) = middle;
+            }
+            found.insert(found.end(),
+                         {std::max(vergences[i - 1], from - close), std::min(vergences[i], to + close)});
+        }
+    return found;
 }
 
 std::vector<double> vergences(const EnteringLight& light) {

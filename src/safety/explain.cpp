@@ -244,10 +244,8 @@ double ratio_at(const LightSource& light, const GoverningCase& governing,
     if (entering.beams.empty()) return 0;
     double most = 0;
     if (!has_part(governing)) {
-        constexpr PartSize everything{
-            .subtense = alpha_min, .largest_subtense = 0.2, .side = 0, .whole_subtense = 0.2};
         for (const TimedRatio& each :
-             worst_over_time(governing.pattern, entering_energies(entering, dwell_of_zone), everything))
+             worst_over_time(governing.pattern, entering_energies(entering, dwell_of_zone), all_as_point))
             most = std::max(most, each.ratio);
         return most;
     }

@@ -1,4 +1,6 @@
 // The eye search: places and foci in order of promise, and a closer look around the worst.
+#include "eye_places.h"
+
 #include <glint/core/constants.h>
 #include <glint/safety/eye_search.h>
 #include <glint/safety/image_bound.h>
@@ -22,7 +24,7 @@ constexpr std::size_t many_beams = 1024;
 struct Place {
     EyePlace eye;
     std::size_t beams = 0;   // that enter
-    TimedRatios as_point{};  // all that enters taken as a point: no part of any image gives more
+    TimedRatios as_point{};  // all that enters taken as a point, where above what is known: no part gives more
 };
 
 // A place and a focus, with a bound on what its image can give.
@@ -32,10 +34,6 @@ struct Item {
     Ratios bound;
     double promise;  // largest bound over what is known
 };
-
-// Smallest subtense for the limit, any subtense for N.
-constexpr PartSize anything_as_point{
-    .subtense = alpha_min, .largest_subtense = 0.2, .side = 0, .whole_subtense = 0.2};
 
 double promise_of(const Ratios& bound, const Ratios& known) {
     double promise = 0;
@@ -68,7 +66,7 @@ public:
         radius_ = at.aperture / 2;
         nearest_ = std::max(at.distance, question.closest_access);
         per_energy_ = ratios_of(
-            worst_over_time(pattern_, std::array{DwellEnergy{.dwell = 0, .energy = 1}}, anything_as_point));
+            worst_over_time(pattern_, std::array{DwellEnergy{.dwell = 0, .energy = 1}}, all_as_point));
         // A pulse alone makes no group, but it adds to one.
         per_energy_[group] = std::max(per_energy_[group], 1 / pattern_.group_limit);
     }
@@ -79,12 +77,12 @@ public:
         // A few places first: the more is known, the less has to be looked at.
         for (double distance = nearest_; distance < farthest && (quick || !question_.field.alike);
              distance *= growth_of_distance)
-            if (!look(few_places(distance)) || enough()) break;
+            if (!look(few_places(question_.field, distance, question_.also)) || enough()) break;
         if (worst_is_ours()) closer();
         if (quick) return;
         // Beyond some distance even all the light, taken as a point, is less than what was found nearer.
         for (double distance = nearest_; distance < farthest; distance *= growth_of_distance)
-            if (enough() || !look(raster(distance))) break;
+            if (enough() || !look(all_places(question_.field, distance, radius_))) break;
         if (worst_is_ours() && !enough()) closer();
     }
 
@@ -146,7 +144,9 @@ private:
         std::vector<DwellEnergy> dwells;
         for (std::size_t dwell = 0; dwell < energy.size(); ++dwell)
             if (energy[dwell] > 0) dwells.push_back({static_cast<int>(dwell), energy[dwell]});
-        return worst_over_time(pattern_, dwells, anything_as_point);
+        PartSize size = all_as_point;
+        size.family = retinal_;  // a bound is enough: the parts of the image are looked at
+        return worst_over_time(pattern_, dwells, size, found_.known);
     }
 
     [[nodiscard]] EnteringLight light_at(const EyePlace& eye) const {
@@ -163,49 +163,14 @@ private:
         return search_windows(pattern_, image, dwell_of_zone_, found_.known, slack);
     }
 
-    // Directions that any light goes to, as a square of (y, z) of the unit direction, and the raster's step
-    // there.
-    [[nodiscard]] std::vector<Vec3> raster(double distance) const {
-        Vec2 low(1, 1), high(-1, -1);
-        double spot = 1e9;
-        for (const Beam& beam : question_.field.beams) {
-            const double aside = question_.field.spread + 3 * beam.exit_radius;
-            const double reach = std::min(std::atan(beam.kernel.reach) + aside / distance, 1.5);
-            const Vec2 middle(beam.axis.y(), beam.axis.z());
-            low = low.cwiseMin(middle - Vec2::Constant(reach)),
-            high = high.cwiseMax(middle + Vec2::Constant(reach));
-            spot = std::min(
-                spot, beam.kernel.shape == KernelShape::gaussian ? radius_at(beam, distance) : distance);
-        }
-        low = low.cwiseMax(-0.97), high = high.cwiseMin(0.97);
-        const double step = std::min(std::max(radius_ / 2, 0.2 * spot) / distance, 0.06);
-        // The middle of the field lies on the raster.
-        const Vec2 middle = (low + high) / 2;
-        const int across = static_cast<int>((high.x() - middle.x()) / step);
-        const int up = static_cast<int>((high.y() - middle.y()) / step);
-        std::vector<Vec3> places;
-        for (int i = -across; i <= across; ++i)
-            for (int k = -up; k <= up; ++k) {
-                const Vec2 at = middle + step * Vec2(i, k);
-                const double x2 = 1 - at.squaredNorm();
-                if (x2 > 0.04) places.push_back(distance * Vec3(std::sqrt(x2), at.x(), at.y()));
-            }
-        return places;
-    }
-
-    // The middle, the corners and the edges of what the beams' axes cover.
-    [[nodiscard]] std::vector<Vec3> few_places(double distance) const {
-        Vec2 low(1, 1), high(-1, -1);
-        for (const Beam& beam : question_.field.beams) {
-            const Vec2 axis(beam.axis.y(), beam.axis.z());
-            low = low.cwiseMin(axis), high = high.cwiseMax(axis);
-        }
-        std::vector<Vec3> places{distance * question_.also.normalized()};
-        for (const double y : {low.x(), (low.x() + high.x()) / 2, high.x()})
-            for (const double z : {low.y(), (low.y() + high.y()) / 2, high.y()})
-                if (const double x2 = 1 - y * y - z * z; x2 > 0.04)
-                    places.push_back(distance * Vec3(std::sqrt(x2), y, z));
-        return places;
+    // Where C5 depends on the size of the whole image, it jumps at foci between those of vergences().
+    [[nodiscard]] std::vector<double> foci(const EnteringLight& light) const {
+        std::vector<double> list = vergences(light);
+        if (pattern_.plan.pulse_width <= pattern_.group_time || list.size() < 2) return list;
+        const std::array jumps{5e-3, alpha_max(pattern_.plan.pulse_width), 100e-3};
+        const std::vector<double> more = crossings(light, list, jumps);
+        list.insert(list.end(), more.begin(), more.end());
+        return list;
     }
 
     // For limits without an angle all that enters is the part that each criterion judges.
@@ -238,53 +203,82 @@ private:
     }
 
     void search_set(std::span<const Place> places) {
-        if (enough()) return;
-        const EnteringLight light = light_at(places.front().eye);
-        std::vector<double> foci = vergences(light);
-        // The sharpest image first: it is often the worst, and makes short work of the others.
-        std::ranges::sort(foci, {}, [&](double vergence) {
-            return spot_of(light.beams.front(), light, vergence).half.sum();
-        });
-        bool more = false;
-        for (std::size_t first = 0, count = 1; first < foci.size();
-             first += count, count = foci.size() - first) {
-            std::vector<WindowSearch> results(count);
-            parallel_for(count, "looking for the worst part of the image", progress_, [&](std::size_t i) {
-                results[i] = search(worst_image(places, foci[first + i]), slack_);
-            });
-            for (std::size_t i = 0; i < count; ++i) {
-                ++found_.work.images;
-                found_.work.families += results[i].nodes;
-                for (const ImagePart& part : results[i].parts) more = more || part.worst.ratio > 0;
-                if (places.size() == 1) keep(results[i].parts, places.front().eye, foci[first + i]);
-            }
-        }
-        if (!more || places.size() == 1) return;
+        if (places.size() == 1) return search_place(places.front());
+        if (enough() || !may_be_worse(places)) return;
         search_set(places.first(places.size() / 2));
         search_set(places.subspan(places.size() / 2));
     }
 
-    // The image of the first place, each spot as bright as at any of the places, all of it as small.
-    [[nodiscard]] std::vector<Spot> worst_image(std::span<const Place> places, double vergence) const {
-        std::vector<Spot> worst = retinal_image(light_at(places.front().eye), vergence);
-        const auto size_of = [](std::span<const Spot> image) {
-            Vec2 low = image.front().middle - image.front().half,
-                 high = image.front().middle + image.front().half;
-            for (const Spot& spot : image)
-                low = low.cwiseMin(spot.middle - spot.half), high = high.cwiseMax(spot.middle + spot.half);
-            return Vec2(high - low);
-        };
-        const Vec2 size = size_of(worst);
-        Vec2 least = size, spot_half = worst.front().half;
-        for (const Place& place : places.subspan(1)) {
-            const std::vector<Spot> image = retinal_image(light_at(place.eye), vergence);
-            least = least.cwiseMin(size_of(image)), spot_half = spot_half.cwiseMin(image.front().half);
-            for (std::size_t i = 0; i < image.size(); ++i)
-                worst[i].energy = std::max(worst[i].energy, image[i].energy);
+    // Every focus at one place.
+    void search_place(const Place& place) {
+        const EnteringLight light = light_at(place.eye);
+        std::vector<double> list = foci(light);
+        // The sharpest image first: it is often the worst, and makes short work of the others.
+        std::ranges::sort(list, {}, [&](double vergence) {
+            return spot_of(light.beams.front(), light, vergence).half.sum();
+        });
+        for (std::size_t first = 0, count = 1; first < list.size() && !enough();
+             first += count, count = list.size() - first) {
+            std::vector<WindowSearch> results(count);
+            parallel_for(count, "looking for the worst part of the image", progress_, [&](std::size_t i) {
+                results[i] = search(retinal_image(light, list[first + i]), slack_);
+            });
+            for (std::size_t i = 0; i < count; ++i) {
+                ++found_.work.images;
+                found_.work.families += results[i].nodes;
+                keep(results[i].parts, place.eye, list[first + i]);
+            }
         }
-        const Vec2 scale = least.cwiseQuotient(size);
-        for (Spot& spot : worst) spot.middle = spot.middle.cwiseProduct(scale), spot.half = spot_half;
-        return worst;
+    }
+
+    // Whether an image as bright as at any of the places, and as small and sharp as at any of them for any
+    // focus, gives more than is known.
+    bool may_be_worse(std::span<const Place> places) {
+        struct Extreme {
+            std::vector<double> energy;
+            Vec2 size = Vec2::Constant(1e9), half = Vec2::Constant(1e9);
+            Interval whole{1e9, 0};
+        };
+        std::vector<Extreme> extremes(places.size());
+        parallel_for(places.size(), "looking for the worst place of the eye", progress_, [&](std::size_t i) {
+            Extreme& extreme = extremes[i];
+            const EnteringLight light = light_at(places[i].eye);
+            for (const EnteringBeam& beam : light.beams) extreme.energy.push_back(beam.energy);
+            for (const double vergence : foci(light)) {
+                const std::vector<Spot> image = retinal_image(light, vergence);
+                const double whole = whole_subtense(image);
+                extreme.size = extreme.size.cwiseMin(extent_of_middles(image));
+                extreme.half = extreme.half.cwiseMin(image.front().half);
+                extreme.whole = {std::min(extreme.whole.from, whole), std::max(extreme.whole.to, whole)};
+            }
+        });
+        std::vector<Spot> image = retinal_image(light_at(places.front().eye), 0);
+        const Vec2 size = extent_of_middles(image);
+        Extreme least = std::move(extremes.front());
+        for (const Extreme& extreme : std::span(extremes).subspan(1)) {
+            least.size = least.size.cwiseMin(extreme.size), least.half = least.half.cwiseMin(extreme.half);
+            least.whole = {std::min(least.whole.from, extreme.whole.from),
+                           std::max(least.whole.to, extreme.whole.to)};
+            for (std::size_t i = 0; i < image.size(); ++i)
+                least.energy[i] = std::max(least.energy[i], extreme.energy[i]);
+        }
+        for (std::size_t i = 0; i < image.size(); ++i) {
+            Spot& spot = image[i];
+            for (int a = 0; a < 2; ++a)
+                if (size[a] > 0) spot.middle[a] *= least.size[a] / size[a];
+            spot.half = least.half, spot.energy = least.energy[i];
+        }
+        const WindowSearch found =
+            search_windows(pattern_, image, dwell_of_zone_, found_.known, slack_, least.whole);
+        ++found_.work.images;
+        found_.work.families += found.nodes;
+        return std::ranges::any_of(found.parts, [](const ImagePart& part) { return part.worst.ratio > 0; });
+    }
+
+    [[nodiscard]] static Vec2 extent_of_middles(std::span<const Spot> image) {
+        Vec2 low = image.front().middle, high = low;
+        for (const Spot& spot : image) low = low.cwiseMin(spot.middle), high = high.cwiseMax(spot.middle);
+        return high - low;
     }
 
     // Places and foci that may be worse than what is known, most promising first.
@@ -305,7 +299,7 @@ private:
         ratios.per_energy[train] =
             std::max(per_energy_[single], per_energy_[group]) / place.as_point[train].C5;
         std::vector<Item> items;
-        for (const double vergence : vergences(light)) {
+        for (const double vergence : foci(light)) {
             Item item{.place = index,
                       .vergence = vergence,
                       .bound = image_bound(retinal_image(light, vergence), ratios, found_.known),

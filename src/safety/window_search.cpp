@@ -1,4 +1,6 @@
 // The window search: branch and bound over rectangular windows of a retinal image.
+#include "window_sides.h"
+
 #include <glint/safety/image_bound.h>
 #include <glint/safety/window_search.h>
 
@@ -8,119 +10,6 @@
 
 namespace glint {
 namespace {
-
-constexpr double widest_side = 100e-3;
-constexpr double short_side = 5e-3;  // alpha_max up to 625 us
-constexpr double snapping = 1e-3;    // of the side of a spot: edges closer than this are one
-constexpr std::size_t many_dwells = 64;
-constexpr std::size_t few_dwells = 16;
-
-// Spots as edges, sorted by dwell so that energies of a dwell are summed in one run.
-struct Box {
-    double low_u, high_u, low_v, high_v;
-    double energy;
-    int dwell;
-};
-
-std::vector<Box> boxes_of(std::span<const Spot> spots, std::span<const int> dwell_of_zone) {
-    std::vector<Box> boxes;
-    boxes.reserve(spots.size());
-    for (const Spot& spot : spots)
-        boxes.push_back({spot.middle.x() - spot.half.x(), spot.middle.x() + spot.half.x(),
-                         spot.middle.y() - spot.half.y(), spot.middle.y() + spot.half.y(), spot.energy,
-                         dwell_of_zone[spot.zone]});
-    std::ranges::stable_sort(boxes, {}, &Box::dwell);
-    return boxes;
-}
-
-// Edges that all but coincide become one: arithmetic on one row of emitters differs by less, and so do beams
-// of one kind that a lens treats a little differently. Low edges go down and high edges up.
-template <class Less>
-void snap(std::vector<Box>& boxes, double Box::*edge, double tolerance, const Less& less) {
-    std::vector<Box*> order;
-    for (Box& box : boxes) order.push_back(&box);
-    std::ranges::sort(order, [&](const Box* a, const Box* b) { return less(a->*edge, b->*edge); });
-    double kept = order.front()->*edge;
-    for (Box* box : order) {
-        if (std::abs(box->*edge - kept) > tolerance) kept = box->*edge;
-        box->*edge = kept;
-    }
-}
-
-void snap_edges(std::vector<Box>& boxes) {
-    double u = 1, v = 1;
-    for (const Box& box : boxes)
-        u = std::min(u, box.high_u - box.low_u), v = std::min(v, box.high_v - box.low_v);
-    const auto tolerance = [](double side) {
-        return std::max(1e-9, snapping * std::max(side, 0.2 * alpha_min));
-    };
-    snap(boxes, &Box::low_u, tolerance(u), std::less{});
-    snap(boxes, &Box::high_u, tolerance(u), std::greater{});
-    snap(boxes, &Box::low_v, tolerance(v), std::less{});
-    snap(boxes, &Box::high_v, tolerance(v), std::greater{});
-}
-
-std::vector<double> distinct(std::vector<double> values) {
-    std::ranges::sort(values);
-    values.erase(std::unique(values.begin(), values.end()), values.end());
-    return values;
-}
-
-// One side of a window.
-struct Interval1 {
-    double begin, end;
-    [[nodiscard]] double width() const { return end - begin; }
-};
-
-// Sides that a best window can have: from the low edge of a spot to the high edge of one, or of a set length
-// with one end on such an edge.
-std::vector<Interval1> candidate_sides(const std::vector<Box>& boxes, double Box::*low, double Box::*high,
-                                       std::span<const double> lengths) {
-    std::vector<double> lows, highs;
-    for (const Box& box : boxes) lows.push_back(box.*low), highs.push_back(box.*high);
-    lows = distinct(std::move(lows)), highs = distinct(std::move(highs));
-    const double first = lows.front(), last = highs.back();
-    std::vector<Interval1> sides;
-    for (const double begin : lows) {
-        for (const double end : highs)
-            if (end - begin > alpha_min && end - begin <= widest_side) sides.push_back({begin, end});
-        for (const double length : lengths)
-            if (begin + length < last || length == alpha_min) sides.push_back({begin, begin + length});
-    }
-    for (const double end : highs)
-        for (const double length : lengths)
-            if (end - length > first) sides.push_back({end - length, end});
-    return sides;
-}
-
-// alpha_max of every stretch of time that the dwells of an image can make, those within half a percent (with
-// many dwells one percent) as the smallest.
-std::vector<double> side_limits(const TimePattern& pattern, const std::vector<Box>& boxes) {
-    double apart = 1.005;
-    std::vector<double> limits{alpha_max(pattern.plan.pulse_width), short_side, widest_side};
-    std::vector<double> starts;
-    for (const Box& box : boxes) starts.push_back(pattern.plan.start[box.dwell]);
-    starts = distinct(std::move(starts));
-    const double period = pattern.plan.frame_period;
-    if (starts.size() > few_dwells || period < 5e-3) {
-        if (starts.size() > many_dwells) apart = 1.01;
-        for (double limit = short_side; limit < widest_side; limit *= apart) limits.push_back(limit);
-    } else {
-        for (double frames = 0; frames * period < 0.25; ++frames)
-            for (const double first : starts)
-                for (const double last : starts) {
-                    const double duration =
-                        frames * period + last - first + (last < first ? period : 0) + pattern.dwell_length;
-                    if (duration < 0.25) limits.push_back(alpha_max(duration));
-                }
-    }
-    limits = distinct(std::move(limits));
-    std::vector<double> kept{alpha_min};
-    for (const double limit : limits)
-        if (limit > apart * kept.back()) kept.push_back(limit);
-    if (kept.back() < widest_side) kept.push_back(widest_side);
-    return kept;
-}
 
 // Candidate sides in a binary tree: first apart by length, then by place. A node knows what holds for all
 // below it, and is divided when it is first asked for its children.
@@ -133,7 +22,7 @@ public:
         int left = -1;             // its children are left and left + 1; -1: not divided yet
     };
 
-    explicit SideTree(std::vector<Interval1> sides) : sides_(std::move(sides)) { add(0, sides_.size()); }
+    explicit SideTree(std::vector<WindowSide> sides) : sides_(std::move(sides)) { add(0, sides_.size()); }
 
     [[nodiscard]] const Node& operator[](int node) const { return nodes_[node]; }
 
@@ -146,12 +35,12 @@ public:
             const auto middle = begin + static_cast<std::ptrdiff_t>(half),
                        end = begin + static_cast<std::ptrdiff_t>(parent.count);
             if (parent.longest > 1.25 * parent.shortest)
-                std::nth_element(begin, middle, end, [](const Interval1& a, const Interval1& b) {
+                std::nth_element(begin, middle, end, [](const WindowSide& a, const WindowSide& b) {
                     return a.width() < b.width();
                 });
             else
                 std::nth_element(begin, middle, end,
-                                 [](const Interval1& a, const Interval1& b) { return a.begin < b.begin; });
+                                 [](const WindowSide& a, const WindowSide& b) { return a.begin < b.begin; });
             nodes_[node].left = static_cast<int>(nodes_.size());
             add(parent.first, half);
             add(parent.first + half, parent.count - half);
@@ -163,7 +52,7 @@ private:
     void add(std::size_t first, std::size_t count) {
         Node node{1e9, -1e9, 1e9, 0, first, count};
         for (std::size_t i = first; i < first + count; ++i) {
-            const Interval1& side = sides_[i];
+            const WindowSide& side = sides_[i];
             node.low = std::min(node.low, side.begin), node.high = std::max(node.high, side.end);
             node.shortest = std::min(node.shortest, side.width()),
             node.longest = std::max(node.longest, side.width());
@@ -171,7 +60,7 @@ private:
         nodes_.push_back(node);
     }
 
-    std::vector<Interval1> sides_;
+    std::vector<WindowSide> sides_;
     std::vector<Node> nodes_;  // the root comes first
 };
 
@@ -191,7 +80,7 @@ double overlap(double low, double high, double from, double to, double longest) 
 
 // Bounds on the size of a family of windows.
 PartSize size_of_family(double shortest_u, double longest_u, double shortest_v, double longest_v,
-                        double whole) {
+                        const Interval& whole) {
     return {.subtense = (clamped(shortest_u) + clamped(shortest_v)) / 2,
             .largest_subtense = (std::max(longest_u, alpha_min) + std::max(longest_v, alpha_min)) / 2,
             .side = std::max(shortest_u, shortest_v),
@@ -212,8 +101,9 @@ struct LessPromising {
 
 class Search {
 public:
-    Search(const TimePattern& pattern, const std::vector<Box>& boxes, const Ratios& floor, double slack)
-        : Search(pattern, boxes, side_limits(pattern, boxes), floor, slack) {}
+    Search(const TimePattern& pattern, const std::vector<SpotBox>& boxes, const Interval& whole,
+           const Ratios& floor, double slack)
+        : Search(pattern, boxes, candidate_sides(pattern, boxes), whole, floor, slack) {}
 
     WindowSearch run() {
         Family root{
@@ -241,19 +131,15 @@ public:
     }
 
 private:
-    Search(const TimePattern& pattern, const std::vector<Box>& boxes, const std::vector<double>& lengths,
-           const Ratios& floor, double slack)
+    Search(const TimePattern& pattern, const std::vector<SpotBox>& boxes, WindowSides sides,
+           const Interval& whole, const Ratios& floor, double slack)
         : pattern_(pattern),
           boxes_(boxes),
-          tree_u_(candidate_sides(boxes, &Box::low_u, &Box::high_u, lengths)),
-          tree_v_(candidate_sides(boxes, &Box::low_v, &Box::high_v, lengths)),
+          tree_u_(std::move(sides.u)),
+          tree_v_(std::move(sides.v)),
           slack_(slack),
-          known_(floor) {
-        const auto extent = [](const SideTree& tree) {
-            return std::max(tree[0].high - tree[0].low, alpha_min);
-        };
-        whole_ = (extent(tree_u_) + extent(tree_v_)) / 2;
-    }
+          whole_(whole),
+          known_(floor) {}
 
     [[nodiscard]] double promise(const Ratios& bound) const {
         double most = 0;
@@ -312,7 +198,7 @@ private:
         const double least = growth_of_limit((clamped(u.shortest) + clamped(v.shortest)) / 2);
         double spot_u = -1, spot_v = -1, factor = 1;
         for (const int i : members) {
-            const Box& box = boxes_[i];
+            const SpotBox& box = boxes_[i];
             const double share_u = overlap(box.low_u, box.high_u, u.low, u.high, u.longest);
             if (share_u <= 0) continue;
             const double share = share_u * overlap(box.low_v, box.high_v, v.low, v.high, v.longest);
@@ -361,7 +247,7 @@ private:
                         .bound = {}};
             const SideTree::Node &hu = tree_u_[half.side_u], &hv = tree_v_[half.side_v];
             for (const int i : family.members) {
-                const Box& box = boxes_[i];
+                const SpotBox& box = boxes_[i];
                 if (box.high_u > hu.low && box.low_u < hu.high && box.high_v > hv.low && box.low_v < hv.high)
                     half.members.push_back(i);
             }
@@ -371,10 +257,10 @@ private:
     }
 
     const TimePattern& pattern_;
-    const std::vector<Box>& boxes_;
+    const std::vector<SpotBox>& boxes_;
     SideTree tree_u_, tree_v_;
     double slack_;
-    double whole_ = 0;
+    Interval whole_;
     Ratios known_;
     WindowSearch found_;
     std::vector<DwellEnergy> energies_;
@@ -382,16 +268,17 @@ private:
 };
 
 // Whether all of an image, over the limit of the smallest part, exceeds what is known.
-bool matters(const TimePattern& pattern, const std::vector<Box>& boxes, const Ratios& floor, double slack) {
+bool matters(const TimePattern& pattern, const std::vector<SpotBox>& boxes, const Interval& whole,
+             const Ratios& floor, double slack) {
     double low_u = 1e9, high_u = -1e9, low_v = 1e9, high_v = -1e9;
-    for (const Box& box : boxes) {
+    for (const SpotBox& box : boxes) {
         low_u = std::min(low_u, box.low_u), high_u = std::max(high_u, box.high_u);
         low_v = std::min(low_v, box.low_v), high_v = std::max(high_v, box.high_v);
     }
     const auto longest = [](double extent) { return std::clamp(extent, alpha_min, widest_side); };
     const double longest_u = longest(high_u - low_u), longest_v = longest(high_v - low_v);
     std::vector<DwellEnergy> energies;
-    for (const Box& box : boxes) {
+    for (const SpotBox& box : boxes) {
         const double share = std::min(1.0, longest_u / (box.high_u - box.low_u)) *
                              std::min(1.0, longest_v / (box.high_v - box.low_v));
         const double best_u = std::clamp(box.high_u - box.low_u, alpha_min, longest_u),
@@ -400,7 +287,6 @@ bool matters(const TimePattern& pattern, const std::vector<Box>& boxes, const Ra
         if (energies.empty() || energies.back().dwell != box.dwell) energies.push_back({box.dwell, 0});
         energies.back().energy += share * factor * box.energy;
     }
-    const double whole = (std::max(high_u - low_u, alpha_min) + std::max(high_v - low_v, alpha_min)) / 2;
     const TimedRatios worst = worst_over_time(
         pattern, energies, size_of_family(alpha_min, longest_u, alpha_min, longest_v, whole), floor);
     for (std::size_t c = 0; c < 4; ++c)
@@ -411,12 +297,17 @@ bool matters(const TimePattern& pattern, const std::vector<Box>& boxes, const Ra
 }  // namespace
 
 WindowSearch search_windows(const TimePattern& pattern, std::span<const Spot> spots,
-                            std::span<const int> dwell_of_zone, const Ratios& floor, double slack) {
+                            std::span<const int> dwell_of_zone, const Ratios& floor, double slack,
+                            std::optional<Interval> whole) {
     if (spots.empty()) return {};
-    std::vector<Box> boxes = boxes_of(spots, dwell_of_zone);
-    if (!matters(pattern, boxes, floor, slack)) return {};
+    if (!whole) {
+        const double subtense = whole_subtense(spots);
+        whole = Interval{subtense, subtense};
+    }
+    std::vector<SpotBox> boxes = boxes_of(spots, dwell_of_zone);
+    if (!matters(pattern, boxes, *whole, floor, slack)) return {};
     snap_edges(boxes);
-    WindowSearch found = Search(pattern, boxes, floor, slack).run();
+    WindowSearch found = Search(pattern, boxes, *whole, floor, slack).run();
     for (ImagePart& part : found.parts) {
         if (part.worst.ratio <= 0) continue;
         for (const Spot& spot : spots) {

@@ -13,6 +13,7 @@
 #include <fmt/format.h>
 #include <algorithm>
 #include <cmath>
+#include <cstdio>
 #include <cstdlib>
 #include <string>
 #include <vector>
@@ -22,13 +23,17 @@ using namespace glint::test;
 
 namespace {
 
-// All 2,200 take minutes; the usual run holds the first of them for soundness only.
-// GLINT_BRUTE_FORCE_DESIGNS=2200 runs them all and asks for tightness as well. That run fails: 16 designs are
-// not sound and 24 not tight, for the causes in docs/safety.md, known faults.
-int designs_to_try() {
-    const char* asked = std::getenv("GLINT_BRUTE_FORCE_DESIGNS");
-    return asked != nullptr ? std::atoi(asked) : 12;
+// The usual run holds a few of them; GLINT_BRUTE_FORCE_DESIGNS="1-2200" asks for others, by their seeds.
+struct Seeds {
+    int first = 1, last = 12;
+};
+
+Seeds seeds_to_try() {
+    Seeds seeds;
+    if (const char* asked = std::getenv("GLINT_BRUTE_FORCE_DESIGNS")) std::sscanf(asked, "%d-%d", &seeds.first, &seeds.last);
+    return seeds;
 }
+
 constexpr int random_eyes = 4;  // beside the worst one of each design
 // Of the sums over the pupil, 1152 points for wide beams.
 constexpr double quadrature = 1e-3;
@@ -159,20 +164,20 @@ TEST_CASE("the evaluator's own share of a ring is the closed form on axis") {
 }
 
 TEST_CASE("the search against brute force on random small designs") {
-    const int designs = designs_to_try();
-    std::vector<Outcome> outcomes(static_cast<std::size_t>(designs));
+    const Seeds seeds = seeds_to_try();
+    std::vector<Outcome> outcomes(static_cast<std::size_t>(seeds.last - seeds.first + 1));
 #pragma omp parallel for schedule(dynamic, 1)
-    for (int i = 0; i < designs; ++i) outcomes[i] = compare(static_cast<std::uint64_t>(i + 1));
-    const auto built = std::ranges::count_if(outcomes, &Outcome::built);
-    CHECK(built * 10 >= designs * 9);
+    for (int i = seeds.first; i <= seeds.last; ++i)
+        outcomes[static_cast<std::size_t>(i - seeds.first)] = compare(static_cast<std::uint64_t>(i));
+    const auto built = static_cast<std::size_t>(std::ranges::count_if(outcomes, &Outcome::built));
+    CHECK(built * 10 >= outcomes.size() * 9);
     for (const Outcome& outcome : outcomes) {
         if (!outcome.built) continue;
         if (!(outcome.above <= 1 + quadrature))
             FAIL_CHECK("not sound by ", outcome.above, ", ", outcome.report);
-        if (designs > 12 && !(outcome.below <= tightness))
-            FAIL_CHECK("not tight by ", outcome.below, ", ", outcome.report);
+        if (!(outcome.below <= tightness)) FAIL_CHECK("not tight by ", outcome.below, ", ", outcome.report);
     }
-    MESSAGE(built, " designs built of ", designs, "; brute force over reported at most ",
+    MESSAGE(built, " designs built of ", outcomes.size(), "; brute force over reported at most ",
             std::ranges::max(outcomes, {}, &Outcome::above).above, "; reported over brute force at most ",
             std::ranges::max(outcomes, {}, &Outcome::below).below);
 }

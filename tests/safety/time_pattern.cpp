@@ -34,7 +34,7 @@ TimedRatios worst_of(const Trial& trial, const Ratios& known = {}) {
 
 // A square part with a given side of a larger source.
 PartSize part_of(double side, double source) {
-    return {.subtense = side, .largest_subtense = source, .side = side, .whole_subtense = source};
+    return {.subtense = side, .largest_subtense = source, .side = side, .whole_subtense = {source, source}};
 }
 
 // One zone, 1 nJ a shot, Class 1 over 100 s.
@@ -90,10 +90,9 @@ Trial random_trial(RandomStream& random) {
     const double least = random.below(4) == 0 ? alpha_min : decade_between(random, alpha_min, 90e-3);
     const double longer = std::min(least * uniform_between(random, 1, 2), 100e-3);
     const double subtense = (least + longer) / 2;
-    trial.size = {.subtense = subtense,
-                  .largest_subtense = subtense,
-                  .side = longer,
-                  .whole_subtense = subtense * decade_between(random, 1, 2)};
+    const double whole = subtense * decade_between(random, 1, 2);
+    trial.size = {
+        .subtense = subtense, .largest_subtense = subtense, .side = longer, .whole_subtense = {whole, whole}};
     return trial;
 }
 
@@ -104,7 +103,7 @@ std::string text_of(const Trial& trial) {
          << trial.rules.wavelength << " m, base " << trial.rules.time_base << " s, frame "
          << trial.plan.frame_period << " s, " << trial.plan.shots << " shots every " << trial.plan.shot_period
          << " s of " << trial.plan.pulse_width << " s, subtense " << trial.size.subtense << ", side "
-         << trial.size.side << ", whole " << trial.size.whole_subtense << " rad; dwells";
+         << trial.size.side << ", whole " << trial.size.whole_subtense.to << " rad; dwells";
     for (const DwellEnergy& dwell : trial.dwells)
         text << " at " << trial.plan.start[dwell.dwell] << " s " << dwell.energy << " J,";
     return text.str();
@@ -333,7 +332,7 @@ TEST_CASE("single pulse, group and train against all pulses one by one") {
               std::ceil(window / trial.plan.frame_period) * static_cast<double>(slow.in_a_frame()));
         TrainPulse pulse{trial.rules.wavelength, width, trial.size.subtense, found[train].pulses, base};
         double reduction = c5(pulse);
-        pulse.subtense = trial.size.whole_subtense;
+        pulse.subtense = trial.size.whole_subtense.to;
         reduction = std::min(reduction, c5(pulse));
         CHECK(near(found[train].ratio, std::max(found[single].ratio, found[group].ratio) / reduction, 1e-12));
     }

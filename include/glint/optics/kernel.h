@@ -59,6 +59,12 @@ struct KernelSample {
 /// Power of a gaussian or ring kernel within tangent radius r of its axis; 0 to 1.
 [[nodiscard]] double power_within(const Kernel& kernel, double r);
 
+/// 1/e2 half width of the finest structure of a kernel [tangent].
+[[nodiscard]] double finest_width(const Kernel& kernel);
+
+/// The same within tangent distance r of (p, q); infinite where the kernel is smooth or all but dark there.
+[[nodiscard]] double finest_width_near(const Kernel& kernel, double p, double q, double r);
+
 /// Share of a gaussian or ring kernel, leaving a point at distance `offset` from the axis of a lens and
 /// `distance` before it, that passes the lens of radius `radius`. The integral of the kernel over the offset
 /// disc: for a Gaussian 1 - Q1(2 offset/w, 2 radius/w), Q1 the Marcum function.

@@ -8,6 +8,7 @@
 #include <glint/optics/far_field.h>
 #include <glint/safety/collection.h>
 
+#include <span>
 #include <vector>
 
 namespace glint {
@@ -65,8 +66,16 @@ struct Spot {
 /// The retinal image: the spot of every beam.
 [[nodiscard]] std::vector<Spot> retinal_image(const EnteringLight& light, double vergence);
 
+/// Subtense of a whole image: the mean of its two extents, each at least alpha_min [rad].
+[[nodiscard]] double whole_subtense(std::span<const Spot> image);
+
 /// Vergences to look at: 0 to 10 in steps of half a dioptre, of five for beams so wide that they come from
 /// where they start whatever the focus; the beams' own foci; their crossing; their exit plane.
 [[nodiscard]] std::vector<double> vergences(const EnteringLight& light);
+
+/// Vergences on both sides of where the whole image becomes as large as one of `subtenses` [rad], between
+/// neighbours of a sorted list: where a limit jumps with the size of the image.
+[[nodiscard]] std::vector<double> crossings(const EnteringLight& light, std::span<const double> vergences,
+                                            std::span<const double> subtenses);
 
 }  // namespace glint

@@ -43,13 +43,18 @@ struct TimePattern {
 
 /// The part under test, or bounds on a family of parts.
 struct PartSize {
-    double subtense = 0;          ///< smallest clamped mean of the sides [rad]: sets C6 and T2 of the limit
-    double largest_subtense = 0;  ///< largest of the family: sets N, and C5 where that depends on it
-    double side = 0;              ///< longest side [rad]: must not exceed alpha_max(T)
-    double whole_subtense = 0;    ///< of the whole image, for C5
+    double subtense = 0;            ///< smallest clamped mean of the sides [rad]: sets C6 and T2 of the limit
+    double largest_subtense = 0;    ///< largest of the family: sets N, and C5 where that depends on it
+    double side = 0;                ///< longest side [rad]: must not exceed alpha_max(T)
+    Interval whole_subtense{0, 0};  ///< of the whole image, for C5; least and largest of several images
     bool family =
         false;  ///< a bound is enough: averages may come out up to 2 % high, with more than 64 dwells 5 %
 };
+
+/// Nothing of an image gives more than all of it as a part of this size: the smallest subtense for the limit,
+/// any for C5.
+inline constexpr PartSize all_as_point{
+    .subtense = alpha_min, .largest_subtense = 0.2, .side = 0, .whole_subtense = {alpha_min, 0.2}};
 
 /// One emission held against its limit.
 struct TimedRatio {
@@ -77,6 +82,9 @@ using Ratios = std::array<double, 4>;
 /// time order. Monotone: more energy, a smaller subtense or side, a larger largest_subtense never lower it.
 [[nodiscard]] TimedRatios worst_over_time(const TimePattern& pattern, std::span<const DwellEnergy> dwells,
                                           const PartSize& size, const Ratios& known = {});
+
+/// Whether it matters for C5 how many dwells a part touches.
+[[nodiscard]] bool counts_dwells(const TimePattern& pattern);
 
 /// Largest energy whose pulses start within a stretch of time, over all starts [J]. `stretch` below the frame
 /// period.

@@ -5,6 +5,7 @@
 #include <glint/safety/time_pattern.h>
 
 #include <array>
+#include <optional>
 #include <span>
 #include <vector>
 
@@ -34,9 +35,11 @@ struct WindowSearch {
 /// spot to the high edge of one, or have one end there and are 1.5 mrad, 5 mrad or 100 mrad long, or, over
 /// spots larger than 5 mrad, one of a series 1 % apart. Families of such windows are halved; a family is
 /// dropped when the energy around all its windows over the limit of its smallest exceeds what was found by no
-/// more than `slack`, a share. `dwell_of_zone` [zones].
+/// more than `slack`, a share. Where N depends on it, sides that just touch one more spot are tried as well.
+/// `dwell_of_zone` [zones]; `whole` [rad]: subtense of the whole image, for C5, where the spots are not all
+/// of one image.
 [[nodiscard]] WindowSearch search_windows(const TimePattern& pattern, std::span<const Spot> spots,
                                           std::span<const int> dwell_of_zone, const Ratios& floor,
-                                          double slack);
+                                          double slack, std::optional<Interval> whole = {});
 
 }  // namespace glint
