@@ -20,19 +20,26 @@ constexpr std::size_t single = static_cast<std::size_t>(PulseCriterion::single),
 constexpr std::size_t batch = 64;
 constexpr std::size_t many_beams = 1024;
 
-// A place of the eye and what enters there.
-struct Place {
-    EyePlace eye;
-    std::size_t beams = 0;   // that enter
-    TimedRatios as_point{};  // all that enters taken as a point, where above what is known: no part gives more
-};
-
-// A place and a focus, with a bound on what its image can give.
-struct Item {
-    std::size_t place;
+// A focus of the eye, with a bound on what its image can give.
+struct Focus {
     double vergence;
     Ratios bound;
     double promise;  // largest bound over what is known
+};
+
+// A place of the eye and what enters there.
+struct Place {
+    EyePlace eye;
+    std::size_t beams = 0;  // that enter
+    TimedRatios
+        as_point{};  // all that enters taken as a point, where above what is known: no part gives more
+    std::vector<Focus> foci;  // those that may be worse than what is known
+};
+
+// One of them.
+struct Item {
+    const Place* place;
+    const Focus* focus;
 };
 
 double promise_of(const Ratios& bound, const Ratios& known) {
@@ -98,23 +105,13 @@ public:
         parallel_for(where.size(), "looking for the worst place of the eye", progress_,
                      [&](std::size_t i) { places[i] = place_at(where[i]); });
         found_.work.places += where.size();
-        std::erase_if(places, [&](const Place& place) {
-            return promise_of(ratios_of(place.as_point), found_.known) <= 1 + (retinal_ ? slack_ : 0);
-        });
+        std::erase_if(places, [&](const Place& place) { return !promising(place); });
         if (places.empty()) return false;
         if (!retinal_)
             keep_whole(places);
         else {
-            std::vector<Place> alike;
-            if (question_.field.alike) {
-                const auto full = [&](const Place& place) {
-                    return place.beams == question_.field.beams.size();
-                };
-                std::ranges::copy_if(places, std::back_inserter(alike), full);
-                std::erase_if(places, full);
-            }
-            search_alike(std::move(alike));
-            search_items(places, items_of(places));
+            search_alike(places);
+            search_items(items_of(places));
         }
         return true;
     }
@@ -139,14 +136,31 @@ private:
     }
 
     [[nodiscard]] TimedRatios as_point(const EnteringLight& light) const {
-        std::vector<double> energy(static_cast<std::size_t>(pattern_.plan.dwells()), 0.0);
-        for (const EnteringBeam& beam : light.beams) energy[dwell_of_zone_[beam.zone]] += beam.energy;
         std::vector<DwellEnergy> dwells;
-        for (std::size_t dwell = 0; dwell < energy.size(); ++dwell)
-            if (energy[dwell] > 0) dwells.push_back({static_cast<int>(dwell), energy[dwell]});
+        dwells.reserve(light.beams.size());
+        for (const EnteringBeam& beam : light.beams)
+            dwells.push_back({dwell_of_zone_[beam.zone], beam.energy});
+        std::ranges::stable_sort(dwells, {}, &DwellEnergy::dwell);
+        std::size_t last = 0;
+        for (std::size_t i = 1; i < dwells.size(); ++i) {
+            if (dwells[i].dwell == dwells[last].dwell)
+                dwells[last].energy += dwells[i].energy;
+            else
+                dwells[++last] = dwells[i];
+        }
+        if (!dwells.empty()) dwells.resize(last + 1);
         PartSize size = all_as_point;
         size.family = retinal_;  // a bound is enough: the parts of the image are looked at
         return worst_over_time(pattern_, dwells, size, found_.known);
+    }
+
+    [[nodiscard]] bool promising(const Place& place) const {
+        return promise_of(ratios_of(place.as_point), found_.known) > 1 + (retinal_ ? slack_ : 0);
+    }
+
+    // Of a field whose beams all enter a pupil at that place and are alike: searched by search_alike().
+    [[nodiscard]] bool all_alike(const Place& place) const {
+        return question_.field.alike && place.beams == question_.field.beams.size();
     }
 
     [[nodiscard]] EnteringLight light_at(const EyePlace& eye) const {
@@ -156,7 +170,21 @@ private:
     [[nodiscard]] Place place_at(const Vec3& where) const {
         const EyePlace eye{.place = where, .pupil_radius = radius_};
         const EnteringLight light = light_at(eye);
-        return {eye, light.beams.size(), as_point(light)};
+        Place place{.eye = eye, .beams = light.beams.size(), .as_point = as_point(light), .foci = {}};
+        if (retinal_ && !all_alike(place) && promising(place)) place.foci = foci_at(place, light);
+        return place;
+    }
+
+    [[nodiscard]] std::vector<Focus> foci_at(const Place& place, const EnteringLight& light) const {
+        const LightRatios ratios{.as_point = ratios_of(place.as_point), .per_energy = per_energy_};
+        std::vector<Focus> list;
+        for (const double vergence : foci(light)) {
+            const Ratios bound =
+                image_bound(pattern_, retinal_image(light, vergence), dwell_of_zone_, ratios, found_.known);
+            const double promise = promise_of(bound, found_.known);
+            if (promise > 1 + slack_) list.push_back({vergence, bound, promise});
+        }
+        return list;
     }
 
     [[nodiscard]] WindowSearch search(std::span<const Spot> image, double slack) const {
@@ -192,13 +220,16 @@ private:
     // Beams that are alike make images that differ between places in size and brightness only. So the worst
     // of many places is at most that of the brightest of each beam in the smallest of their images: places
     // are looked at all together, and divided only when that is too much.
-    void search_alike(std::vector<Place> places) {
+    void search_alike(const std::vector<Place>& all) {
+        std::vector<Place> places;
+        std::ranges::copy_if(all, std::back_inserter(places),
+                             [&](const Place& place) { return all_alike(place); });
+        if (places.empty()) return;
         std::ranges::stable_sort(places, std::greater{}, [&](const Place& place) {
             return promise_of(ratios_of(place.as_point), found_.known);
         });
-        if (places.empty()) return;
         if (std::ranges::all_of(found_.known, [](double known) { return known <= 0; }))
-            search_set(std::span(places).first(1));
+            search_place(places.front());
         search_set(places);
     }
 
@@ -282,37 +313,17 @@ private:
     }
 
     // Places and foci that may be worse than what is known, most promising first.
-    [[nodiscard]] std::vector<Item> items_of(const std::vector<Place>& places) const {
-        std::vector<std::vector<Item>> of_place(places.size());
-        parallel_for(places.size(), "looking for the worst focus of the eye", progress_,
-                     [&](std::size_t p) { of_place[p] = items_at(p, places[p]); });
+    [[nodiscard]] static std::vector<Item> items_of(const std::vector<Place>& places) {
         std::vector<Item> items;
-        for (const std::vector<Item>& some : of_place) items.insert(items.end(), some.begin(), some.end());
-        std::ranges::stable_sort(items, std::greater{}, &Item::promise);
-        return items;
-    }
-
-    [[nodiscard]] std::vector<Item> items_at(std::size_t index, const Place& place) const {
-        LightRatios ratios{.as_point = ratios_of(place.as_point), .per_energy = per_energy_};
-        const EnteringLight light = light_at(place.eye);
-        // C5 falls with the number of pulses: that of all beams together is the least.
-        ratios.per_energy[train] =
-            std::max(per_energy_[single], per_energy_[group]) / place.as_point[train].C5;
-        std::vector<Item> items;
-        for (const double vergence : foci(light)) {
-            Item item{.place = index,
-                      .vergence = vergence,
-                      .bound = image_bound(retinal_image(light, vergence), ratios, found_.known),
-                      .promise = 0};
-            item.promise = promise_of(item.bound, found_.known);
-            if (item.promise > 1 + slack_) items.push_back(item);
-        }
+        for (const Place& place : places)
+            for (const Focus& focus : place.foci) items.push_back({&place, &focus});
+        std::ranges::stable_sort(items, std::greater{}, [](const Item& item) { return item.focus->promise; });
         return items;
     }
 
     // Batches in a fixed order, each judged against what the batches before it found: the same for any
     // threads.
-    void search_items(const std::vector<Place>& places, const std::vector<Item>& items) {
+    void search_items(const std::vector<Item>& items) {
         std::size_t size = 1;  // the most promising first, alone, to know something
         for (std::size_t first = 0; first < items.size() && !enough();
              first += size, size = std::min(batch, 2 * size)) {
@@ -320,14 +331,14 @@ private:
             std::vector<WindowSearch> results(count);
             parallel_for(count, "looking for the worst part of the image", progress_, [&](std::size_t i) {
                 const Item& item = items[first + i];
-                if (promise_of(item.bound, found_.known) <= 1 + slack_) return;
-                results[i] = search(retinal_image(light_at(places[item.place].eye), item.vergence), slack_);
+                if (promise_of(item.focus->bound, found_.known) <= 1 + slack_) return;
+                results[i] = search(retinal_image(light_at(item.place->eye), item.focus->vergence), slack_);
             });
             for (std::size_t i = 0; i < count; ++i) {
                 const Item& item = items[first + i];
                 (results[i].nodes > 0 ? found_.work.images : found_.work.skipped) += 1;
                 found_.work.families += results[i].nodes;
-                keep(results[i].parts, places[item.place].eye, item.vergence);
+                keep(results[i].parts, item.place->eye, item.focus->vergence);
             }
         }
     }

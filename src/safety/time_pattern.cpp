@@ -8,8 +8,6 @@
 namespace glint {
 namespace {
 
-constexpr double least_of_c5 = 0.2;
-
 TimedRatio worst_single(const TimePattern& pattern, std::span<const DwellEnergy> dwells,
                         const PartSize& size) {
     double strongest = 0;
@@ -85,7 +83,7 @@ TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> 
     if (pattern.curve.mechanism != Mechanism::retinal_thermal || plan.pulse_width > aversion_time_base ||
         single.ratio <= 0)
         return {};
-    if (std::max(single.ratio, group.ratio) <= least_of_c5 * known) return {};
+    if (std::max(single.ratio, group.ratio) <= smallest_c5 * known) return {};
     const bool grouped = group.pulses > 1;
     const double window = std::min(t2(size.largest_subtense), pattern.rules.time_base);
     const double frames = std::ceil(window / plan.frame_period * (1 - 1e-12));
@@ -98,6 +96,17 @@ TimedRatio worst_train(const TimePattern& pattern, std::span<const DwellEnergy> 
     worst.ael *= worst.C5;
     worst.ratio = worst.ae / worst.ael;
     return worst;
+}
+
+// Whether no stretch of a time reaches pulses of two dwells.
+bool dwells_apart(const FiringPlan& plan, double time) {
+    const double last_shot = (plan.shots - 1) * plan.shot_period;
+    for (int dwell = 0; dwell < plan.dwells(); ++dwell) {
+        const double next =
+            dwell + 1 < plan.dwells() ? plan.start[dwell + 1] : plan.start.front() + plan.frame_period;
+        if (next - plan.start[dwell] - last_shot <= time * (1 + 1e-9)) return false;
+    }
+    return true;
 }
 
 }  // namespace
@@ -114,19 +123,28 @@ TimePattern time_pattern(const FiringPlan& plan, const ExposureRules& rules) {
     const auto point = [&](double duration) { return point_limit(pattern, duration); };
     pattern.dwell_length = (plan.shots - 1) * plan.shot_period + plan.pulse_width;
     pattern.group_time = grouping_time(rules.wavelength);
+    pattern.dwells_apart = dwells_apart(plan, pattern.group_time);
     pattern.single_limit = point(plan.pulse_width);
     pattern.group_limit = point(pattern.group_time);
     return pattern;
 }
 
-bool counts_dwells(const TimePattern& pattern) {
+double least_c5(const TimePattern& pattern, double dwells, double largest_subtense) {
     const FiringPlan& plan = pattern.plan;
-    if (pattern.curve.mechanism != Mechanism::retinal_thermal || plan.pulse_width > aversion_time_base)
+    const bool grouped = plan.shots > 1 && plan.shot_period <= pattern.group_time;  // in every part
+    const double frames =
+        std::ceil(std::min(t2(largest_subtense), pattern.rules.time_base) / plan.frame_period);
+    PartSize size = all_as_point;
+    size.largest_subtense = largest_subtense;
+    return least_c5(pattern, size, groups_in_dwell(pattern, grouped) * frames * dwells);
+}
+
+bool counts_dwells(const TimePattern& pattern) {
+    if (pattern.curve.mechanism != Mechanism::retinal_thermal ||
+        pattern.plan.pulse_width > aversion_time_base)
         return false;
-    // Over the time base, the longest that N is counted for.
-    const double frames = std::ceil(pattern.rules.time_base / plan.frame_period);
-    const double fewest = groups_in_dwell(pattern, true), most = plan.shots * frames * plan.dwells();
-    return least_c5(pattern, all_as_point, std::max(1.0, most)) < least_c5(pattern, all_as_point, fewest);
+    return least_c5(pattern, pattern.plan.dwells(), all_as_point.largest_subtense) <
+           least_c5(pattern, 1, alpha_min);
 }
 
 double energy_within(const TimePattern& pattern, std::span<const DwellEnergy> dwells, double stretch) {

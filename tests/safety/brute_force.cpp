@@ -22,6 +22,13 @@ struct Piece {
     [[nodiscard]] double side() const { return std::max(smallest_side, to - from); }
 };
 
+void cover(Piece& piece, const std::vector<BruteSpot>& image, int axis) {
+    for (const BruteSpot& spot : image) {
+        const double inside = std::min(piece.to, spot.high[axis]) - std::max(piece.from, spot.low[axis]);
+        piece.covered.push_back(std::max(0.0, inside) / (spot.high[axis] - spot.low[axis]));
+    }
+}
+
 // Every piece that begins and ends at an edge of a spot or at one of a few places between, and those that
 // have one end there and one of the given lengths. What is shorter than alpha_min lies in one that is as
 // long.
@@ -71,11 +78,7 @@ std::vector<Piece> pieces(const std::vector<BruteSpot>& image, int axis, const s
     std::ranges::sort(found, {}, both_ends);
     const auto repeated = std::ranges::unique(found, {}, both_ends);
     found.erase(repeated.begin(), repeated.end());
-    for (Piece& piece : found)
-        for (const BruteSpot& spot : image) {
-            const double inside = std::min(piece.to, spot.high[axis]) - std::max(piece.from, spot.low[axis]);
-            piece.covered.push_back(std::max(0.0, inside) / (spot.high[axis] - spot.low[axis]));
-        }
+    for (Piece& piece : found) cover(piece, image, axis);
     return found;
 }
 
@@ -121,6 +124,14 @@ public:
                 judge(part);
             }
         }
+        return worst_;
+    }
+
+    BruteWorst of_part(const Vec2& low, const Vec2& high) {
+        Piece across{low.x(), high.x(), {}}, up{low.y(), high.y(), {}};
+        cover(across, image_, 0), cover(up, image_, 1);
+        gather(across, up);
+        judge({&across, &up});
         return worst_;
     }
 
@@ -311,6 +322,11 @@ private:
 
 BruteWorst brute_force(const BrutePlan& plan, const std::vector<BruteSpot>& image) {
     return image.empty() ? BruteWorst{} : Judge(plan, image).worst();
+}
+
+BruteWorst brute_force_part(const BrutePlan& plan, const std::vector<BruteSpot>& image, const Vec2& low,
+                            const Vec2& high) {
+    return image.empty() ? BruteWorst{} : Judge(plan, image).of_part(low, high);
 }
 
 double brute_force_ratio(const Beams& beams, const FiringPlan& plan, const BruteEye& eye, double wavelength,

@@ -59,6 +59,10 @@ struct BruteWorst {
 /// Largest AE/AEL over every rectangular part of the image, start, duration and criterion.
 [[nodiscard]] BruteWorst brute_force(const BrutePlan& plan, const std::vector<BruteSpot>& image);
 
+/// The same for one part of it [rad].
+[[nodiscard]] BruteWorst brute_force_part(const BrutePlan& plan, const std::vector<BruteSpot>& image,
+                                          const Vec2& low, const Vec2& high);
+
 /// The same for an eye.
 [[nodiscard]] double brute_force_ratio(const Beams& beams, const FiringPlan& plan, const BruteEye& eye,
                                        double wavelength, double time_base);

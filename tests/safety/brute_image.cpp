@@ -81,10 +81,10 @@ std::vector<BruteSpot> brute_image(const Beams& beams, const BruteEye& eye, doub
         const double energy = brute_energy(beam, eye, pulse_width);
         if (energy <= 0) continue;
         // Moments of (place, slope) where the beam leaves the optics, as squares of 1/e2 radii. The slopes of
-        // a wide field are even over what the pupil takes: 20 is as good as no end.
+        // a wide field are even over what the pupil takes: a half width of 100 stands for that.
         const double cosine = beam.axis.x(), W = beam.exit_radius, c = beam.curvature;
         double half = std::min(beam.kernel.a / (cosine * cosine), beam.kernel.b / cosine);
-        if (beam.kernel.shape != KernelShape::gaussian) half = 20;
+        if (beam.kernel.shape != KernelShape::gaussian) half = 100;
         const double slope2 = std::max(half * half, c * c * W * W);
         Mat2 moments;
         moments << W * W, c * W * W, c * W * W, slope2;

@@ -145,8 +145,8 @@ public:
         for (std::size_t c = 0; c < 4; ++c) worst[c] = std::max(worst[c], found[c].ratio);
     }
 
-    // Every window from the low edge of a spot to the high edge of one; or to those edges and to just inside all
-    // others, where it touches one more spot.
+    // Every window from the low edge of a spot to the high edge of one; or to those edges and to just inside
+    // all others, where it touches one more spot.
     [[nodiscard]] Ratios between_edges(bool touching = false) const {
         Ratios worst{};
         for (const Side& u : sides(0, touching))
@@ -198,7 +198,6 @@ public:
         // A shot alone is no group, but may be part of one with those of other dwells.
         if (trial_.plan.pulse_width <= pattern_.group_time)
             light.per_energy[group] = std::max(one[group].ratio, 1 / pattern_.group_limit);
-        light.per_energy[train] = std::max(one[single].ratio, light.per_energy[group]) / all[train].C5;
         return light;
     }
 
@@ -215,9 +214,11 @@ private:
         constexpr double hair = 1e-6;
         std::vector<double> lows, highs;
         for (const Spot& each : trial_.spots) {
-            const double low = each.middle[axis] - each.half[axis], high = each.middle[axis] + each.half[axis];
+            const double low = each.middle[axis] - each.half[axis],
+                         high = each.middle[axis] + each.half[axis];
             lows.push_back(low), highs.push_back(high);
-            if (touching) lows.push_back(high - hair * (high - low)), highs.push_back(low + hair * (high - low));
+            if (touching)
+                lows.push_back(high - hair * (high - low)), highs.push_back(low + hair * (high - low));
         }
         std::vector<Side> found;
         for (const double low : lows)
@@ -401,7 +402,8 @@ TEST_CASE("the image bound is above what the search finds") {
         const Trial trial = random_trial(random, i % 100 == 0 ? 140 : 12);
         const Windows windows(trial);
         CAPTURE(text_of(trial));
-        const Ratios bound = image_bound(trial.spots, windows.light(), {});
+        const Ratios bound =
+            image_bound(windows.pattern(), trial.spots, trial.dwell_of_zone, windows.light(), {});
         const WindowSearch found =
             search_windows(windows.pattern(), trial.spots, trial.dwell_of_zone, {}, 0.01);
         for (std::size_t c = 0; c < 4; ++c) CHECK(bound[c] >= found.parts[c].worst.ratio * (1 - 1e-9));
@@ -420,7 +422,8 @@ TEST_CASE("the image bound holds for zones that fire one shot each within Ti") {
                          .frame_period = 1e-4},
                 .rules = {.wavelength = 905 * nm}};
     const Windows windows(trial);
-    const Ratios bound = image_bound(trial.spots, windows.light(), {});
+    const Ratios bound =
+        image_bound(windows.pattern(), trial.spots, trial.dwell_of_zone, windows.light(), {});
     const Ratios found = search(windows, trial, 0);
     CHECK(found[group] ==
           about(2e-9 / class_limit(LaserClass::class_1, {905 * nm, 5e-6, alpha_min}).energy, 1e-9));

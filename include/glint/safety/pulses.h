@@ -17,6 +17,8 @@ struct TrainPulse {
     double time_base = usual_time_base;  ///< s
 };
 
+inline constexpr double smallest_c5 = 0.2;
+
 /// C5, the reduction for pulse trains, in [0.2, 1].
 /// t <= Ti: 1 when the time base is at most 0.25 s or N <= 600; else 5 N^-0.25, at least 0.4, at most 1.
 /// t > Ti: 1 (alpha <= 5 mrad or > 100 mrad); N^-0.25 for N <= 40, else 0.4 (5 mrad < alpha <= alpha_max(t));

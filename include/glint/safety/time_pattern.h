@@ -32,10 +32,11 @@ struct TimePattern {
     FiringPlan plan;
     ExposureRules rules;
     LimitCurve curve;
-    double dwell_length = 0;  ///< first pulse's start to last pulse's end [s]
-    double group_time = 0;    ///< Ti [s]
-    double single_limit = 0;  ///< AEL(tp) of a point [J]
-    double group_limit = 0;   ///< AEL(Ti) of a point [J]
+    double dwell_length = 0;   ///< first pulse's start to last pulse's end [s]
+    double group_time = 0;     ///< Ti [s]
+    double single_limit = 0;   ///< AEL(tp) of a point [J]
+    double group_limit = 0;    ///< AEL(Ti) of a point [J]
+    bool dwells_apart = true;  ///< no stretch of Ti reaches pulses of two dwells
 };
 
 /// Errors: a class without limits, wavelength or time base out of range.
@@ -82,6 +83,9 @@ using Ratios = std::array<double, 4>;
 /// time order. Monotone: more energy, a smaller subtense or side, a larger largest_subtense never lower it.
 [[nodiscard]] TimedRatios worst_over_time(const TimePattern& pattern, std::span<const DwellEnergy> dwells,
                                           const PartSize& size, const Ratios& known = {});
+
+/// No C5 of a part that touches so many dwells, at most `largest_subtense` large [rad], is below this.
+[[nodiscard]] double least_c5(const TimePattern& pattern, double dwells, double largest_subtense);
 
 /// Whether it matters for C5 how many dwells a part touches.
 [[nodiscard]] bool counts_dwells(const TimePattern& pattern);
