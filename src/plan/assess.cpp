@@ -161,8 +161,10 @@ Assessment assess(const LoadedDesign& loaded, const Progress& progress) {
 SafetyVerdict assess_safety(const LoadedDesign& loaded, const Progress& progress) {
     return with_places(loaded, [&] {
         const Design& design = loaded.design;
-        return judge_safety(design, build_array(design.emitters, field_sense(design.optics), loaded.folder),
-                            progress);
+        const EmitterArray array = build_array(design.emitters, field_sense(design.optics), loaded.folder);
+        SafetyVerdict verdict = judge_safety(design, array, progress);
+        judge_faults(verdict, array, progress);
+        return verdict;
     });
 }
 

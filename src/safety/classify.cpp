@@ -25,29 +25,29 @@ double time_base_of(LaserClass laser_class, double wavelength, double longest) {
 }
 
 bool holds(const LightSource& light, LaserClass laser_class, const std::vector<Condition>& conditions,
-           double time_base, Effort effort, const Vec3& also, const Progress& progress) {
-    const double limit = limit_of_search(light, effort);
+           double time_base, Accuracy accuracy, const Progress& progress) {
+    const double limit = limit_of_search(light, accuracy);
     EyeSearch from_the_limit;
     from_the_limit.known.fill(limit);
-    const ExposureQuestion question{
-        laser_class, time_base_of(laser_class, light.wavelength, time_base), conditions, limit, effort, also};
+    const ExposureQuestion question{laser_class, time_base_of(laser_class, light.wavelength, time_base),
+                                    conditions, limit, accuracy};
     return search_exposure(light, question, std::move(from_the_limit), progress).worst_ratio() <= limit;
 }
 
-LaserClass classify(const LightSource& light, const EyeSearch& class_1, double time_base, Effort effort,
-                    const Vec3& also, const Progress& progress) {
+LaserClass classify(const LightSource& light, const EyeSearch& class_1, double time_base, Accuracy accuracy,
+                    const Progress& progress) {
     if (class_1.bound() <= 1) return LaserClass::class_1;
     // Beyond the limit it does not matter how far, nor within it.
     constexpr double beyond = 2, within = 0.5;
     const auto ratio = [&](LaserClass laser_class, Condition condition) {
-        return holds(light, laser_class, {condition}, time_base, effort, also, progress) ? within : beyond;
+        return holds(light, laser_class, {condition}, time_base, accuracy, progress) ? within : beyond;
     };
     const auto both = [&](LaserClass laser_class) {
         ConditionRatios ratios{ratio(laser_class, Condition::telescope),
                                ratio(laser_class, Condition::naked_eye)};
         if (laser_class != LaserClass::class_1) return ratios;
         for (const EyeCase& each : class_1.worst)
-            if (each.part.worst.ratio > limit_of_search(light, effort))
+            if (each.part.worst.ratio > limit_of_search(light, accuracy))
                 (each.condition == Condition::telescope ? ratios.condition_1 : ratios.condition_3) = beyond;
         return ratios;
     };

@@ -44,8 +44,8 @@ LightSource light_source(const Design& design, const EmitterArray& array, const 
             .closest_access = design.eye_safety.closest_access};
 }
 
-double limit_of_search(const LightSource& light, Effort effort) {
-    return 1 / allowance_for(slack_for(light.field, effort));
+double limit_of_search(const LightSource& light, Accuracy accuracy) {
+    return 1 / allowance_for(slack_for(light.field, accuracy));
 }
 
 std::vector<TimePattern> patterns_of(const LightSource& light, LaserClass laser_class, double time_base) {
@@ -75,9 +75,9 @@ EyeSearch search_exposure(const LightSource& light, const ExposureQuestion& ques
     for (const TimePattern& pattern : patterns_of(light, question.laser_class, question.time_base))
         for (const Condition condition : question.conditions) {
             if (found.worst_ratio() > question.enough) return found;
-            found = search_eyes({pattern, light.field, condition, light.closest_access, question.enough,
-                                 question.effort, question.also},
-                                std::move(found), progress);
+            found = search_eyes(
+                {pattern, light.field, condition, light.closest_access, question.enough, question.accuracy},
+                std::move(found), progress);
         }
     return found;
 }

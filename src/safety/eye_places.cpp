@@ -57,13 +57,13 @@ std::vector<Vec3> all_places(const FarField& field, double distance, double pupi
     return places;
 }
 
-std::vector<Vec3> few_places(const FarField& field, double distance, const Vec3& also) {
+std::vector<Vec3> few_places(const FarField& field, double distance) {
     Vec2 low(1, 1), high(-1, -1);
     for (const Beam& beam : field.beams) {
         const Vec2 axis(beam.axis.y(), beam.axis.z());
         low = low.cwiseMin(axis), high = high.cwiseMax(axis);
     }
-    std::vector<Vec3> places{distance * also.normalized()};
+    std::vector<Vec3> places;
     for (const double y : {low.x(), (low.x() + high.x()) / 2, high.x()})
         for (const double z : {low.y(), (low.y() + high.y()) / 2, high.y()})
             if (const double x2 = 1 - y * y - z * z; x2 > 0.04)

@@ -12,7 +12,7 @@ namespace glint {
 /// radius there, half the width of an edge), whichever is more, and at most 0.06 rad.
 [[nodiscard]] std::vector<Vec3> all_places(const FarField& field, double distance, double pupil_radius);
 
-/// The middle, the corners and the edges of what the beams' axes cover, and the direction `also`.
-[[nodiscard]] std::vector<Vec3> few_places(const FarField& field, double distance, const Vec3& also);
+/// The middle, the corners and the edges of what the beams' axes cover.
+[[nodiscard]] std::vector<Vec3> few_places(const FarField& field, double distance);
 
 }  // namespace glint

@@ -63,7 +63,7 @@ public:
           progress_(progress),
           found_(std::move(before)),
           dwell_of_zone_(static_cast<std::size_t>(question.field.zones), 0),
-          slack_(slack_for(question.field, question.effort)),
+          slack_(slack_for(question.field, question.accuracy)),
           retinal_(question.pattern.curve.mechanism == Mechanism::retinal_thermal) {
         for (int dwell = 0; dwell < pattern_.plan.dwells(); ++dwell)
             for (const int zone : pattern_.plan.zones_of(dwell)) dwell_of_zone_[zone] = dwell;
@@ -80,13 +80,12 @@ public:
 
     void everywhere() {
         if (nothing_at_all()) return;
-        const bool quick = question_.effort == Effort::quick;
         // A few places first: the more is known, the less has to be looked at.
-        for (double distance = nearest_; distance < farthest && (quick || !question_.field.alike);
+        for (double distance = nearest_; distance < farthest && !question_.field.alike;
              distance *= growth_of_distance)
-            if (!look(few_places(question_.field, distance, question_.also)) || enough()) break;
+            if (!look(few_places(question_.field, distance)) || enough()) break;
         if (worst_is_ours()) closer();
-        if (quick) return;
+
         // Beyond some distance even all the light, taken as a point, is less than what was found nearer.
         for (double distance = nearest_; distance < farthest; distance *= growth_of_distance)
             if (enough() || !look(all_places(question_.field, distance, radius_))) break;
@@ -401,8 +400,8 @@ private:
 
 }  // namespace
 
-double slack_for(const FarField& field, Effort effort) {
-    if (effort == Effort::quick) return search_slack_of_many;
+double slack_for(const FarField& field, Accuracy accuracy) {
+    if (accuracy == Accuracy::coarse) return search_slack_of_many;
     return field.alike && field.beams.size() > many_beams ? search_slack_of_many : search_slack;
 }
 

@@ -74,7 +74,6 @@ struct Judge {
     const EmitterArray& array;
     const Fault& fault;
     LaserClass asked;
-    Vec3 also;
     const Progress& progress;
 
     [[nodiscard]] LightSource light(double lasting) const {
@@ -88,21 +87,21 @@ struct Judge {
         EyeSearch before;
         before.known = known;
         return search_exposure(light(within),
-                               {asked, time_base(within), conditions_of(asked), enough, Effort::quick, also},
+                               {asked, time_base(within), conditions_of(asked), enough, Accuracy::coarse},
                                std::move(before), progress);
     }
 
     // Whether a case that is too much over a longer time still is within a shorter one.
     [[nodiscard]] bool too_much(const EyeCase& found, double within) const {
         const LightSource source = light(within);
-        const double limit = limit_of_search(source, Effort::quick);
+        const double limit = limit_of_search(source, Accuracy::coarse);
         EyeSearch before;
         before.known.fill(limit);
         const std::array places{found.eye.place};
         for (const TimePattern& pattern : patterns_of(source, asked, time_base(within))) {
             before = search_eyes_at(
-                {pattern, source.field, found.condition, source.closest_access, limit, Effort::quick}, places,
-                std::move(before), progress);
+                {pattern, source.field, found.condition, source.closest_access, limit, Accuracy::coarse},
+                places, std::move(before), progress);
             if (before.worst_ratio() > limit) return true;
         }
         return false;
@@ -119,7 +118,7 @@ const EyeCase& worst_of(const EyeSearch& found) {
 std::optional<double> reaction_time(const Judge& judge, EyeCase worst, double too_long) {
     const double one_shot =
         judge.light(too_long).plan.pulse_width < too_long ? judge.light(too_long).plan.pulse_width : 1e-9;
-    const double limit = limit_of_search(judge.light(too_long), Effort::quick);
+    const double limit = limit_of_search(judge.light(too_long), Accuracy::coarse);
     Ratios from_the_limit;
     from_the_limit.fill(limit);
     for (int round = 0; round < 40; ++round) {
@@ -176,8 +175,8 @@ LightSource faulty_light(const Design& design, const EmitterArray& array, const 
 }
 
 FaultVerdict judge_fault(const Design& design, const EmitterArray& array, const Fault& fault,
-                         LaserClass asked, const Vec3& also, const Progress& progress) {
-    const Judge judge{design, array, fault, asked, also, progress};
+                         LaserClass asked, const Progress& progress) {
+    const Judge judge{design, array, fault, asked, progress};
     const double time_base = design.eye_safety.time_base;
     FaultVerdict verdict{.name = name_of(fault), .reaction_time = {}, .governing = {}};
     const EyeSearch found = judge.everywhere(time_base, 1e300, {});
@@ -189,11 +188,11 @@ FaultVerdict judge_fault(const Design& design, const EmitterArray& array, const 
     verdict.laser_class =
         verdict.holds && asked == LaserClass::class_1 ? LaserClass::class_1
         : asked == LaserClass::class_1
-            ? classify(light, found, time_base, Effort::quick, also, progress)
+            ? classify(light, found, time_base, Accuracy::coarse, progress)
             : classify(light,
-                       search_exposure(light, {.time_base = time_base, .effort = Effort::quick, .also = also},
-                                       {}, progress),
-                       time_base, Effort::quick, also, progress);
+                       search_exposure(light, {.time_base = time_base, .accuracy = Accuracy::coarse}, {},
+                                       progress),
+                       time_base, Accuracy::coarse, progress);
     verdict.reaction_time = verdict.holds ? time_base : reaction_time(judge, worst_of(found), time_base);
     return verdict;
 }

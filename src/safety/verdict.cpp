@@ -44,9 +44,8 @@ double shot_power(const FiringPlan& plan, const EmitterArray& array, double peak
 }  // namespace
 
 SafetyVerdict judge_safety(const Design& design, const EmitterArray& array, const Progress& progress) {
-    SafetyVerdict verdict;
+    SafetyVerdict verdict{.worst_design = design};
     const double time_base = design.eye_safety.time_base;
-    Design worst_design = design;
     EyeSearch found;
     double worst = -1;
     const std::vector<Corner> corners = tolerance_corners(design);
@@ -55,15 +54,14 @@ SafetyVerdict judge_safety(const Design& design, const EmitterArray& array, cons
         found = search_exposure(light, {LaserClass::class_1, time_base}, std::move(found), progress);
         if (found.worst_ratio() <= worst) continue;
         worst = found.worst_ratio();
-        verdict.light = std::move(light), verdict.corner = corner.name, worst_design = corner.design;
+        verdict.light = std::move(light), verdict.corner = corner.name, verdict.worst_design = corner.design;
     }
     verdict.corners = corners.size();
     verdict.work = found.work;
     verdict.criteria = exposure_cases(found);
     verdict.worst_ratio = found.bound();
     verdict.margin = 1 - verdict.worst_ratio;
-    verdict.laser_class =
-        classify(verdict.light, found, time_base, Effort::everywhere, Vec3::UnitX(), progress);
+    verdict.laser_class = classify(verdict.light, found, time_base, Accuracy::fine, progress);
 
     const EyeSafetyRequirement asked = asked_of(design);
     verdict.asked = class_of(asked.laser_class);
@@ -79,8 +77,9 @@ SafetyVerdict judge_safety(const Design& design, const EmitterArray& array, cons
         const double scale = (1 - asked.margin) / verdict.asked_ratio;
         const FiringPlan& plan = verdict.light.plan;
         verdict.largest_shot_energy =
-            scale * shot_power(plan, array, worst_design.drive.peak_power) * plan.pulse_width;
-        verdict.largest_average_power = scale * average_power(plan, array, worst_design.drive.peak_power);
+            scale * shot_power(plan, array, verdict.worst_design.drive.peak_power) * plan.pulse_width;
+        verdict.largest_average_power =
+            scale * average_power(plan, array, verdict.worst_design.drive.peak_power);
     }
     if (verdict.worst_ratio > 1) {
         const Vec3 worst_eye = verdict.criteria.front().eye;
@@ -89,12 +88,13 @@ SafetyVerdict judge_safety(const Design& design, const EmitterArray& array, cons
         verdict.aided_hazard_distance =
             search_hazard_distance(verdict.light, Condition::telescope, time_base, worst_eye, progress);
     }
-    for (const Fault& fault : design.eye_safety.faults.list)
-        verdict.faults.push_back(
-            judge_fault(worst_design, array, fault, verdict.asked,
-                        verdict.criteria.empty() ? Vec3::UnitX() : verdict.criteria.front().eye, progress));
     verdict.found = std::move(found);
     return verdict;
+}
+
+void judge_faults(SafetyVerdict& verdict, const EmitterArray& array, const Progress& progress) {
+    for (const Fault& fault : verdict.worst_design.eye_safety.faults.list)
+        verdict.faults.push_back(judge_fault(verdict.worst_design, array, fault, verdict.asked, progress));
 }
 
 }  // namespace glint

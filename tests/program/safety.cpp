@@ -44,7 +44,7 @@ TEST_CASE("safety prints one JSON object with the keys that are promised") {
     CHECK(answer["faults"][0]["name"] == "a zone stuck on");
     for (const char* key : {"name", "class", "worst_ratio", "reaction_time_s"})
         CHECK_MESSAGE(answer["faults"][1].contains(key), key);
-    // Twice the power is twice the ratio; the quick search of faults adds 10.5 % instead of 1.5 %.
+    // Twice the power is twice the ratio; the coarse search of faults adds 10.5 % instead of 1.5 %.
     CHECK(answer["faults"][1]["worst_ratio"].get<double>() >= 2 * ratio);
     CHECK(answer["faults"][1]["worst_ratio"].get<double>() <= 2 * ratio * 1.105);
 }

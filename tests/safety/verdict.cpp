@@ -29,7 +29,10 @@ Design small_module() {
 }
 
 SafetyVerdict judged(const Design& design) {
-    return judge_safety(design, build_array(design.emitters, field_sense(design.optics), "."));
+    const EmitterArray array = build_array(design.emitters, field_sense(design.optics), ".");
+    SafetyVerdict verdict = judge_safety(design, array);
+    judge_faults(verdict, array);
+    return verdict;
 }
 
 }  // namespace

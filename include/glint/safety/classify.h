@@ -14,12 +14,10 @@ namespace glint {
 /// Whether no ratio of the class exceeds 1, the search's allowance included.
 [[nodiscard]] bool holds(const LightSource& light, LaserClass laser_class,
                          const std::vector<Condition>& conditions, double time_base,
-                         Effort effort = Effort::everywhere, const Vec3& also = Vec3::UnitX(),
-                         const Progress& progress = {});
+                         Accuracy accuracy = Accuracy::fine, const Progress& progress = {});
 
 /// The least hazardous class that holds. `class_1`: what a search of Class 1 under both conditions found.
 [[nodiscard]] LaserClass classify(const LightSource& light, const EyeSearch& class_1, double time_base,
-                                  Effort effort = Effort::everywhere, const Vec3& also = Vec3::UnitX(),
-                                  const Progress& progress = {});
+                                  Accuracy accuracy = Accuracy::fine, const Progress& progress = {});
 
 }  // namespace glint

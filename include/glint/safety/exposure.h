@@ -21,7 +21,7 @@ struct LightSource {
                                        const FiringPlan& plan);
 
 /// Ratio that a search may find while no place, focus or part exceeds the limit.
-[[nodiscard]] double limit_of_search(const LightSource& light, Effort effort = Effort::everywhere);
+[[nodiscard]] double limit_of_search(const LightSource& light, Accuracy accuracy = Accuracy::fine);
 
 /// Against what the light is held.
 struct ExposureQuestion {
@@ -29,8 +29,7 @@ struct ExposureQuestion {
     double time_base = 100;                        ///< [s]
     std::vector<Condition> conditions{Condition::telescope, Condition::naked_eye};
     double enough = 1e300;  ///< ratio beyond which it does not matter how much worse it gets
-    Effort effort = Effort::everywhere;
-    Vec3 also = Vec3::UnitX();  ///< direction in which a quick search looks besides
+    Accuracy accuracy = Accuracy::fine;
 };
 
 /// Worst cases over the conditions and every mechanism with a limit of the class: retinal thermal (parts of

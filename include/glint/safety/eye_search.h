@@ -37,18 +37,17 @@ inline constexpr double search_slack = 0.01;
 /// The same for arrays of more than 1024 beams that all go the same way: their images hold every beam, and
 /// searching them as closely would take minutes.
 inline constexpr double search_slack_of_many = 0.1;
-/// Factor on a ratio found: the slack of the search, and half a percent meant for places between those of the
-/// raster and for edges of spots taken as one. Not a bound in every case yet, see the known faults in
-/// docs/safety.md.
+/// Factor on a ratio found: the slack of the search, and half a percent for places between those of the
+/// raster and for edges of spots taken as one.
 [[nodiscard]] constexpr double allowance_for(double slack) { return 1 + slack + 0.005; }
-/// How closely places are looked at.
-enum class Effort {
-    everywhere,  ///< the whole raster
-    quick,  ///< the middle, edges and corners of the field at every distance, and around the worst of them
+/// How closely the worst is found.
+enum class Accuracy {
+    fine,    ///< to search_slack
+    coarse,  ///< to search_slack_of_many, several times faster
 };
 
-/// Slack of a search of a field; a quick one counts as one of many beams.
-[[nodiscard]] double slack_for(const FarField& field, Effort effort = Effort::everywhere);
+/// Slack of a search of a field.
+[[nodiscard]] double slack_for(const FarField& field, Accuracy accuracy = Accuracy::fine);
 /// The usual factor.
 inline constexpr double search_allowance = allowance_for(search_slack);
 
@@ -72,8 +71,7 @@ struct EyeQuestion {
     Condition condition = Condition::naked_eye;
     double closest_access = 0;  ///< of the eye to the chip [m]
     double enough = 1e300;      ///< ratio, the allowance not included, beyond which the search may stop
-    Effort effort = Effort::everywhere;
-    Vec3 also = Vec3::UnitX();  ///< direction in which a quick search looks besides
+    Accuracy accuracy = Accuracy::fine;
 };
 
 /// Searches all places in front of the module from the closest the condition and the access allow (100 mm or

@@ -14,11 +14,9 @@ namespace glint {
                                        double lasting);
 
 /// Judges one fault of a design that has its tolerances used up. `asked` must hold, for every duration up to
-/// the moment of darkness; emission before the fault is not counted. The search is a quick one, which looks
-/// in the direction `also` besides, with an allowance of 10.5 %. The reaction time is found to 2 % and
-/// rounded down.
+/// the moment of darkness; emission before the fault is not counted. The search is a coarse one, with an
+/// allowance of 10.5 %. The reaction time is found to 2 % and rounded down.
 [[nodiscard]] FaultVerdict judge_fault(const Design& design, const EmitterArray& array, const Fault& fault,
-                                       LaserClass asked, const Vec3& also = Vec3::UnitX(),
-                                       const Progress& progress = {});
+                                       LaserClass asked, const Progress& progress = {});
 
 }  // namespace glint

@@ -37,15 +37,20 @@ struct SafetyVerdict {
     double largest_average_power = 0;  ///< [W] of the chip over a frame
     double hazard_distance = 0;  ///< [m] from the chip, naked eye; 0 when no place allowed exceeds Class 1
     double aided_hazard_distance = 0;  ///< [m] with a telescope
-    std::vector<FaultVerdict> faults;  ///< one for each fault of the design, in its order
+    std::vector<FaultVerdict>
+        faults;           ///< one for each fault of the design, in its order, once they are judged
+    Design worst_design;  ///< with its tolerances used up
     SearchWork work;
     EyeSearch found;    ///< Class 1, as found, for pictures
     LightSource light;  ///< of the worst corner
 };
 
 /// Judges a design: every corner of its tolerances against Class 1, the worst of them against the other
-/// classes and with every fault of the design. Errors: those of project() and plan_firing().
+/// classes. Errors: those of project() and plan_firing().
 [[nodiscard]] SafetyVerdict judge_safety(const Design& design, const EmitterArray& array,
                                          const Progress& progress = {});
+
+/// Judges every fault of the design and adds it to the verdict.
+void judge_faults(SafetyVerdict& verdict, const EmitterArray& array, const Progress& progress = {});
 
 }  // namespace glint
