@@ -32,6 +32,10 @@ constexpr Unit capacitance_units[] = {{"fF", -15}, {"pF", -12}, {"nF", -9}, {"uF
 constexpr Unit charge_units[] = {{"pC", -12}, {"nC", -9}, {"uC", -6}, {"µC", -6}, {"mC", -3}, {"C"}};
 constexpr Unit temperature_units[] = {{"degC", 0, 1, zero_celsius}, {"K"}};
 constexpr Unit thermal_resistance_units[] = {{"K/W"}, {"K/mW", 3}};
+constexpr Unit thermal_conductivity_units[] = {{"W/m/K"}};
+constexpr Unit slope_efficiency_units[] = {{"W/A"}};
+constexpr Unit wavelength_drift_units[] = {{"pm/K", -12}, {"nm/K", -9}, {"m/K"}};
+constexpr Unit temperature_difference_units[] = {{"K"}};
 constexpr Unit illuminance_units[] = {{"lx"}, {"klx", 3}};
 constexpr Unit irradiance_units[] = {{"mW/m2", -3}, {"W/m2"}, {"mW/cm2", 1}, {"kW/m2", 3}, {"W/cm2", 4}};
 constexpr Unit radiant_intensity_units[] = {{"mW/sr", -3}, {"W/sr"}, {"kW/sr", 3}};
@@ -43,7 +47,7 @@ struct KindRow {
     std::span<const Unit> units;
 };
 
-constexpr std::array<KindRow, 20> kinds{{
+constexpr std::array<KindRow, 24> kinds{{
     {Kind::length, "length", length_units},
     {Kind::angle, "angle", angle_units},
     {Kind::solid_angle, "solid angle", solid_angle_units},
@@ -59,6 +63,10 @@ constexpr std::array<KindRow, 20> kinds{{
     {Kind::charge, "charge", charge_units},
     {Kind::temperature, "temperature", temperature_units},
     {Kind::thermal_resistance, "thermal resistance", thermal_resistance_units},
+    {Kind::temperature_difference, "temperature difference", temperature_difference_units},
+    {Kind::thermal_conductivity, "thermal conductivity", thermal_conductivity_units},
+    {Kind::slope_efficiency, "slope efficiency", slope_efficiency_units},
+    {Kind::wavelength_drift, "wavelength drift", wavelength_drift_units},
     {Kind::illuminance, "illuminance", illuminance_units},
     {Kind::irradiance, "irradiance", irradiance_units},
     {Kind::radiant_intensity, "radiant intensity", radiant_intensity_units},

@@ -73,9 +73,50 @@ Record lobe() {
         .done();
 }
 
+Record diode() {
+    return Describe<DiodeSettings>(
+               "diode", "The laser diode of one emitter; what is not given comes from fits to its aperture")
+        .integer("junctions", &DiodeSettings::junctions, from_to(1, 20), "Junctions in series")
+        .quantity("threshold", &DiodeSettings::threshold, K::current, above_to(0, 1),
+                  "Lowest threshold current")
+        .quantity("threshold_temperature", &DiodeSettings::threshold_temperature, K::temperature,
+                  from_to(200, 450), "Temperature at which the threshold is lowest")
+        .quantity("threshold_width", &DiodeSettings::threshold_width, K::temperature_difference,
+                  from_to(20, 500), "The threshold is twice as high this far from there")
+        .quantity("slope", &DiodeSettings::slope, K::slope_efficiency, above_to(0, 50),
+                  "Slope of light over current at 25 degC, all junctions")
+        .quantity("slope_fall", &DiodeSettings::slope_fall, K::temperature_difference, from_to(50, 1000),
+                  "Rise above 25 degC at which no slope is left")
+        .quantity("voltage", &DiodeSettings::voltage, K::voltage, above_to(0, 100),
+                  "Voltage at zero current, all junctions")
+        .quantity("resistance", &DiodeSettings::resistance, K::resistance, from_to(0, 10e3),
+                  "Resistance in series")
+        .done();
+}
+
+Record heat() {
+    return Describe<HeatSettings>("heat", "Where the heat of the chip goes")
+        .quantity("sink_temperature", &HeatSettings::sink_temperature, K::temperature, from_to(230, 400),
+                  "Temperature of the heat sink")
+        .quantity("substrate_thickness", &HeatSettings::substrate_thickness, K::length, from_to(5e-6, 5e-3),
+                  "Thickness of the chip")
+        .quantity("conductivity", &HeatSettings::conductivity, K::thermal_conductivity, from_to(1, 2500),
+                  "Thermal conductivity of the substrate")
+        .quantity("self_conductivity", &HeatSettings::self_conductivity, K::thermal_conductivity,
+                  from_to(1, 2500), "Thermal conductivity that an emitter's own heat meets")
+        .quantity("package_resistance", &HeatSettings::package_resistance, K::thermal_resistance,
+                  from_to(0, 1e4), "From the far side of the chip to the heat sink")
+        .quantity("pulse_heating", &HeatSettings::pulse_heating, K::number, from_to(0.1, 10),
+                  "Factor on the heating by short pulses, known within a factor of 3 either way")
+        .quantity("wavelength_drift", &HeatSettings::wavelength_drift, K::wavelength_drift, from_to(0, 1e-9),
+                  "Of the wavelength with the junction temperature, from 25 degC on")
+        .done();
+}
+
 Record emitters() {
     return Describe<Emitters>("emitters", "The emitter chip")
-        .quantity("wavelength", &Emitters::wavelength, K::length, from_to(400e-9, 1800e-9), "Wavelength")
+        .quantity("wavelength", &Emitters::wavelength, K::length, from_to(400e-9, 1800e-9),
+                  "Wavelength, of a diode at 25 degC")
         .required()
         .quantity("aperture", &Emitters::aperture, K::length, from_to(100e-9, 1e-3),
                   "Diameter of one emitter")
@@ -85,33 +126,79 @@ Record emitters() {
         .part(&Emitters::layout, layout())
         .part(&Emitters::addressing, addressing())
         .part(&Emitters::lobe, lobe())
+        .part(&Emitters::diode, diode())
+        .part(&Emitters::heat, heat())
+        .done();
+}
+
+Record driver() {
+    return Describe<DriverSettings>("driver", "What drives a channel")
+        .choice(
+            "kind", &DriverSettings::kind, {"ramp", "resonant"},
+            "ramp: a switch lets the supply ramp the current up through the loop; resonant: a capacitor is "
+            "discharged into it")
+        .quantity("loop_inductance", &DriverSettings::loop_inductance, K::inductance, from_to(1e-12, 1e-6),
+                  "Inductance of the loop of one channel")
+        .quantity("loop_resistance", &DriverSettings::loop_resistance, K::resistance, from_to(0, 1e3),
+                  "Resistance of that loop without the emitters")
+        .quantity("supply", &DriverSettings::supply, K::voltage, above_to(0, 1000),
+                  "Supply voltage; what is needed is worked out when not given")
+        .quantity("rise_time", &DriverSettings::rise_time, K::time, above_to(0, 1),
+                  "Rise time asked for; a third of the pulse when not given")
+        .when("kind", {"ramp"})
+        .quantity("droop", &DriverSettings::droop, K::ratio, above_to(0, 1),
+                  "Share of the supply that the storage capacitor of a channel may lose in a dwell")
+        .when("kind", {"ramp"})
         .done();
 }
 
 Record drive() {
     return Describe<DriveSettings>("drive", "What one emitter is driven to")
+        .choice(
+            "by", &DriveSettings::by, {"data_sheet", "current", "power"},
+            "data_sheet: every emitter sends peak_power, whatever that takes; current: the light follows "
+            "from the diode and its heat; power: the current is solved so that the emitters send peak_power "
+            "on average")
         .quantity("peak_power", &DriveSettings::peak_power, K::power, above_to(0, 1e3),
                   "Peak optical power of one emitter")
         .required()
-        .quantity("pulse_width", &DriveSettings::pulse_width, K::time, from_to(10e-12, 1),
-                  "Length of the rectangular pulse")
+        .when("by", {"data_sheet", "power"})
+        .quantity("current", &DriveSettings::current, K::current, above_to(0, 100),
+                  "Peak current of one emitter")
         .required()
+        .when("by", {"current"})
+        .quantity("pulse_width", &DriveSettings::pulse_width, K::time, from_to(10e-12, 1),
+                  "Length of the pulse, full width at half maximum")
+        .required()
+        .choice("shape", &DriveSettings::shape, {"rectangular", "half_sine", "gaussian"},
+                "Shape of the light pulse; it counts as a rectangle of the same width and energy")
+        .part(&DriveSettings::driver, driver())
         .done();
 }
 
 Record firing() {
     return Describe<Firing>("firing", "When which zone fires")
         .choice("order", &Firing::order,
-                {"raster", "serpentine", "stride", "bit_reversed", "farthest_next", "shuffled"},
+                {"raster", "serpentine", "stride", "bit_reversed", "farthest_next", "shuffled", "best"},
                 "Order of the zones in a frame. raster: row by row; serpentine: every other row backwards; "
                 "stride: every n-th, then those next to them; bit_reversed: by the reversed bits of their "
                 "numbers; "
-                "farthest_next: the one farthest from all that have fired; shuffled: random")
+                "farthest_next: the one farthest from all that have fired; shuffled: random; best: searched, so "
+                "that zones near each other fire far apart in time")
         .integer("stride", &Firing::stride, from_to(1, 1e6), "Zones from one that fires to the next")
         .required()
         .when("order", {"stride"})
-        .integer("seed", &Firing::seed, from_to(0, 1e9), "Seed of the random order")
-        .when("order", {"shuffled"})
+        .integer("seed", &Firing::seed, from_to(0, 1e9), "Seed of the random order or search")
+        .when("order", {"shuffled", "best"})
+        .quantity("exposure_weight", &Firing::exposure_weight, K::number, from_to(0, 1),
+                  "How much the energy of nearby zones within a short time counts")
+        .when("order", {"best"})
+        .quantity("heat_weight", &Firing::heat_weight, K::number, from_to(0, 1),
+                  "How much the heat that zones leave each other counts")
+        .when("order", {"best"})
+        .quantity("spacing_weight", &Firing::spacing_weight, K::number, from_to(0, 1),
+                  "How much the distance of zones that fire one after the other counts")
+        .when("order", {"best"})
         .integer("zones_at_once", &Firing::zones_at_once, from_to(1, 1e6), "Zones that fire together")
         .integer("shots", &Firing::shots, from_to(1, 1e8), "Shots of a dwell")
         .quantity("repetition", &Firing::repetition, K::frequency, from_to(0.01, 1e9),

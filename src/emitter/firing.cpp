@@ -1,6 +1,7 @@
 // The firing plan: which zones fire when, over one frame.
 #include <glint/core/error.h>
 #include <glint/core/quantity.h>
+#include <glint/emitter/chip.h>
 #include <glint/emitter/firing.h>
 #include <glint/emitter/firing_order.h>
 
@@ -8,21 +9,6 @@
 #include <algorithm>
 
 namespace glint {
-namespace {
-
-// A matrix drives the crossings of some row lines with some column lines, and nothing else: the zones of a
-// dwell must be exactly such a product.
-bool is_product(std::span<const int> zones, int columns) {
-    std::vector<int> rows_used, columns_used;
-    for (const int zone : zones) rows_used.push_back(zone / columns), columns_used.push_back(zone % columns);
-    const auto distinct = [](std::vector<int>& list) {
-        std::ranges::sort(list);
-        return static_cast<std::size_t>(std::ranges::unique(list).begin() - list.begin());
-    };
-    return distinct(rows_used) * distinct(columns_used) == zones.size();
-}
-
-}  // namespace
 
 std::span<const int> FiringPlan::zones_of(int dwell) const {
     const std::size_t first = static_cast<std::size_t>(dwell) * zones_at_once;
@@ -36,7 +22,8 @@ FiringPlan plan_firing(const Design& design, const EmitterArray& array) {
             .what = fmt::format("{} zones at once, but there are only {}", firing.zones_at_once, array.zones),
             .accepted = fmt::format("1 to {}", array.zones),
             .path = "firing/zones_at_once"});
-    FiringPlan plan{.zones = order_zones(firing, array),
+    const AddressingScheme scheme = design.emitters.addressing.scheme;
+    FiringPlan plan{.zones = order_zones(firing, array, substrate_of(design.emitters.heat), scheme),
                     .start = {},
                     .zones_at_once = firing.zones_at_once,
                     .shots = firing.shots,
@@ -46,9 +33,9 @@ FiringPlan plan_firing(const Design& design, const EmitterArray& array) {
     const int dwells = (array.zones + firing.zones_at_once - 1) / firing.zones_at_once;
     const double step = firing.shots / firing.repetition + firing.gap;
     for (int d = 0; d < dwells; ++d) plan.start.push_back(d * step);
-    if (design.emitters.addressing.scheme == AddressingScheme::matrix)
+    if (scheme == AddressingScheme::matrix)
         for (int d = 0; d < dwells; ++d)
-            if (!is_product(plan.zones_of(d), array.zone_columns))
+            if (!matrix_can_fire(plan.zones_of(d), array.zone_columns))
                 throw Error(Problem{
                     .what = fmt::format("a row-by-column matrix cannot fire the {} zones of dwell {} alone",
                                         plan.zones_of(d).size(), d),

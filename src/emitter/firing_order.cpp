@@ -2,13 +2,16 @@
 #include <glint/core/error.h>
 #include <glint/core/samples.h>
 #include <glint/emitter/firing_order.h>
+#include <glint/emitter/order_score.h>
 
+#include <fmt/format.h>
 #include <algorithm>
 #include <bit>
 #include <cmath>
 #include <limits>
 #include <numeric>
 #include <queue>
+#include <set>
 #include <utility>
 
 namespace glint {
@@ -23,7 +26,7 @@ std::vector<int> raster(int zones) {
 std::vector<int> serpentine(const EmitterArray& array) {
     if (array.zone_rows == 0)
         throw Error(Problem{.what = "zones that form no rows and columns have no serpentine order",
-                            .accepted = "raster, stride, bit_reversed, farthest_next or shuffled",
+                            .accepted = "raster, stride, bit_reversed, farthest_next, shuffled or best",
                             .path = "firing/order"});
     std::vector<int> sequence = raster(array.zones);
     for (int row = 1; row < array.zone_rows; row += 2) {
@@ -51,17 +54,11 @@ std::vector<int> bit_reversed(int zones) {
     return sequence;
 }
 
-// The mean place of each zone's emitters, in grains of 2^-30 of the longer side of the area that these cover.
+// The middles of the zones in grains of 2^-30 of the longer side of the area that these cover.
 // Distances in whole grains do not carry the rounding errors that would decide between equal ones. A power of
 // two, so that no fraction of that side that a raster makes lies halfway between two grains.
 std::vector<Vec2> middles_in_grains(const EmitterArray& array) {
-    std::vector<Vec2> middles(static_cast<std::size_t>(array.zones), Vec2::Zero());
-    std::vector<int> count(static_cast<std::size_t>(array.zones), 0);
-    for (std::size_t i = 0; i < array.size(); ++i) {
-        middles[array.zone_of[i]] += array.positions[i];
-        ++count[array.zone_of[i]];
-    }
-    for (int zone = 0; zone < array.zones; ++zone) middles[zone] /= count[zone];
+    std::vector<Vec2> middles = zone_middles(array);
     Vec2 low = middles.front(), high = low;
     for (const Vec2& middle : middles) low = low.cwiseMin(middle), high = high.cwiseMax(middle);
     const double side = (high - low).maxCoeff();
@@ -137,9 +134,62 @@ std::vector<int> shuffled(int zones, int seed) {
     return sequence;
 }
 
+// The orders that the search for the best one starts from.
+std::vector<std::vector<int>> listed_orders(const Firing& firing, const EmitterArray& array) {
+    std::vector<std::vector<int>> orders{raster(array.zones)};
+    if (array.zone_rows > 0) orders.push_back(serpentine(array));
+    const int row = array.zone_rows > 0 ? array.zone_columns : static_cast<int>(std::sqrt(array.zones));
+    for (const int stride : std::set{2, 3, 5, 7, row - 1, row + 1, 2 * row + 1, array.zones / 2})
+        if (stride > 1 && stride < array.zones) orders.push_back(strided(array.zones, stride));
+    orders.push_back(bit_reversed(array.zones));
+    orders.push_back(farthest_next(array));
+    orders.push_back(shuffled(array.zones, firing.seed));
+    return orders;
+}
+
+bool matrix_can_fire_all(const std::vector<int>& order, int zones_at_once, int columns) {
+    for (std::size_t first = 0; first < order.size(); first += zones_at_once)
+        if (!matrix_can_fire(
+                std::span(order).subspan(first, std::min<std::size_t>(zones_at_once, order.size() - first)),
+                columns))
+            return false;
+    return true;
+}
+
+std::vector<int> best(const Firing& firing, const EmitterArray& array, const Substrate& substrate,
+                      AddressingScheme scheme) {
+    constexpr int most_zones = 16384, tries = 4000;
+    if (array.zones > most_zones)
+        throw Error(
+            Problem{.what = fmt::format("{} zones are too many to search for the best order", array.zones),
+                    .accepted = fmt::format("best for up to {} zones; or another order", most_zones),
+                    .path = "firing/order"});
+    std::vector<std::vector<int>> orders = listed_orders(firing, array);
+    // Swaps would tear the sets of zones apart that a matrix can fire together.
+    const bool sets = scheme == AddressingScheme::matrix && firing.zones_at_once > 1;
+    if (sets) {
+        std::erase_if(orders, [&](const std::vector<int>& order) {
+            return !matrix_can_fire_all(order, firing.zones_at_once, array.zone_columns);
+        });
+        if (orders.empty()) return raster(array.zones);  // plan_firing() says what is wrong with it
+    }
+    return best_order(orders, firing, zone_middles(array), substrate, sets ? 0 : tries);
+}
+
 }  // namespace
 
-std::vector<int> order_zones(const Firing& firing, const EmitterArray& array) {
+bool matrix_can_fire(std::span<const int> zones, int columns) {
+    std::vector<int> rows_used, columns_used;
+    for (const int zone : zones) rows_used.push_back(zone / columns), columns_used.push_back(zone % columns);
+    const auto distinct = [](std::vector<int>& list) {
+        std::ranges::sort(list);
+        return static_cast<std::size_t>(std::ranges::unique(list).begin() - list.begin());
+    };
+    return distinct(rows_used) * distinct(columns_used) == zones.size();
+}
+
+std::vector<int> order_zones(const Firing& firing, const EmitterArray& array, const Substrate& substrate,
+                             AddressingScheme scheme) {
     switch (firing.order) {
         case FiringOrder::raster:
             return raster(array.zones);
@@ -153,6 +203,8 @@ std::vector<int> order_zones(const Firing& firing, const EmitterArray& array) {
             return farthest_next(array);
         case FiringOrder::shuffled:
             return shuffled(array.zones, firing.seed);
+        case FiringOrder::best:
+            return best(firing, array, substrate, scheme);
     }
     return {};
 }

@@ -27,7 +27,7 @@ Beams bare(const EmitterArray& array, const Design& design) {
                                .axis = Vec3::UnitX(),
                                .right = -Vec3::UnitY(),
                                .kernel = kernel,
-                               .power = design.drive.peak_power,
+                               .power = design.drive.peak_power * array.power_of(i),
                                .exit_radius = radius,
                                .zone = array.zone_of[i],
                                .emitter = static_cast<int>(i)});

@@ -82,6 +82,17 @@ std::vector<std::string> collect_findings(const Design& design, const Assessment
         if (loss.power > 0.2 * assessment.beams.emitted)
             findings.push_back(fmt::format("{:.0f} % of the emitted light is lost {}.",
                                            100 * loss.power / assessment.beams.emitted, loss.name));
+    if (assessment.chip) {
+        findings.insert(findings.end(), assessment.chip->findings.begin(), assessment.chip->findings.end());
+        const Filter& filter = design.receiver.filter;
+        const auto out = std::ranges::count_if(assessment.chip->zone_wavelength, [&](double wavelength) {
+            return std::abs(wavelength - filter.center) > filter.width / 2;
+        });
+        if (out > 0)
+            findings.push_back(
+                fmt::format("{} of {} zones have drifted out of the filter's band and send nothing back.",
+                            out, assessment.array.zones));
+    }
     std::size_t crowded = 0;
     for (const Return& entry : assessment.returns.list)
         crowded += entry.detection.background_rate * design.receiver.photon_counting.dead_time > 0.5;
@@ -103,18 +114,45 @@ Scene load_scene_of(const LoadedDesign& loaded) {
     }
 }
 
+std::optional<Chip> chip_of(const Design& design, const EmitterArray& array, const FiringPlan& plan) {
+    if (design.drive.by == DriveBy::data_sheet) return {};
+    return work_chip(design, array, plan);
+}
+
+// A pulse is brightest while the chip is cold: eye safety counts on that.
+SafetyVerdict judge_coldest(const Design& design, const EmitterArray& array, const std::optional<Chip>& chip,
+                            const Progress& progress) {
+    const Lit lit = light_up(design, array, chip ? &*chip : nullptr, &EmitterState::first_power);
+    return judge_safety(lit.design, lit.array, progress);
+}
+
+// What passes the receiver's filter: zones that have drifted out of its band do not.
+FarField received(FarField field, const Filter& filter, const std::optional<Chip>& chip) {
+    if (!chip) return field;
+    for (Beam& beam : field.beams)
+        if (std::abs(chip->zone_wavelength[beam.zone] - filter.center) > filter.width / 2) beam.power = 0;
+    return field;
+}
+
 Assessment work_through(const LoadedDesign& loaded, const Progress& progress) {
-    const Design& design = loaded.design;
     Assessment result;
-    result.array = build_array(design.emitters, field_sense(design.optics), loaded.folder);
+    const EmitterArray array =
+        build_array(loaded.design.emitters, field_sense(loaded.design.optics), loaded.folder);
+    result.plan = plan_firing(loaded.design, array);
+    result.drivers = count_drivers(loaded.design.emitters.addressing.scheme, array);
+    result.chip = chip_of(loaded.design, array, result.plan);
+    const Lit lit =
+        light_up(loaded.design, array, result.chip ? &*result.chip : nullptr, &EmitterState::power);
+    const Design& design = lit.design;
+    result.array = lit.array;
     result.packing = packing(design.emitters, result.array);
-    result.plan = plan_firing(design, result.array);
     result.average_power = average_power(result.plan, result.array, design.drive.peak_power);
     result.beams = project(result.array, design);
     const FarField field = far_field(result.beams);
 
     const Scene scene = load_scene_of(loaded);
-    const Link link = make_link(design, result.plan, field);
+    const FarField in_band = received(field, design.receiver.filter, result.chip);
+    const Link link = make_link(design, result.plan, in_band);
     const std::vector<PixelLight> lights = pixel_lights(link, progress);
     result.returns = cast_returns(link, scene, progress);
     refuse_blind_receiver(result.returns, lights);
@@ -127,7 +165,7 @@ Assessment work_through(const LoadedDesign& loaded, const Progress& progress) {
     result.points_on_object.assign(scene.objects.size(), 0);
     for (const Point& point : result.points) ++result.points_on_object[point.object];
 
-    result.safety = judge_safety(design, result.array, progress);
+    result.safety = judge_coldest(loaded.design, array, result.chip, progress);
     JudgedRequirements judged = judge_requirements(design, result, link, lights);
     result.requirements = std::move(judged.results);
     result.reaches = std::move(judged.reaches);
@@ -162,8 +200,11 @@ SafetyVerdict assess_safety(const LoadedDesign& loaded, const Progress& progress
     return with_places(loaded, [&] {
         const Design& design = loaded.design;
         const EmitterArray array = build_array(design.emitters, field_sense(design.optics), loaded.folder);
-        SafetyVerdict verdict = judge_safety(design, array, progress);
-        judge_faults(verdict, array, progress);
+        const std::optional<Chip> chip = chip_of(design, array, plan_firing(design, array));
+        SafetyVerdict verdict = judge_coldest(design, array, chip, progress);
+        judge_faults(verdict,
+                     light_up(design, array, chip ? &*chip : nullptr, &EmitterState::first_power).array,
+                     progress);
         return verdict;
     });
 }

@@ -39,14 +39,31 @@ Json requirements(const Assessment& assessment) {
 }
 
 Json chip(const Design& design, const Assessment& assessment) {
-    return {{"wavelength_m", design.emitters.wavelength},
-            {"emitters", assessment.array.size()},
-            {"zones", assessment.array.zones},
-            {"area_m2", assessment.packing.area},
-            {"density_per_m2", assessment.packing.density},
-            {"fill", assessment.packing.fill},
-            {"nearest_m", assessment.packing.nearest},
-            {"average_optical_power_W", assessment.average_power}};
+    Json json{{"wavelength_m", design.emitters.wavelength},
+              {"emitters", assessment.array.size()},
+              {"zones", assessment.array.zones},
+              {"area_m2", assessment.packing.area},
+              {"density_per_m2", assessment.packing.density},
+              {"fill", assessment.packing.fill},
+              {"nearest_m", assessment.packing.nearest},
+              {"average_optical_power_W", assessment.average_power},
+              {"channels", assessment.drivers.channels},
+              {"pads", assessment.drivers.pads}};
+    if (!assessment.chip) return json;
+    const Chip& worked = *assessment.chip;
+    json["current_A"] = worked.state.current;
+    json["peak_power_W"] = mean_power(worked.state);
+    json["electrical_power_W"] = worked.electrical_power;
+    json["heat_W"] = worked.heat;
+    json["hottest_zone"] = worked.hottest_zone;
+    json["hottest_junction_K"] = worked.zone_temperature[worked.hottest_zone];
+    json["droop"] = worked.droop;
+    json["dwell_droop"] = worked.dwell_droop;
+    json["channel_current_A"] = worked.driver.load.channel_current;
+    json["supply_V"] = worked.driver.supply;
+    json["rise_time_s"] = number(worked.driver.rise_time);
+    json["supply_power_W"] = worked.driver.electrical_power;
+    return json;
 }
 
 Json firing(const Assessment& assessment) {

@@ -29,6 +29,42 @@ std::string requirement_table(const Assessment& assessment) {
     return text;
 }
 
+// Current, heat and drivers.
+std::string drive_lines(const Design& design, const Assessment& assessment) {
+    const DriverCount& count = assessment.drivers;
+    std::string text =
+        fmt::format("Drivers   {}, {}, {}\n", counted(count.channels, "channel"),
+                    fmt::format("{} switched lines", count.switches), counted(count.pads, "pad"));
+    if (!assessment.chip) return text;
+    const Chip& chip = *assessment.chip;
+    const DriverState& driver = chip.driver;
+    const auto show = [](double value, Kind kind) { return show_quantity(value, kind); };
+    double coldest = 1e9, hottest = 0;
+    for (const EmitterState& emitter : chip.state.emitters) {
+        coldest = std::min(coldest, emitter.average_temperature);
+        hottest = std::max(hottest, emitter.average_temperature);
+    }
+    text += fmt::format("          {} a channel, {} the chip; supply {}, rise {}\n",
+                        show(driver.load.channel_current, Kind::current),
+                        show(driver.load.current, Kind::current), show(driver.supply, Kind::voltage),
+                        show(driver.rise_time, Kind::time));
+    text += fmt::format("          {} beside each channel, {} taken from the supply\n",
+                        show(driver.storage, Kind::capacitance), show(driver.electrical_power, Kind::power));
+    text += fmt::format("Diode     {} peak, {} peak, {:.0f} kA/cm2; {:.1f} % of the power becomes light\n",
+                        show(chip.state.current, Kind::current), show(mean_power(chip.state), Kind::power),
+                        current_density(chip.state.current, design.emitters.aperture) * 1e-7,
+                        100 * chip.optical_power / chip.electrical_power);
+    text += fmt::format("Heat      {} in the chip; junctions {} to {} on average,\n",
+                        show(chip.heat, Kind::power), show(coldest, Kind::temperature),
+                        show(hottest, Kind::temperature));
+    text += fmt::format("          up to {} at the end of a dwell (zone {})\n",
+                        show(chip.zone_temperature[chip.hottest_zone], Kind::temperature), chip.hottest_zone);
+    text += fmt::format(
+        "          light {:.1f} % less at the weakest emitter, {:.1f} % less by the end of a dwell\n",
+        100 * chip.droop, 100 * chip.dwell_droop);
+    return text;
+}
+
 std::string chip_section(const Design& design, const Assessment& assessment) {
     const Packing& packing = assessment.packing;
     const FiringPlan& plan = assessment.plan;
@@ -43,6 +79,7 @@ std::string chip_section(const Design& design, const Assessment& assessment) {
         "Power     {} peak, {} average, optical, at the chip\n",
         show_quantity(assessment.beams.emitted / assessment.array.zones * plan.zones_at_once, Kind::power),
         show_quantity(assessment.average_power, Kind::power));
+    text += drive_lines(design, assessment);
     for (const Loss& loss : assessment.beams.losses)
         text += fmt::format("          {:.1f} % lost {}\n", 100 * loss.power / assessment.beams.emitted,
                             loss.name);

@@ -31,12 +31,13 @@ EyeSafetyRequirement asked_of(const Design& design) {
 
 // Power that all emitters of the largest shot send out at the chip [W].
 double shot_power(const FiringPlan& plan, const EmitterArray& array, double peak_power) {
-    const ZoneMembers members = members_of(array);
-    int most = 0;
+    std::vector<double> of_zone(static_cast<std::size_t>(array.zones), 0.0);
+    for (std::size_t i = 0; i < array.size(); ++i) of_zone[array.zone_of[i]] += array.power_of(i);
+    double most = 0;
     for (int dwell = 0; dwell < plan.dwells(); ++dwell) {
-        int count = 0;
-        for (const int zone : plan.zones_of(dwell)) count += members.count(zone);
-        most = std::max(most, count);
+        double sum = 0;
+        for (const int zone : plan.zones_of(dwell)) sum += of_zone[zone];
+        most = std::max(most, sum);
     }
     return most * peak_power;
 }

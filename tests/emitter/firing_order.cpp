@@ -121,7 +121,7 @@ TEST_CASE("serpentine turns every other row of zones around") {
 TEST_CASE("zones without rows have no serpentine order") {
     CHECK_THROWS_WITH_AS((void)order_zones({.order = FiringOrder::serpentine}, scattered(100e-6, 20e-6)),
                          "firing/order: zones that form no rows and columns have no serpentine order; "
-                         "accepted: raster, stride, bit_reversed, farthest_next or shuffled",
+                         "accepted: raster, stride, bit_reversed, farthest_next, shuffled or best",
                          Error);
 }
 

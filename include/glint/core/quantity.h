@@ -24,6 +24,10 @@ enum class Kind {
     charge,
     temperature,
     thermal_resistance,
+    temperature_difference,
+    thermal_conductivity,
+    slope_efficiency,  ///< light over current
+    wavelength_drift,
     illuminance,
     irradiance,
     radiant_intensity,

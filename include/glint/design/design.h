@@ -48,31 +48,81 @@ struct Lobe {
     bool operator==(const Lobe&) const = default;
 };
 
+/// The laser diode of one emitter. What is not set comes from fits to its aperture, see diode_preset().
+struct DiodeSettings {
+    int junctions = 1;                            ///< in series
+    std::optional<double> threshold;              ///< lowest threshold current [A]
+    std::optional<double> threshold_temperature;  ///< where it is lowest [K]
+    std::optional<double> threshold_width;        ///< twice as high this far from there [K]
+    std::optional<double> slope;                  ///< of all junctions at 25 degC [W/A]
+    std::optional<double> slope_fall;             ///< rise above 25 degC at which no slope is left [K]
+    std::optional<double> voltage;                ///< at zero current and 25 degC [V]
+    std::optional<double> resistance;             ///< in series [ohm]
+    bool operator==(const DiodeSettings&) const = default;
+};
+
+/// Where the heat of the chip goes.
+struct HeatSettings {
+    double sink_temperature = 298.15;     ///< [K]
+    double substrate_thickness = 100e-6;  ///< [m]
+    double conductivity = 46;             ///< of the substrate [W/(m K)]
+    double self_conductivity = 25.5;      ///< below each emitter [W/(m K)]
+    double package_resistance = 10;       ///< from the chip's far side to the sink [K/W]
+    double pulse_heating = 1;             ///< factor on the heating by short pulses
+    double wavelength_drift = 0.07e-9;    ///< from 25 degC on [m/K]
+    bool operator==(const HeatSettings&) const = default;
+};
+
 struct Emitters {
-    double wavelength = 0;  ///< [m]
+    double wavelength = 0;  ///< at 25 degC [m]
     double aperture = 0;    ///< diameter of one emitter [m]
     std::optional<double>
         near_field_radius;  ///< 1/e2 radius at the emitter [m]; half the aperture when not set
     Layout layout;
     Addressing addressing;
     Lobe lobe;
+    DiodeSettings diode;
+    HeatSettings heat;
     bool operator==(const Emitters&) const = default;
+};
+
+enum class DriveBy { data_sheet, current, power };
+enum class PulseShape { rectangular, half_sine, gaussian };
+enum class DriverKind { ramp, resonant };
+
+/// What drives a channel: a switch that ramps the current up through the loop, or a capacitor discharged into
+/// it.
+struct DriverSettings {
+    DriverKind kind = DriverKind::ramp;
+    double loop_inductance = 1e-9;    ///< of one channel [H]
+    double loop_resistance = 0.1;     ///< without the emitters [ohm]
+    std::optional<double> supply;     ///< [V]; what is needed is worked out when not set
+    std::optional<double> rise_time;  ///< ramp: asked for [s]; a third of the pulse when not set
+    double droop = 0.05;  ///< ramp: share of the supply that the storage capacitor may lose in a dwell
+    bool operator==(const DriverSettings&) const = default;
 };
 
 /// What one emitter is driven to.
 struct DriveSettings {
-    double peak_power = 0;   ///< optical, of one emitter [W]
-    double pulse_width = 0;  ///< of a rectangular pulse [s]
+    DriveBy by = DriveBy::data_sheet;
+    double peak_power = 0;   ///< optical, of one emitter [W]; by power: the mean over all emitters
+    double current = 0;      ///< by current: peak, of one emitter [A]
+    double pulse_width = 0;  ///< full width at half maximum [s]
+    PulseShape shape = PulseShape::rectangular;
+    DriverSettings driver;
     bool operator==(const DriveSettings&) const = default;
 };
 
-enum class FiringOrder { raster, serpentine, stride, bit_reversed, farthest_next, shuffled };
+enum class FiringOrder { raster, serpentine, stride, bit_reversed, farthest_next, shuffled, best };
 
 /// When which zone fires.
 struct Firing {
     FiringOrder order = FiringOrder::raster;
     int stride = 1;  ///< stride: zones from one that fires to the next
-    int seed = 1;    ///< shuffled
+    int seed = 1;    ///< shuffled, best
+    double exposure_weight = 1;  ///< best: of each score, see OrderScore
+    double heat_weight = 1;
+    double spacing_weight = 1;
     int zones_at_once = 1;
     int shots = 1;                       ///< per dwell
     double repetition = 0;               ///< of the shots of a dwell [Hz]

@@ -21,7 +21,12 @@ struct EmitterArray {
     int zone_columns = 0;  ///< and columns
     int rows = 0;          ///< rows of emitters, 0 when they form no raster
     int columns = 0;       ///< emitters in a row
+    /// [n] peak power over the design's, mean 1; empty while all emitters are taken to send the same.
+    std::vector<double> relative_power;
 
+    [[nodiscard]] double power_of(std::size_t emitter) const {
+        return relative_power.empty() ? 1 : relative_power[emitter];
+    }
     [[nodiscard]] std::size_t size() const { return positions.size(); }
 };
 

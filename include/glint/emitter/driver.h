@@ -113,9 +113,6 @@ struct ChargedCapacitor {
 /// Error: a pulse so long that this loop would be damped to 1 or more.
 [[nodiscard]] ChargedCapacitor capacitor_for(const DriveLoop& loop, double fwhm, double peak);
 
-/// The shape of a light pulse over time. half_sine: half a wave of a sine.
-enum class PulseShape { rectangular, half_sine, gaussian };
-
 /// Energy over peak power [s]: the width of the rectangular pulse of the same energy and peak. In units of
 /// the FWHM: 1, 3/pi = 0.955 and sqrt(pi / (4 ln 2)) = 1.064.
 [[nodiscard]] double equivalent_width(PulseShape shape, double fwhm);

@@ -4,6 +4,7 @@
 #include <glint/core/quantity.h>
 #include <glint/design/load.h>
 #include <glint/emitter/array.h>
+#include <glint/emitter/chip.h>
 #include <glint/emitter/firing.h>
 #include <glint/optics/beam.h>
 #include <glint/optics/far_field.h>
@@ -11,6 +12,7 @@
 #include <glint/ranging/reach.h>
 #include <glint/ranging/returns.h>
 #include <glint/safety/verdict.h>
+#include <optional>
 #include <string>
 #include <vector>
 
@@ -67,6 +69,8 @@ struct Assessment {
     EmitterArray array;
     Packing packing;
     FiringPlan plan;
+    DriverCount drivers;
+    std::optional<Chip> chip;  ///< unless driven by data_sheet
     Beams beams;
     double average_power = 0;  ///< optical, of the chip [W]
     std::vector<ZoneReport> zones;
