@@ -26,7 +26,8 @@ int run(const Options& options) {
                                       {"zones.csv", zones_csv(assessment)},
                                       {"points.ply", points_ply(assessment.points, assessment.object_names)}};
         for (const View& view : views())
-            files.push_back({"preview-" + view.name + ".png", png(view.draw(design, assessment))});
+            if (drawable(view, assessment))
+                files.push_back({"preview-" + view.name + ".png", png(view.draw(design, assessment))});
         write_files(options.out, files);
     }
     if (!options.quiet) fmt::print("{}", verdict_text(design, assessment));

@@ -26,6 +26,11 @@ int run(const Options& options) {
         throw Error(Problem{
             .what = "there is no view '" + options.view + "'", .accepted = join_or(names), .path = "--view"});
     const AssessedDesign done_with = assess_design(options);
+    if (!drawable(*chosen, done_with.assessment))
+        throw Error(Problem{.what = "the view " + chosen->name +
+                                    " shows what a diode does, but the design is driven by data_sheet",
+                            .accepted = "drive by=\"current\" or by=\"power\", or another view",
+                            .path = "drive/by"});
     write_file(options.out, png(chosen->draw(done_with.loaded.design, done_with.assessment)));
     return Exit::done;
 }

@@ -100,8 +100,8 @@ double inner_density(const std::vector<Vec2>& positions) {
     return weights / (size.prod() / 4);  // the mean of cos2 is a half, each way
 }
 
-// Greatest correlation of each dot's neighbourhood with any other on its line. In coordinates along and across
-// the line.
+// Greatest correlation of each dot's neighbourhood with any other on its line. In coordinates along and
+// across the line.
 std::vector<double> worst_correlations(const Cells& cells, const DotSearch& search) {
     const std::vector<Vec2>& dots = cells.dots;
     const Vec2 half = Vec2(search.window_width, search.window_height) / 2;
@@ -115,8 +115,7 @@ std::vector<double> worst_correlations(const Cells& cells, const DotSearch& sear
         });
     };
     std::vector<int> counts(dots.size(), 0);
-    for (std::size_t i = 0; i < dots.size(); ++i)
-        neighbours(dots[i], [&](const Vec2&) { ++counts[i]; });
+    for (std::size_t i = 0; i < dots.size(); ++i) neighbours(dots[i], [&](const Vec2&) { ++counts[i]; });
 
     std::vector<double> worst(dots.size(), 0);
     std::vector<Vec2> offsets;
@@ -155,12 +154,12 @@ void require_sound(const DotSearch& search, double nearest) {
                             .accepted = "a unit vector"});
     // Two dots closer together could both be the same as a third.
     if (!(search.tolerance > 0 && search.tolerance < nearest / 2))
-        throw Error(Problem{
-            .what = fmt::format("a tolerance of {} finds no dot again, or takes two for one",
-                                show_quantity(search.tolerance, Kind::length)),
-            .accepted = std::isfinite(nearest) ? fmt::format("above 0 and below half the smallest spacing, {}",
-                                                             show_quantity(nearest / 2, Kind::length))
-                                               : "above 0"});
+        throw Error(Problem{.what = fmt::format("a tolerance of {} finds no dot again, or takes two for one",
+                                                show_quantity(search.tolerance, Kind::length)),
+                            .accepted = std::isfinite(nearest)
+                                            ? fmt::format("above 0 and below half the smallest spacing, {}",
+                                                          show_quantity(nearest / 2, Kind::length))
+                                            : "above 0"});
 }
 
 }  // namespace

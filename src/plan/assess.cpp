@@ -1,4 +1,5 @@
 // One design worked through from the emitter to the verdict.
+#include <glint/emitter/layout.h>
 #include <glint/plan/assess.h>
 #include <glint/plan/requirements.h>
 #include <glint/scene/scene_file.h>
@@ -119,6 +120,16 @@ std::optional<Chip> chip_of(const Design& design, const EmitterArray& array, con
     return work_chip(design, array, plan);
 }
 
+// Along the line from emitter to receiver, in windows that hold some tens of dots.
+DotSearch dot_search(const Design& design, const EmitterArray& array) {
+    const double spacing = nearest_distance(array.positions);
+    const Vec2 baseline(design.receiver.right, design.receiver.up);
+    return {.window_width = 6 * spacing,
+            .window_height = 6 * spacing,
+            .line = baseline.norm() > 0 ? Vec2(baseline.normalized()) : Vec2::UnitX(),
+            .tolerance = 0.2 * spacing};
+}
+
 // A pulse is brightest while the chip is cold: eye safety counts on that.
 SafetyVerdict judge_coldest(const Design& design, const EmitterArray& array, const std::optional<Chip>& chip,
                             const Progress& progress) {
@@ -139,6 +150,10 @@ Assessment work_through(const LoadedDesign& loaded, const Progress& progress) {
     const EmitterArray array =
         build_array(loaded.design.emitters, field_sense(loaded.design.optics), loaded.folder);
     result.plan = plan_firing(loaded.design, array);
+    if (loaded.design.emitters.layout.kind == LayoutKind::scattered && array.size() > 1)
+        result.dots = judge_dots(array.positions, dot_search(loaded.design, array));
+    result.order = score_order(result.plan.zones, loaded.design.firing, zone_middles(array),
+                               substrate_of(loaded.design.emitters.heat));
     result.drivers = count_drivers(loaded.design.emitters.addressing.scheme, array);
     result.chip = chip_of(loaded.design, array, result.plan);
     const Lit lit =

@@ -1,6 +1,4 @@
 // Pictures of the chip: how warm its emitters are, and when its zones fire.
-#include "report/hull.h"
-
 #include <glint/core/constants.h>
 #include <glint/core/error.h>
 #include <glint/core/quantity.h>
@@ -11,7 +9,6 @@
 
 #include <fmt/format.h>
 #include <algorithm>
-#include <array>
 #include <cmath>
 
 namespace glint {
@@ -28,75 +25,108 @@ std::string title_of(const std::string& name, const std::string& what) {
 void require_temperatures(const EmitterArray& array, std::span<const double> temperature) {
     const auto finite = [](double t) { return std::isfinite(t); };
     if (array.size() == 0 || temperature.size() != array.size() || !std::ranges::all_of(temperature, finite))
-        throw Error(Problem{.what = fmt::format("a map of {} was given {}",
-                                                counted(static_cast<long>(array.size()), "emitter"),
-                                                counted(static_cast<long>(temperature.size()), "temperature")),
-                            .accepted = "a finite temperature for each emitter and at least one emitter"});
+        throw Error(Problem{
+            .what =
+                fmt::format("a map of {} was given {}", counted(static_cast<long>(array.size()), "emitter"),
+                            counted(static_cast<long>(temperature.size()), "temperature")),
+            .accepted = "a finite temperature for each emitter and at least one emitter"});
 }
 
 // The chip in the unit that suits it.
 struct ChipView {
-    double scale = 1;           // units a metre
-    double spacing = 0;         // of neighbours [units]
-    Axis horizontal, vertical;  // with a margin around the emitters
+    double scale = 1;    // units a metre
+    double spacing = 0;  // of the nearest two emitters [units]
+    double typical = 0;  // side of the square that an emitter has on average; `spacing` if that is more
+    Axis horizontal, vertical;  // with room around the emitters
 };
 
 ChipView view_of(const EmitterArray& array) {
     Vec2 low = array.positions.front(), high = low;
     for (const Vec2& p : array.positions) low = low.cwiseMin(p), high = high.cwiseMax(p);
-    const double nearest = nearest_distance(array.positions);
-    const double longest = (high - low).maxCoeff(), alone = longest > 0 ? longest : 20e-6;
-    const double rim = std::max(0.05 * alone, 0.8 * nearest);
-    const double word = std::max(0.09 * alone, 0.8 * nearest);  // room over the chip for the word on it
+    const bool lone = array.size() == 1;  // any size will do
+    const double nearest = lone ? 20e-6 : nearest_distance(array.positions);
+    const double longest = lone ? 240e-6 : (high - low).maxCoeff();
+    const double cell = std::sqrt((high - low).prod() / static_cast<double>(array.size()));
+    const double typical = std::clamp(cell, nearest, 3 * nearest);
+    // Room for the outline, and above for the word on it; a narrow chip gets a quarter of its length.
+    const Vec2 middle = (low + high) / 2, least = Vec2::Constant(longest / 8);
+    const double rim = std::max(0.05 * longest, 1.5 * typical);
+    low -= Vec2::Constant(rim);
+    high += Vec2(rim, 0.07 * longest + 1.3 * typical);
+    low = low.cwiseMin(middle - least), high = high.cwiseMax(middle + least);
     const bool millimetres = longest >= 1e-3;
-    ChipView view{.scale = millimetres ? 1e3 : 1e6, .spacing = 0, .horizontal = {}, .vertical = {}};
-    view.spacing = (nearest > 0 ? nearest : alone) * view.scale;
+    const double scale = millimetres ? 1e3 : 1e6;
     const std::string unit = millimetres ? "mm" : "µm";
-    view.horizontal = {.label = "Horizontal place",
+    return {
+        .scale = scale,
+        .spacing = nearest * scale,
+        .typical = typical * scale,
+        .horizontal = {.label = "Horizontal place",
                        .unit = unit,
-                       .range = {(low.x() - rim) * view.scale, (high.x() + rim) * view.scale}};
-    view.vertical = {.label = "Vertical place",
-                     .unit = unit,
-                     .range = {(low.y() - rim) * view.scale, (high.y() + word) * view.scale}};
-    return view;
+                       .range = {low.x() * scale, high.x() * scale}},
+        .vertical = {.label = "Vertical place", .unit = unit, .range = {low.y() * scale, high.y() * scale}}};
 }
 
-bool inside(const std::vector<Vec2>& convex, const Vec2& point) {
-    bool left = true, right = true;
-    for (std::size_t i = 0; i < convex.size(); ++i) {
-        const Vec2 edge = convex[(i + 1) % convex.size()] - convex[i], way = point - convex[i];
-        const double turn = edge.x() * way.y() - edge.y() * way.x();
-        left = left && turn >= 0, right = right && turn <= 0;
-    }
-    return left || right;
-}
-
-// Outlines a zone: neighbours together, or each emitter when others lie between them. Returns what it covers.
+// Outlines a zone: half way to the emitters of other zones, and `reach` around it where there are none.
+// Returns what it may cover.
 PageBox outline_zone(Canvas& canvas, const EmitterArray& array, const std::vector<Vec2>& places, int zone,
-                     double radius) {
-    std::vector<Vec2> corners, members;
+                     double spacing, double reach) {
+    constexpr double half_line = 0.9;
+    // A light rim keeps the line visible on emitters of any colour; where they are small it would hide them.
+    const double half_rim = half_line + std::min(1.3, 0.05 * spacing), seen = reach + half_rim + 1;
     PageBox box{1e300, 1e300, -1e300, -1e300};
+    for (std::size_t i = 0; i < places.size(); ++i)
+        if (array.zone_of[i] == zone)
+            box = {std::min(box.left, places[i].x()), std::min(box.top, places[i].y()),
+                   std::max(box.right, places[i].x()), std::max(box.bottom, places[i].y())};
+    // The nearest emitters around each pixel, of the zone and of others; -1: none is near.
+    struct Nearest {
+        int own = -1, other = -1;
+    };
+    const double density = canvas.density();
+    const auto first_pixel = [&](double at) { return static_cast<int>(std::floor((at - seen) * density)); };
+    const int left = first_pixel(box.left), top = first_pixel(box.top);
+    const int columns = static_cast<int>((box.width() + 2 * seen) * density) + 2,
+              rows = static_cast<int>((box.height() + 2 * seen) * density) + 2;
+    std::vector<Nearest> nearest(static_cast<std::size_t>(columns) * rows);
+    const auto pixel_middle = [&](int row, int column) {
+        return Vec2((left + column + 0.5) / density, (top + row + 0.5) / density);
+    };
+    const int span = static_cast<int>(2 * seen * density) + 2;
     for (std::size_t i = 0; i < places.size(); ++i) {
-        if (array.zone_of[i] != zone) continue;
-        const PageBox around = PageBox{places[i].x(), places[i].y(), places[i].x(), places[i].y()}.grown(radius);
-        box = {std::min(box.left, around.left), std::min(box.top, around.top),
-               std::max(box.right, around.right), std::max(box.bottom, around.bottom)};
-        members.push_back(places[i]);
-        for (const Vec2& corner : around.corners()) corners.push_back(corner);
+        const int from_column = first_pixel(places[i].x()) - left,
+                  from_row = first_pixel(places[i].y()) - top;
+        for (int row = std::max(0, from_row); row < std::min(rows, from_row + span); ++row)
+            for (int column = std::max(0, from_column); column < std::min(columns, from_column + span);
+                 ++column) {
+                Nearest& here = nearest[static_cast<std::size_t>(row) * columns + column];
+                int& held = array.zone_of[i] == zone ? here.own : here.other;
+                const Vec2 at = pixel_middle(row, column);
+                if (held < 0 || (places[i] - at).squaredNorm() < (places[held] - at).squaredNorm())
+                    held = static_cast<int>(i);
+            }
     }
-    const std::vector<Vec2> hull = convex_hull_of(std::move(corners));
-    bool together = true;
-    for (std::size_t i = 0; i < places.size() && together; ++i)
-        together = array.zone_of[i] == zone || !inside(hull, places[i]);
-    // A light rim keeps the line visible on emitters of any colour.
-    for (const Pen& pen : {Pen{.colour = with_alpha(palette::background, 0.9), .width = 4.4, .dashes = {}},
-                           Pen{.colour = palette::ink, .width = 1.8, .dashes = {}}}) {
-        if (together)
-            canvas.polyline(hull, pen, true);
-        else
-            for (const Vec2& member : members) canvas.circle(member, radius, pen);
-    }
-    return box;
+    for (int row = 0; row < rows; ++row)
+        for (int column = 0; column < columns; ++column) {
+            const Nearest& here = nearest[static_cast<std::size_t>(row) * columns + column];
+            if (here.own < 0) continue;
+            const Vec2 own = places[here.own] - pixel_middle(row, column);
+            double inward = reach - own.norm();  // distance from the line
+            if (here.other >= 0) {
+                const Vec2 other = places[here.other] - pixel_middle(row, column);
+                // From the line half way between the two; farther off, others may lie between them.
+                const double farther = std::abs(other.norm() - own.norm()) - spacing / 2;
+                const double half_way =
+                    (other.squaredNorm() - own.squaredNorm()) / (2 * (other - own).norm());
+                inward = std::min(inward, std::copysign(std::max(std::abs(half_way), farther), half_way));
+            }
+            const auto covered = [&](double half) {
+                return std::clamp((half - std::abs(inward)) * density + 0.5, 0.0, 1.0);
+            };
+            canvas.pixel(left + column, top + row, palette::background, 0.9 * covered(half_rim));
+            canvas.pixel(left + column, top + row, palette::ink, covered(half_line));
+        }
+    return box.grown(reach);
 }
 
 // Writes a word over a box, or under it without room there.
@@ -105,13 +135,11 @@ void label_box(Canvas& canvas, const PageBox& plot, const PageBox& box, const st
     const FontHeights heights = font_heights(style.size);
     constexpr double gap = 5;
     const double half = text_width(word, style.size, style.weight) / 2 + gap;
-    // On a chip narrower than the word it runs over both sides.
-    const double left = plot.left + half, right = std::max(left, plot.right - half);
+    const double middle = plot.centre().x(), room = std::max(0.0, plot.width() / 2 - half);
     const double over = box.top - heights.descent - gap, under = box.bottom + heights.ascent + gap;
-    const Vec2 at{std::clamp(box.centre().x(), left, right),
-                  over - heights.ascent > plot.top + 2
-                      ? over
-                      : std::min(under, plot.bottom - heights.descent - gap)};
+    const Vec2 at{
+        std::clamp(box.centre().x(), middle - room, middle + room),
+        over - heights.ascent > plot.top + 2 ? over : std::min(under, plot.bottom - heights.descent - gap)};
     canvas.fill_box(text_box(at, word, style).grown(2), with_alpha(palette::background, 0.9));
     canvas.text(at, word, style);
 }
@@ -140,14 +168,14 @@ std::string shown_time(double value) {
 constexpr Colour first_dwell_colour = palette::categories[1], other_dwell_colour = palette::categories[2];
 constexpr Colour gap_colour = rgb8(214, 218, 224);
 
-// A bar on whole pixels, at least one each way.
-void draw_bar(Canvas& canvas, const Frame& frame, const Vec2& low, const Vec2& high, const Colour& colour) {
-    const Vec2 a = frame.place(low) * canvas.density(), b = frame.place(high) * canvas.density();
-    const double left = std::floor(std::min(a.x(), b.x())), top = std::floor(std::min(a.y(), b.y()));
-    const double right = std::max(left + 1, std::round(std::max(a.x(), b.x()))),
-                 bottom = std::max(top + 1, std::round(std::max(a.y(), b.y())));
-    canvas.fill_box({left / canvas.density(), top / canvas.density(), right / canvas.density(),
-                     bottom / canvas.density()},
+// A bar on whole pixels, at least `least` units each way.
+void draw_bar(Canvas& canvas, const Frame& frame, const Vec2& low, const Vec2& high, const Colour& colour,
+              double least = 1) {
+    const Vec2 a = frame.place(low), b = frame.place(high);
+    const auto whole = [&](double at) { return std::round(at * canvas.density()) / canvas.density(); };
+    const double left = whole(std::min(a.x(), b.x())), top = whole(std::min(a.y(), b.y()));
+    canvas.fill_box({left, top, std::max(left + least, whole(std::max(a.x(), b.x()))),
+                     std::max(top + least, whole(std::max(a.y(), b.y())))},
                     colour);
 }
 
@@ -167,7 +195,7 @@ struct CloseUp {
 };
 
 CloseUp close_up(const FiringPlan& plan) {
-    constexpr int most_shots = 150;  // five units each across the page: more would run together
+    constexpr int most_shots = 200;  // four units each across the page: more would run together
     const double length = plan.dwell_length();
     CloseUp part;
     part.next = plan.dwells() > 1 ? plan.start[1] - plan.start[0] : plan.frame_period;
@@ -178,7 +206,8 @@ CloseUp close_up(const FiringPlan& plan) {
     const double seen = length - part.from;
     // A gap that would leave the shots no room is cut.
     part.next_is_seen = part.gap <= seen;
-    part.to = part.next_is_seen ? part.next + std::max(0.1 * seen, 1.3 * plan.shot_period) : length + 0.4 * seen;
+    part.to =
+        part.next_is_seen ? part.next + std::max(0.1 * seen, 1.3 * plan.shot_period) : length + 0.4 * seen;
     part.from -= 0.02 * seen;
     return part;
 }
@@ -187,10 +216,11 @@ FrameContent frame_content(const std::string& name, const FiringPlan& plan) {
     const double zones = static_cast<double>(plan.zones.size());
     const CloseUp part = close_up(plan);
     FrameContent content;
-    content.heading = {.title = title_of(name, "Firing times of one frame"),
-                       .subtitle = fmt::format(
-                           "{}, {} at once; {} of {}", counted(static_cast<long>(plan.zones.size()), "zone"),
-                           plan.zones_at_once, counted(plan.dwells(), "dwell"), shown_time(plan.dwell_length()))};
+    content.heading = {
+        .title = title_of(name, "Firing times of one frame"),
+        .subtitle = fmt::format("{}, {} at once; {} of {}",
+                                counted(static_cast<long>(plan.zones.size()), "zone"), plan.zones_at_once,
+                                counted(plan.dwells(), "dwell"), shown_time(plan.dwell_length()))};
     if (plan.dwells() > 1)
         content.heading.subtitle +=
             part.gap > 0 ? fmt::format(" with gaps of {}", shown_time(part.gap)) : " without gaps";
@@ -199,9 +229,8 @@ FrameContent frame_content(const std::string& name, const FiringPlan& plan) {
     content.horizontal = {
         .label = "Time in the frame", .unit = unit.symbol, .range = {0, plan.frame_period * unit.scale}};
     content.vertical = {.label = "Zone", .unit = "", .range = {zones - 0.25, -0.75}};
-    content.legend.push_back({.name = "First dwell, shown below",
-                              .colour = first_dwell_colour,
-                              .sign = LegendEntry::Sign::box});
+    content.legend.push_back(
+        {.name = "First dwell, shown below", .colour = first_dwell_colour, .sign = LegendEntry::Sign::box});
     if (plan.dwells() > 1)
         content.legend.push_back(
             {.name = "Other dwells", .colour = other_dwell_colour, .sign = LegendEntry::Sign::box});
@@ -212,12 +241,12 @@ void draw_frame_of_dwells(Canvas& canvas, const Frame& frame, const FiringPlan& 
     const double scale = unit_for(plan.frame_period).scale;
     canvas.clip(frame.plot);
     draw_ground(canvas, frame);
-    // The first dwell comes last: no other may hide it where bars share a pixel.
+    // The first dwell comes last and larger: among thousands it would not be found.
     for (int dwell = plan.dwells() - 1; dwell >= 0; --dwell)
         for (const int zone : plan.zones_of(dwell))
             draw_bar(canvas, frame, {plan.start[dwell] * scale, zone - 0.4},
                      {(plan.start[dwell] + plan.dwell_length()) * scale, zone + 0.4},
-                     dwell == 0 ? first_dwell_colour : other_dwell_colour);
+                     dwell == 0 ? first_dwell_colour : other_dwell_colour, dwell == 0 ? 4 : 1);
     canvas.clip(std::nullopt);
     draw_surround(canvas, frame);
 }
@@ -231,26 +260,24 @@ FrameContent dwell_content(const FiringPlan& plan) {
                        .note = picture_note};
     if (plan.shots > 1) content.heading.subtitle += ", one every " + shown_time(plan.shot_period);
     if (part.first_shot > 0)
-        content.heading.subtitle += fmt::format("; the last {} shots", plan.shots - part.first_shot);
+        content.heading.subtitle += fmt::format("; its last {} are shown", plan.shots - part.first_shot);
     const TimeUnit unit = unit_for(part.to);
     content.horizontal = {.label = "Time from the first shot of the dwell",
                           .unit = unit.symbol,
                           .range = {part.from * unit.scale, part.to * unit.scale}};
-    content.vertical = {.label = "Power over peak", .unit = "", .range = {0, 1.2}};
+    content.vertical = {.label = "Power/peak", .unit = "", .range = {0, 1.2}};
     const std::string next = plan.dwells() > 1 ? "next dwell" : "next frame";
-    content.legend.push_back(
-        {.name = "Shots", .colour = first_dwell_colour, .sign = LegendEntry::Sign::box});
+    content.legend.push_back({.name = "Shots", .colour = first_dwell_colour, .sign = LegendEntry::Sign::box});
     if (part.gap > 0)
-        content.legend.push_back(
-            {.name = fmt::format("Gap of {} to the {}{}", shown_time(part.gap), next,
-                                 part.next_is_seen ? "" : ", not shown to its end"),
-             .colour = gap_colour,
-             .sign = LegendEntry::Sign::box});
+        content.legend.push_back({.name = fmt::format("Gap of {} to the {}{}", shown_time(part.gap), next,
+                                                      part.next_is_seen ? "" : ", not shown to its end"),
+                                  .colour = gap_colour,
+                                  .sign = LegendEntry::Sign::box});
     if (part.next_is_seen)
-        content.legend.push_back(
-            {.name = fmt::format("Shots of the {}: {}", next, zones_in_words(plan, plan.dwells() > 1 ? 1 : 0)),
-             .colour = other_dwell_colour,
-             .sign = LegendEntry::Sign::box});
+        content.legend.push_back({.name = fmt::format("Shots of the {}: {}", next,
+                                                      zones_in_words(plan, plan.dwells() > 1 ? 1 : 0)),
+                                  .colour = other_dwell_colour,
+                                  .sign = LegendEntry::Sign::box});
     return content;
 }
 
@@ -287,22 +314,26 @@ Canvas junction_map_picture(const std::string& name, const EmitterArray& array,
                          .vertical = view.vertical,
                          .aspect = 1};
     content.heading.subtitle = fmt::format(
-        "{} in {}, {:.1f} to {:.1f} °C; the chip seen from behind the module. Dots are not the size of "
+        "{} in {} at {:.1f} to {:.1f} °C; the chip seen from behind the module. Dots are not the size of "
         "apertures.",
-        counted(static_cast<long>(array.size()), "emitter"), counted(array.zones, "zone"), *coolest, *hottest);
+        counted(static_cast<long>(array.size()), "emitter"), counted(array.zones, "zone"), *coolest,
+        *hottest);
     content.colours = settle({.label = "Junction temperature", .unit = "°C", .range = {}}, celsius);
     const auto [page, frame] = fit_page({}, content);
     Canvas canvas(page.width, page.height, page.density);
     canvas.clip(frame.plot);
     draw_ground(canvas, frame);
-    const double spacing = (frame.place({view.spacing, 0}) - frame.place({0, 0})).x();
-    const double radius = std::max(0.4 * spacing, 0.5 / canvas.density());
+    const double units = frame.plot.width() / (view.horizontal.range.high - view.horizontal.range.low);
+    const double spacing = view.spacing * units;
+    // Dots of a few pixels would be paled by the page between them: they touch.
+    const double radius =
+        std::max(spacing * canvas.density() < 3 ? 0.75 * spacing : 0.4 * spacing, 0.5 / canvas.density());
     std::vector<Vec2> places;
     for (const Vec2& p : array.positions) places.push_back(frame.place(p * view.scale));
     for (std::size_t i = 0; i < places.size(); ++i)
         canvas.fill_disc(places[i], radius, content.colours->of(celsius[i]));
-    const PageBox box = outline_zone(canvas, array, places, zone, radius + std::min(2.0, 0.1 * spacing));
-    label_box(canvas, frame.plot, box.grown(2), fmt::format("zone {}: {:.1f} °C", zone, *hottest));
+    const PageBox box = outline_zone(canvas, array, places, zone, spacing, 1.25 * view.typical * units + 2);
+    label_box(canvas, frame.plot, box, fmt::format("zone {}: {:.1f} °C", zone, *hottest));
     canvas.clip(std::nullopt);
     draw_surround(canvas, frame);
     return canvas;
@@ -312,7 +343,7 @@ Canvas firing_times_picture(const std::string& name, const FiringPlan& plan) {
     if (plan.zones.empty() || plan.start.empty())
         throw Error(Problem{.what = "a firing plan without a dwell has no times to show",
                             .accepted = "at least one zone"});
-    constexpr double width = 900, below = 215, density = 2, highest_row = 36;
+    constexpr double width = 900, below = 240, density = 2, highest_row = 36;
     double above = 445;
     const FrameContent dwells = frame_content(name, plan);
     Frame upper = lay_out({0, 0, width, above}, dwells);

@@ -2,6 +2,7 @@
 #include <glint/core/constants.h>
 #include <glint/core/text.h>
 #include <glint/optics/receiver.h>
+#include <glint/report/chip_pictures.h>
 #include <glint/report/point_view.h>
 #include <glint/report/previews.h>
 #include <glint/report/safety_pictures.h>
@@ -136,8 +137,24 @@ std::span<const View> views() {
         View{"safety-map", "emission over limit, over the field",
              [](const Design& design, const Assessment& assessment) {
                  return safety_map_picture(design, assessment.safety);
-             }}};
+             }},
+        View{"firing-times", "which zone fires when, over one frame and one dwell",
+             [](const Design& design, const Assessment& assessment) {
+                 return firing_times_picture(design.name, assessment.plan);
+             }},
+        View{"junction-map", "the junction temperature of every emitter at the end of its dwell",
+             [](const Design& design, const Assessment& assessment) {
+                 std::vector<double> temperature;
+                 for (const EmitterState& emitter : assessment.chip->state.emitters)
+                     temperature.push_back(emitter.last_temperature);
+                 return junction_map_picture(design.name, assessment.array, temperature);
+             },
+             true}};
     return list;
+}
+
+bool drawable(const View& view, const Assessment& assessment) {
+    return !view.needs_diode || assessment.chip.has_value();
 }
 
 Canvas points_picture(const Design& design, const Assessment& assessment) {

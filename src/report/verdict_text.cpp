@@ -71,10 +71,19 @@ std::string chip_section(const Design& design, const Assessment& assessment) {
     std::string text = fmt::format(
         "Chip      {} emitters of {}, {:.0f} per mm2, {:.1f} % fill\n", assessment.array.size(),
         show_quantity(design.emitters.aperture, Kind::length), packing.density * 1e-6, 100 * packing.fill);
+    if (assessment.dots)
+        text += fmt::format(
+            "Dots      {} apart at least, {:.0f} % as dense as a hexagonal lattice could be,\n          "
+            "{:.0f} % with a neighbourhood of its own "
+            "along the line to the receiver\n",
+            show_quantity(assessment.dots->nearest, Kind::length), 100 * assessment.dots->share_of_hexagonal,
+            100 * assessment.dots->uniqueness);
     text += fmt::format("Firing    {} in {} of {}, frame {}, {:.3g} Hz\n",
                         counted(assessment.array.zones, "zone"), counted(plan.dwells(), "dwell"),
                         counted(plan.shots, "shot"), show_quantity(plan.frame_period, Kind::time),
                         1 / plan.frame_period);
+    text += fmt::format("          order: spacing {:.2f}, heat {:.3f}, exposure {:.2f}; smaller is better\n",
+                        assessment.order.spacing, assessment.order.heat, assessment.order.exposure);
     text += fmt::format(
         "Power     {} peak, {} average, optical, at the chip\n",
         show_quantity(assessment.beams.emitted / assessment.array.zones * plan.zones_at_once, Kind::power),

@@ -87,7 +87,8 @@ Plain plain_judgement(const std::vector<Vec2>& positions, const DotSearch& searc
             int same = 0;
             for (const Vec2& a : windows[i])
                 for (const Vec2& b : windows[j]) same += (a - b).norm() <= search.tolerance;
-            const double sizes = static_cast<double>(windows[i].size()) * static_cast<double>(windows[j].size());
+            const double sizes =
+                static_cast<double>(windows[i].size()) * static_cast<double>(windows[j].size());
             worst = std::max(worst, same / std::sqrt(sizes));
         }
         plain.uniqueness += worst < search.unique_below;
@@ -130,20 +131,22 @@ TEST_CASE("a small window tells less than a large one, a long search mistakes mo
 }
 
 TEST_CASE("density inside lattices, textbook") {
-    // Lattice geometry: 1/p^2 and 2/(sqrt3 p^2). The window makes a square grid exact; of the rest less than one
-    // part in the cube of the number of columns is left.
+    // Lattice geometry: 1/p^2 and 2/(sqrt3 p^2). The window makes a square grid exact; of the rest less than
+    // one part in the cube of the number of columns is left.
     const DotPattern grid = judge_dots(square(12, 20), usual_search());
     CHECK(grid.density == about(1 / (spacing * spacing)).epsilon(1e-9));
     CHECK(grid.share_of_hexagonal == about(std::sqrt(3.0) / 2).epsilon(1e-9));
     const DotPattern hexagonal = judge_dots(
-        hexagonal_layout({.kind = LayoutKind::hexagonal, .rows = 40, .columns = 40, .pitch = spacing}).positions,
+        hexagonal_layout({.kind = LayoutKind::hexagonal, .rows = 40, .columns = 40, .pitch = spacing})
+            .positions,
         usual_search());
     CHECK(hexagonal.density == about(2 / (std::sqrt(3.0) * spacing * spacing)).epsilon(1e-4));
     CHECK(hexagonal.share_of_hexagonal == about(1).epsilon(1e-4));
 }
 
 TEST_CASE("density of scattered layouts") {
-    // 0.615 / r^2 for 30 tries a place: found by simulation of the same method elsewhere, 56 x 56 r^2, 3 seeds.
+    // 0.615 / r^2 for 30 tries a place: found by simulation of the same method elsewhere, 56 x 56 r^2, 3
+    // seeds.
     for (const int seed : {1, 2, 3}) {
         const DotPattern pattern = judge_dots(scattered(56, 56, seed), usual_search());
         CHECK(pattern.density * spacing * spacing == about(0.615).epsilon(0.03));

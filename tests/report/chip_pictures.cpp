@@ -26,14 +26,14 @@ Design design_of(LayoutKind kind, int rows, int columns, const Addressing& addre
 }
 
 Design blocks_design() {
-    return design_of(LayoutKind::grid, 8, 12,
-                     {.scheme = AddressingScheme::blocks, .rows = 2, .columns = 3});
+    return design_of(LayoutKind::grid, 8, 12, {.scheme = AddressingScheme::blocks, .rows = 2, .columns = 3});
 }
 
 std::vector<Design> every_design() {
     std::vector<Design> designs{
         blocks_design(),
-        design_of(LayoutKind::hexagonal, 16, 24, {.scheme = AddressingScheme::blocks, .rows = 2, .columns = 4}),
+        design_of(LayoutKind::hexagonal, 16, 24,
+                  {.scheme = AddressingScheme::blocks, .rows = 2, .columns = 4}),
         design_of(LayoutKind::grid, 8, 8, {.scheme = AddressingScheme::interleaved, .rows = 2, .columns = 2}),
         design_of(LayoutKind::grid, 64, 64, {.scheme = AddressingScheme::individual}),
         design_of(LayoutKind::grid, 30, 30, {.scheme = AddressingScheme::blocks, .rows = 1, .columns = 1}),
@@ -112,8 +112,9 @@ std::size_t colours_in(const Canvas& canvas) {
 TEST_CASE("texts of chip pictures lie on the page and keep clear of each other") {
     for (const Design& design : every_design())
         for (const std::string& name :
-             {std::string("A chip"), std::string("A chip with a name that is long enough for its title to need "
-                                                 "more than one line on a page of usual width")}) {
+             {std::string("A chip"),
+              std::string("A chip with a name that is long enough for its title to need "
+                          "more than one line on a page of usual width")}) {
             const Made chip = made(design);
             CAPTURE(chip.array.size());
             const Canvas map = junction_map_picture(name, chip.array, chip.temperature);
@@ -138,7 +139,7 @@ TEST_CASE("the junction map names the hottest zone and shows the emitters where 
     chip.temperature[11] = zero_celsius + 70;  // last of the first row: zone 2
     const Canvas canvas = junction_map_picture("Blocks", chip.array, chip.temperature);
     CHECK(says(canvas, "zone 2: 70.0 °C"));
-    CHECK(says(canvas, "96 emitters in 6 zones, 40.0 to 70.0 °C"));
+    CHECK(says(canvas, "96 emitters in 6 zones at 40.0 to 70.0 °C"));
     CHECK(says(canvas, "Junction temperature (°C)"));
     CHECK(says(canvas, "Horizontal place (µm)"));
     // The light end of the scale shows at this emitter and in the colour bar only.
@@ -194,7 +195,8 @@ TEST_CASE("every one of thousands of zones shows") {
     const Made chip = made(design_of(LayoutKind::grid, 64, 64, {.scheme = AddressingScheme::individual}));
     const Canvas canvas = firing_times_picture("", chip.plan);
     const Patch dwells = patch_of(canvas, palette::categories[2]);
-    // 4096 bars in raster order make an unbroken slope: at least one pixel in each column and row of the plot.
+    // 4096 bars in raster order make an unbroken slope: at least one pixel in each column and row of the
+    // plot.
     CHECK(dwells.count > 1500);
     CHECK(says(canvas, "4096 zones"));
 }
@@ -202,7 +204,7 @@ TEST_CASE("every one of thousands of zones shows") {
 TEST_CASE("of a dwell with many shots the last ones are shown, a long gap is cut") {
     Design design = blocks_design();
     design.firing.shots = 2000;
-    CHECK(says(firing_times_picture("", made(design).plan), "; the last 150 shots"));
+    CHECK(says(firing_times_picture("", made(design).plan), "; its last 200 are shown"));
     design.firing.shots = 10;
     design.firing.gap = 1e-3;
     const Canvas cut = firing_times_picture("", made(design).plan);
@@ -222,5 +224,6 @@ TEST_CASE("pictures of nothing are refused") {
     bad[5] = std::nan("");
     CHECK_THROWS_AS((void)junction_map_picture("", chip.array, bad), Error);
     CHECK_THROWS_AS((void)junction_map_picture("", EmitterArray{}, {}), Error);
-    CHECK_THROWS_WITH_AS((void)firing_times_picture("", FiringPlan{}), doctest::Contains("without a dwell"), Error);
+    CHECK_THROWS_WITH_AS((void)firing_times_picture("", FiringPlan{}), doctest::Contains("without a dwell"),
+                         Error);
 }

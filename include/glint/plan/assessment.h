@@ -5,7 +5,9 @@
 #include <glint/design/load.h>
 #include <glint/emitter/array.h>
 #include <glint/emitter/chip.h>
+#include <glint/emitter/dot_pattern.h>
 #include <glint/emitter/firing.h>
+#include <glint/emitter/order_score.h>
 #include <glint/optics/beam.h>
 #include <glint/optics/far_field.h>
 #include <glint/ranging/landing.h>
@@ -69,6 +71,8 @@ struct Assessment {
     EmitterArray array;
     Packing packing;
     FiringPlan plan;
+    OrderScore order;                ///< of the firing order
+    std::optional<DotPattern> dots;  ///< of a scattered layout
     DriverCount drivers;
     std::optional<Chip> chip;  ///< unless driven by data_sheet
     Beams beams;

@@ -9,15 +9,15 @@
 
 namespace glint {
 
-/// The emitters in place on the chip, seen from behind the module, coloured by temperature [n] [K]; the zone of
-/// the hottest emitter is outlined (the first of them in ties). `name` of the design, may be empty. Error when
-/// there is no emitter, or temperatures are not n or not finite.
+/// The emitters in place on the chip, seen from behind the module, coloured by temperature [n] [K]; the zone
+/// of the hottest emitter is outlined (the first of them in ties). `name` of the design, may be empty. Error
+/// when there is no emitter, or temperatures are not n or not finite.
 [[nodiscard]] Canvas junction_map_picture(const std::string& name, const EmitterArray& array,
                                           std::span<const double> temperature);
 
 /// The zones against time over one frame, and below it the shots of the first dwell up to the next one; of a
-/// dwell with many shots only its last ones. Bars are at least a pixel wide and high, and so may be longer than
-/// what they stand for. `name` of the design, may be empty. Error when nothing fires.
+/// dwell with many shots only its last ones. Bars are at least one unit of the page wide and high, and so may
+/// be longer than what they stand for. `name` of the design, may be empty. Error when nothing fires.
 [[nodiscard]] Canvas firing_times_picture(const std::string& name, const FiringPlan& plan);
 
 }  // namespace glint

@@ -13,7 +13,11 @@ struct View {
     std::string name;  ///< "points"
     std::string help;
     Canvas (*draw)(const Design& design, const Assessment& assessment);
+    bool needs_diode = false;  ///< drawn only when the light follows from a diode
 };
+
+/// Whether a view shows anything of this assessment.
+[[nodiscard]] bool drawable(const View& view, const Assessment& assessment);
 
 /// All views; a new picture is one line here.
 [[nodiscard]] std::span<const View> views();
