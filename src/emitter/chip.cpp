@@ -3,9 +3,11 @@
 #include <glint/core/parallel.h>
 #include <glint/core/quantity.h>
 #include <glint/emitter/chip.h>
+#include <glint/emitter/layout.h>
 
 #include <fmt/format.h>
 #include <algorithm>
+#include <array>
 #include <cmath>
 #include <utility>
 
@@ -28,30 +30,54 @@ double own_dwell_rise(double diameter, const Substrate& substrate, double steady
     return std::max(0.0, rise - frame_duty * Z(plan.frame_period));
 }
 
-// Rise at every emitter of a dwell by the others that fire with it, as steady heat over the dwell.
+// What one emitter leaves at another of its dwell, per watt of heat in its pulses, above the average over
+// frames [K/W]: heat that is steady over the dwell. Tabulated over the logarithm of the distance, to 1e-5;
+// times the distance it is smooth.
+class NeighbourRise {
+public:
+    NeighbourRise(const ChipModel& model, const FiringPlan& plan, double nearest, double farthest)
+        : from_(std::log(nearest)), step_((std::log(farthest) - from_) / (nodes - 1)) {
+        const double duty = plan.pulse_width / plan.shot_period;
+        const double dwell = (plan.shots - 1) * plan.shot_period + plan.pulse_width;
+        for (int i = 0; i < nodes; ++i) {
+            const double distance = std::exp(from_ + i * step_), slab = coupling(distance, model.substrate);
+            const auto step = [&](double time) {
+                return std::min(slab, point_step(model.substrate, distance, time));
+            };
+            const double above = duty * step(dwell) - model.duty * step(plan.frame_period);
+            product_[i] = distance * std::max(0.0, above);
+        }
+    }
+
+    [[nodiscard]] double operator()(double distance) const {
+        const double at = std::max(0.0, (std::log(distance) - from_) / step_);
+        const int i = std::min(static_cast<int>(at), nodes - 2);
+        return (product_[i] + (at - i) * (product_[i + 1] - product_[i])) / distance;
+    }
+
+private:
+    static constexpr int nodes = 1024;
+    double from_, step_;
+    std::array<double, nodes> product_;
+};
+
+// Rise at every emitter of a dwell by the others that fire with it.
 void add_neighbours(std::vector<double>& rise, const std::vector<int>& together, const EmitterArray& array,
-                    const ChipModel& model, const FiringPlan& plan) {
+                    const ChipModel& model, const FiringPlan& plan, const NeighbourRise& neighbour) {
     constexpr std::size_t many = 512;
-    const double dwell_duty = plan.pulse_width / plan.shot_period;
-    const double dwell_time = (plan.shots - 1) * plan.shot_period + plan.pulse_width;
     if (together.size() > many) {
         // Too many for pairs: what the dwell would reach if it lasted, which is more.
         std::vector<double> heat(array.size(), 0.0);
-        for (const int i : together) heat[i] = dwell_duty - model.duty;
+        for (const int i : together) heat[i] = plan.pulse_width / plan.shot_period - model.duty;
         const std::vector<double> others = model.coupling.rise_of(heat);
         for (const int i : together) rise[i] += others[i];
         return;
     }
-    const auto step = [&](double distance, double time) {
-        return std::min(coupling(distance, model.substrate), point_step(model.substrate, distance, time));
-    };
-    for (const int i : together)
-        for (const int j : together) {
-            if (i == j) continue;
-            const double distance = (array.positions[i] - array.positions[j]).norm();
-            const double added =
-                dwell_duty * step(distance, dwell_time) - model.duty * step(distance, plan.frame_period);
-            rise[i] += std::max(0.0, added);
+    for (std::size_t a = 0; a < together.size(); ++a)
+        for (std::size_t b = 0; b < a; ++b) {
+            const int i = together[a], j = together[b];
+            const double added = neighbour((array.positions[i] - array.positions[j]).norm());
+            rise[i] += added, rise[j] += added;
         }
 }
 
@@ -138,8 +164,13 @@ ChipModel chip_model(const Design& design, const EmitterArray& array, const Firi
             dwells[dwell].insert(dwells[dwell].end(), members.members.begin() + members.first[zone],
                                  members.members.begin() + members.first[zone + 1]);
     // Each emitter fires in one dwell, so dwells write to different places.
-    parallel_for(dwells.size(), "heating the zones", {}, [&](std::size_t dwell) {
-        add_neighbours(model.dwell_rise, dwells[dwell], array, model, plan);
+    if (array.size() < 2) return model;
+    Vec2 low = array.positions.front(), high = low;
+    for (const Vec2& place : array.positions) low = low.cwiseMin(place), high = high.cwiseMax(place);
+    const NeighbourRise neighbour(model, plan, nearest_distance(array.positions),
+                                  1.001 * (high - low).norm());
+    parallel_for(dwells.size(), [&](std::size_t dwell) {
+        add_neighbours(model.dwell_rise, dwells[dwell], array, model, plan, neighbour);
     });
     return model;
 }

@@ -14,6 +14,7 @@ namespace {
 
 constexpr int most_zones_back = 256;
 constexpr double negligible = 0.01;  // share of the worst earlier dwell
+constexpr double rounding = 1e-12;   // of scores
 constexpr double infinity = std::numeric_limits<double>::infinity();
 
 struct Neighbour {
@@ -100,14 +101,14 @@ double neighbour_distance(const std::vector<Vec2>& middles, const Vec2& extent) 
 }
 
 void find_neighbours(Judge& judge, const Vec2& extent) {
-    const double reach = 3 * judge.pitch, at_reach = std::exp(-9.0);
+    const double reach = 4 * judge.pitch, at_reach = std::exp(-4.0);
     std::vector<std::vector<Neighbour>> near(judge.middles.size());
     for (int zone = 0; zone < judge.zones(); ++zone) near[zone].push_back({zone, 1});
     if (judge.pitch > 0)
         visit_near(
             judge.middles, extent, [&](int) { return reach; },
             [&](int zone, int other, double distance) {
-                const double x = distance / judge.pitch;
+                const double x = distance / (2 * judge.pitch);
                 near[zone].push_back({other, (std::exp(-x * x) - at_reach) / (1 - at_reach)});
             });
     judge.first_neighbour = {0};
@@ -269,6 +270,7 @@ OrderScore score_of(const Judge& judge, const State& state) {
             .exposure = *std::ranges::max_element(state.exposure)};
 }
 
+// Where the exposure may change it is put to the least it can be; expose_again() brings it up to date.
 void swap_zones(const Judge& judge, State& state, int a, int b) {
     account(judge, state, a, -1, -1, false), account(judge, state, b, -1, a, false);
     std::swap(state.order[a], state.order[b]);
@@ -276,7 +278,17 @@ void swap_zones(const Judge& judge, State& state, int a, int b) {
     account(judge, state, a, 1, -1, false), account(judge, state, b, 1, a, false);
     for (const int position : {a, b})
         for (const Neighbour& other : judge.neighbours_of(state.order[position]))
+            state.exposure[other.zone] = 1;
+}
+
+// After a swap of two positions. False, and not finished, when a zone is exposed more than `most`.
+bool expose_again(const Judge& judge, State& state, int a, int b, double most) {
+    for (const int position : {a, b})
+        for (const Neighbour& other : judge.neighbours_of(state.order[position])) {
             state.exposure[other.zone] = exposure_of(judge, state, other.zone);
+            if (state.exposure[other.zone] > most) return false;
+        }
+    return true;
 }
 
 // A position to swap: any, that of the zone that is heated most, or one beside the zone that is exposed most.
@@ -336,7 +348,12 @@ std::vector<int> best_order(const std::vector<std::vector<int>>& orders, const F
         if (a / judge.zones_at_once == b / judge.zones_at_once) continue;
         trial = best;
         swap_zones(judge, trial, a, b);
-        if (total(trial) <= total(best)) std::swap(best, trial);
+        // The exposure takes longest: first see whether there is hope, and how much of it may be.
+        const OrderScore least = score_of(judge, trial);
+        const double room = total(best) - weighted(least, firing);
+        if (room < -rounding) continue;
+        const double most = least.exposure + (room + rounding) / firing.exposure_weight;
+        if (expose_again(judge, trial, a, b, most) && total(trial) <= total(best)) std::swap(best, trial);
     }
     // Rounding errors of many swaps may have added up.
     return total(state_of(judge, best.order)) <= total(start) ? best.order : start.order;

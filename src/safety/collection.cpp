@@ -135,7 +135,7 @@ double share_of_wide(const Beam& beam, const Aperture& aperture) {
     const double p = path.dot(beam.right) / along, q = path.dot(beam.right.cross(beam.axis)) / along;
     if (std::hypot(p, q) > beam.kernel.reach + 2 * radius) return 0;
     const double detail = finest_width_near(beam.kernel, p, q, radius) / radius;
-    const double mean = detail > 5 ? mean_over_disc(passing) : mean_over_disc(detail, passing);
+    const double mean = detail > 8 ? mean_over_disc(passing) : mean_over_disc(detail, passing);
     return std::min(1.0, mean * pi * aperture.radius * aperture.radius / beam.power);
 }
 

@@ -1,5 +1,6 @@
 // The eye search: places and foci in order of promise, and a closer look around the worst.
 #include "eye_places.h"
+#include "hardest_image.h"
 
 #include <glint/core/constants.h>
 #include <glint/safety/eye_search.h>
@@ -264,51 +265,19 @@ private:
     // Whether an image as bright as at any of the places, and as small and sharp as at any of them for any
     // focus, gives more than is known.
     bool may_be_worse(std::span<const Place> places) {
-        struct Extreme {
-            std::vector<double> energy;
-            Vec2 size = Vec2::Constant(1e9), half = Vec2::Constant(1e9);
-            Interval whole{1e9, 0};
-        };
-        std::vector<Extreme> extremes(places.size());
+        std::vector<ImageExtremes> of_place(places.size());
         parallel_for(places.size(), "looking for the worst place of the eye", progress_, [&](std::size_t i) {
-            Extreme& extreme = extremes[i];
             const EnteringLight light = light_at(places[i].eye);
-            for (const EnteringBeam& beam : light.beams) extreme.energy.push_back(beam.energy);
-            for (const double vergence : foci(light)) {
-                const std::vector<Spot> image = retinal_image(light, vergence);
-                const double whole = whole_subtense(image);
-                extreme.size = extreme.size.cwiseMin(extent_of_middles(image));
-                extreme.half = extreme.half.cwiseMin(image.front().half);
-                extreme.whole = {std::min(extreme.whole.from, whole), std::max(extreme.whole.to, whole)};
-            }
+            of_place[i] = extremes_of(light, foci(light));
         });
-        std::vector<Spot> image = retinal_image(light_at(places.front().eye), 0);
-        const Vec2 size = extent_of_middles(image);
-        Extreme least = std::move(extremes.front());
-        for (const Extreme& extreme : std::span(extremes).subspan(1)) {
-            least.size = least.size.cwiseMin(extreme.size), least.half = least.half.cwiseMin(extreme.half);
-            least.whole = {std::min(least.whole.from, extreme.whole.from),
-                           std::max(least.whole.to, extreme.whole.to)};
-            for (std::size_t i = 0; i < image.size(); ++i)
-                least.energy[i] = std::max(least.energy[i], extreme.energy[i]);
-        }
-        for (std::size_t i = 0; i < image.size(); ++i) {
-            Spot& spot = image[i];
-            for (int a = 0; a < 2; ++a)
-                if (size[a] > 0) spot.middle[a] *= least.size[a] / size[a];
-            spot.half = least.half, spot.energy = least.energy[i];
-        }
+        ImageExtremes all = std::move(of_place.front());
+        for (const ImageExtremes& each : std::span(of_place).subspan(1)) include(all, each);
+        const std::vector<Spot> image = hardest_image(light_at(places.front().eye), all);
         const WindowSearch found =
-            search_windows(pattern_, image, dwell_of_zone_, found_.known, slack_, least.whole);
+            search_windows(pattern_, image, dwell_of_zone_, found_.known, slack_, all.whole);
         ++found_.work.images;
         found_.work.families += found.nodes;
         return std::ranges::any_of(found.parts, [](const ImagePart& part) { return part.worst.ratio > 0; });
-    }
-
-    [[nodiscard]] static Vec2 extent_of_middles(std::span<const Spot> image) {
-        Vec2 low = image.front().middle, high = low;
-        for (const Spot& spot : image) low = low.cwiseMin(spot.middle), high = high.cwiseMax(spot.middle);
-        return high - low;
     }
 
     // Places and foci that may be worse than what is known, most promising first.

@@ -1,5 +1,5 @@
-// How long the eye-safety search takes: the aisle cart, individually addressed emitters, and its growth with emitters,
-// zones and shots; and one image by the search and by brute force.
+// How long the eye-safety search takes: the aisle cart, individually addressed emitters, and its growth with
+// emitters, zones and shots; and one image by the search and by brute force.
 #include "safety/brute_force.h"
 
 #include <glint/design/load.h>
@@ -35,8 +35,8 @@ Design aisle_cart() {
     return load_design(std::filesystem::path(GLINT_SOURCE_DIR) / "examples/aisle-cart.xml").design;
 }
 
-// The aisle cart with other emitters, blocks and shots, on a chip of the same size, with the same average power and
-// frame.
+// The aisle cart with other emitters, blocks and shots, on a chip of the same size, with the same average
+// power and frame.
 Design variant(int side, int blocks, int shots) {
     Design design = aisle_cart();
     Emitters& emitters = design.emitters;
@@ -46,16 +46,17 @@ Design variant(int side, int blocks, int shots) {
     emitters.addressing = {.scheme = AddressingScheme::blocks, .rows = blocks, .columns = blocks};
     design.drive.peak_power *= 64.0 * 64 / (side * side) * 140 * 256 / (shots * blocks * blocks);
     design.firing.shots = shots;
-    design.firing.frame_period = std::max(
-        65e-3, 1.01 * blocks * blocks * (shots / design.firing.repetition + design.firing.gap));
+    design.firing.frame_period =
+        std::max(65e-3, 1.01 * blocks * blocks * (shots / design.firing.repetition + design.firing.gap));
     return design;
 }
 
 EyeSearch search(const Module& module) {
     EyeSearch found;
     for (const Condition condition : {Condition::telescope, Condition::naked_eye})
-        found = search_eyes({module.pattern, module.field, condition, module.design.eye_safety.closest_access},
-                            std::move(found));
+        found =
+            search_eyes({module.pattern, module.field, condition, module.design.eye_safety.closest_access},
+                        std::move(found));
     return found;
 }
 
@@ -84,7 +85,8 @@ void by_shots(benchmark::State& state) {
     search_module(state, variant(64, 16, static_cast<int>(state.range(0))));
 }
 
-// All foci at the worst place of an 8 x 8 array, by the search and by brute force: the time of one over the other.
+// All foci at the worst place of an 8 x 8 array, by the search and by brute force: the time of one over the
+// other.
 void against_brute_force(benchmark::State& state) {
     using namespace glint::test;
     const Module module = module_of(variant(8, 4, static_cast<int>(state.range(0))));

@@ -168,7 +168,7 @@ TEST_CASE("preview draws one view, and says which there are") {
         run("glintplan preview " + design + " --view sideways --quiet --out " + folder.path("n.png"));
     CHECK(wrong.status == 2);
     CHECK(holds(wrong.err,
-                "there is no view 'sideways'; accepted: points, zones, retinal-image, emission-limits or "
-                "safety-map"));
+                "there is no view 'sideways'; accepted: points, zones, retinal-image, emission-limits, "
+                "safety-map, firing-times or junction-map"));
     CHECK(!fs::exists(folder.path("n.png")));
 }

@@ -35,7 +35,7 @@ struct OrderScore {
     /// stretches of k successive dwells, k = 1, 2, 4, ... and all, of
     ///     sum w(r) / (T/l)^0.75,
     /// over the zones that fire in the stretch, T its length from its first shot to after its last and l that
-    /// of one dwell; w = (exp(-(r/p)^2) - exp(-9))/(1 - exp(-9)), 0 from r = 3 p on. One zone alone gives 1:
+    /// of one dwell; w = (exp(-(r/2p)^2) - exp(-4))/(1 - exp(-4)), 0 from r = 4 p on. One zone alone gives 1:
     /// at least 1. The exponent is that of the thermal limits (IEC 60825-1).
     double exposure = 0;
 };
