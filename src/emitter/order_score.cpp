@@ -5,6 +5,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <cstdlib>
 #include <limits>
 #include <numeric>
 #include <utility>
@@ -15,6 +16,7 @@ namespace {
 constexpr int most_zones_back = 256;
 constexpr double negligible = 0.01;  // share of the worst earlier dwell
 constexpr double rounding = 1e-12;   // of scores
+double first_loss = getenv("FL") ? atof(getenv("FL")) : 0.5;
 constexpr double infinity = std::numeric_limits<double>::infinity();
 
 struct Neighbour {
@@ -334,29 +336,34 @@ std::vector<int> best_order(const std::vector<std::vector<int>>& orders, const F
                             const std::vector<Vec2>& middles, const Substrate& substrate, int tries) {
     const Judge judge = judge_of(firing, middles, substrate);
     const auto total = [&](const State& state) { return weighted(score_of(judge, state), firing); };
-    State best = state_of(judge, orders.front());
+    State state = state_of(judge, orders.front());
     for (std::size_t i = 1; i < orders.size(); ++i) {
         State other = state_of(judge, orders[i]);
-        if (total(other) < total(best)) best = std::move(other);
+        if (total(other) < total(state)) state = std::move(other);
     }
-    const State start = best;
+    const double start_total = total(state);
+    const std::vector<int> start = state.order;
+    std::vector<int> best = start;
+    double best_total = start_total;
     State trial;
     RandomStream random(static_cast<std::uint64_t>(firing.seed));
     for (int left = judge.dwells > 1 ? tries : 0; left > 0; --left) {
-        const int a = draw_position(judge, best, random);
-        const int b = static_cast<int>(random.below(best.order.size()));
+        const int a = draw_position(judge, state, random);
+        const int b = static_cast<int>(random.below(state.order.size()));
         if (a / judge.zones_at_once == b / judge.zones_at_once) continue;
-        trial = best;
+        trial = state;
         swap_zones(judge, trial, a, b);
         // The exposure takes longest: first see whether there is hope, and how much of it may be.
         const OrderScore least = score_of(judge, trial);
-        const double room = total(best) - weighted(least, firing);
-        if (room < -rounding) continue;
-        const double most = least.exposure + (room + rounding) / firing.exposure_weight;
-        if (expose_again(judge, trial, a, b, most) && total(trial) <= total(best)) std::swap(best, trial);
+        const double room = total(state) + first_loss * left / tries / judge.zones() - weighted(least, firing);
+        if (room < 0) continue;
+        const double most = least.exposure + room / firing.exposure_weight;
+        if (!expose_again(judge, trial, a, b, most)) continue;
+        std::swap(state, trial);
+        if (total(state) < best_total) best = state.order, best_total = total(state);
     }
     // Rounding errors of many swaps may have added up.
-    return total(state_of(judge, best.order)) <= total(start) ? best.order : start.order;
+    return total(state_of(judge, best)) <= start_total ? best : start;
 }
 
 }  // namespace glint

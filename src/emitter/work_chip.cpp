@@ -49,6 +49,7 @@ void work_ramp(DriverState& state, const Design& design, const FiringPlan& plan,
                 show((*driver.supply - loop.voltage) / (loop.resistance + loop.inductance / asked),
                      Kind::current)));
     }
+    state.charge = current * plan.pulse_width;
     state.storage = storage_capacitance(current, plan.shots * plan.pulse_width, driver.droop * state.supply);
     const double duty = plan.shots * plan.pulse_width / plan.frame_period;
     state.electrical_power = state.load.current * state.supply * duty * plan.dwells();
@@ -57,9 +58,23 @@ void work_ramp(DriverState& state, const Design& design, const FiringPlan& plan,
 void work_resonant(DriverState& state, const Design& design, const FiringPlan& plan, const DriveLoop& loop,
                    std::vector<std::string>& findings) {
     const double fwhm = design.drive.pulse_width, current = state.load.channel_current;
+    // The damping of the undamped capacitor, (R/2) sqrt(C/L) with sqrt(L C) = 1.5 fwhm/pi.
+    const double swing = 1.5 * fwhm / pi, damping = loop.resistance / 2 * swing / loop.inductance;
+    if (damping > 0.9) {
+        findings.push_back(fmt::format(
+            "A resonant driver cannot make this pulse: {} in a loop of {} and {} does not swing. A loop of "
+            "{} would, or a pulse of "
+            "{}.",
+            show(fwhm, Kind::time), show(loop.inductance, Kind::inductance),
+            show(loop.resistance, Kind::resistance), show(loop.inductance * damping / 0.3, Kind::inductance),
+            show(fwhm * 0.3 / damping, Kind::time)));
+        state.supply = design.drive.driver.supply.value_or(0), state.damping = damping;
+        return;
+    }
     const ChargedCapacitor capacitor = capacitor_for(loop, fwhm, current);
     const Discharge pulse = discharge(loop, capacitor.capacitance, capacitor.voltage);
     state.storage = capacitor.capacitance, state.rise_time = pulse.rise_time, state.damping = pulse.damping;
+    state.charge = pulse.charge;
     const std::optional<double> given = design.drive.driver.supply;
     state.supply = given.value_or(capacitor.voltage);
     if (given && *given < capacitor.voltage * (1 - 1e-9))
@@ -106,6 +121,19 @@ void note_drive(const Design& design, const ChipState& state, const DiodePreset&
         findings.push_back(
             "The diode lies outside the range of the fits that its numbers come from "
             "(3 um to 20 um, 850 nm to 940 nm, 1 to 8 junctions): give measured ones.");
+}
+
+void note_matrix(Chip& chip, const Design& design) {
+    const DiodeModel& diode = chip.model.diode.model;
+    const double across = diode.voltage + chip.state.current * diode.resistance;
+    const HalfSelected half = half_selected(across, MatrixBias::half, design.emitters.diode.junctions);
+    chip.driver.half_selected = half;
+    if (half.dark()) return;
+    chip.findings.push_back(fmt::format(
+        "Half-selected emitters of the matrix see {}, above the {} at which they begin to shine; at a third "
+        "of "
+        "the voltage they would see {}.",
+        show(half.voltage, Kind::voltage), show(half.limit, Kind::voltage), show(across / 3, Kind::voltage)));
 }
 
 }  // namespace
@@ -161,18 +189,7 @@ Chip work_chip(const Design& design, const EmitterArray& array, const FiringPlan
     if (chip.dwell_droop > 0.1)
         chip.findings.push_back(fmt::format("The light of an emitter falls by up to {:.0f} % within a dwell.",
                                             100 * chip.dwell_droop));
-    if (design.emitters.addressing.scheme == AddressingScheme::matrix) {
-        const double across =
-            chip.model.diode.model.voltage + chip.state.current * chip.model.diode.model.resistance;
-        const HalfSelected half = half_selected(across, MatrixBias::half, design.emitters.diode.junctions);
-        if (!half.dark())
-            chip.findings.push_back(
-                fmt::format("Half-selected emitters of the matrix see {}, above the {} at which they begin "
-                            "to shine; at a third of the "
-                            "voltage they would see {}.",
-                            show(half.voltage, Kind::voltage), show(half.limit, Kind::voltage),
-                            show(across / 3, Kind::voltage)));
-    }
+    if (design.emitters.addressing.scheme == AddressingScheme::matrix) note_matrix(chip, design);
     return chip;
 }
 

@@ -44,12 +44,21 @@ std::string drive_lines(const Design& design, const Assessment& assessment) {
         coldest = std::min(coldest, emitter.average_temperature);
         hottest = std::max(hottest, emitter.average_temperature);
     }
-    text += fmt::format("          {} a channel, {} the chip; supply {}, rise {}\n",
-                        show(driver.load.channel_current, Kind::current),
-                        show(driver.load.current, Kind::current), show(driver.supply, Kind::voltage),
-                        show(driver.rise_time, Kind::time));
-    text += fmt::format("          {} beside each channel, {} taken from the supply\n",
+    text +=
+        fmt::format("          {} a channel, {} the chip\n", show(driver.load.channel_current, Kind::current),
+                    show(driver.load.current, Kind::current));
+    if (driver.storage > 0)  // a driver that cannot make the pulse is a finding
+        text +=
+            fmt::format("          supply {}, rise {}, {} beside each channel, takes {}\n",
+                        show(driver.supply, Kind::voltage), show(driver.rise_time, Kind::time),
                         show(driver.storage, Kind::capacitance), show(driver.electrical_power, Kind::power));
+    if (driver.charge > 0 && design.drive.driver.kind == DriverKind::resonant)
+        text += fmt::format("          resonant: {} a pulse, damping {:.2f}\n",
+                            show(driver.charge, Kind::charge), driver.damping);
+    if (driver.half_selected)
+        text += fmt::format("          half-selected emitters see {}, dark below {}\n",
+                            show(driver.half_selected->voltage, Kind::voltage),
+                            show(driver.half_selected->limit, Kind::voltage));
     text += fmt::format("Diode     {} peak, {} peak, {:.0f} kA/cm2; {:.1f} % of the power becomes light\n",
                         show(chip.state.current, Kind::current), show(mean_power(chip.state), Kind::power),
                         current_density(chip.state.current, design.emitters.aperture) * 1e-7,

@@ -7,6 +7,7 @@
 #include <glint/emitter/diode.h>
 #include <glint/emitter/driver.h>
 #include <glint/emitter/firing.h>
+#include <optional>
 #include <string>
 #include <vector>
 
@@ -68,8 +69,10 @@ struct DriverState {
     double supply = 0;     ///< given, or needed [V]
     double rise_time = 0;  ///< reached, or asked for [s]
     double storage = 0;  ///< ramp: capacitance beside a channel for one dwell; resonant: of its capacitor [F]
-    double electrical_power = 0;  ///< average, of all channels, drivers included [W]
-    double damping = 0;           ///< resonant: of the loop
+    double electrical_power = 0;                ///< average, of all channels, drivers included [W]
+    double damping = 0;                         ///< resonant: of the loop
+    double charge = 0;                          ///< of one pulse in the heaviest channel [C]
+    std::optional<HalfSelected> half_selected;  ///< of a matrix, with lines at rest half way
 };
 
 /// A chip worked through.
