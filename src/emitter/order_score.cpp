@@ -5,7 +5,6 @@
 
 #include <algorithm>
 #include <cmath>
-#include <cstdlib>
 #include <limits>
 #include <numeric>
 #include <utility>
@@ -15,8 +14,7 @@ namespace {
 
 constexpr int most_zones_back = 256;
 constexpr double negligible = 0.01;  // share of the worst earlier dwell
-constexpr double rounding = 1e-12;   // of scores
-double first_loss = getenv("FL") ? atof(getenv("FL")) : 0.5;
+constexpr double first_loss = 0.1;   // of the sum of scores, times zones, that a first swap may cost
 constexpr double infinity = std::numeric_limits<double>::infinity();
 
 struct Neighbour {
@@ -345,6 +343,8 @@ std::vector<int> best_order(const std::vector<std::vector<int>>& orders, const F
     const std::vector<int> start = state.order;
     std::vector<int> best = start;
     double best_total = start_total;
+    // Swaps may lose a little, less and less, to get out of local minima (threshold accepting: Dueck and
+    // Scheuer 1990).
     State trial;
     RandomStream random(static_cast<std::uint64_t>(firing.seed));
     for (int left = judge.dwells > 1 ? tries : 0; left > 0; --left) {
@@ -355,7 +355,8 @@ std::vector<int> best_order(const std::vector<std::vector<int>>& orders, const F
         swap_zones(judge, trial, a, b);
         // The exposure takes longest: first see whether there is hope, and how much of it may be.
         const OrderScore least = score_of(judge, trial);
-        const double room = total(state) + first_loss * left / tries / judge.zones() - weighted(least, firing);
+        const double room =
+            total(state) + first_loss * left / tries / judge.zones() - weighted(least, firing);
         if (room < 0) continue;
         const double most = least.exposure + room / firing.exposure_weight;
         if (!expose_again(judge, trial, a, b, most)) continue;

@@ -49,8 +49,8 @@ struct OrderScore {
 [[nodiscard]] double weighted(const OrderScore& score, const Firing& firing);
 
 /// Takes the one of some orders, at least one, that has the smallest weighted sum (the first of equal ones),
-/// and tries that many swaps of two zones, drawn from `seed` of the firing, keeping those that do not make it
-/// worse. Never worse than any of the orders given. Same seed, same order.
+/// tries that many swaps of two zones, drawn from `seed` of the firing, and returns the best order met. Never
+/// worse than any of the orders given. Same seed, same order.
 [[nodiscard]] std::vector<int> best_order(const std::vector<std::vector<int>>& orders, const Firing& firing,
                                           const std::vector<Vec2>& middles, const Substrate& substrate,
                                           int tries);
