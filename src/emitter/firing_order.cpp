@@ -158,7 +158,7 @@ bool matrix_can_fire_all(const std::vector<int>& order, int zones_at_once, int c
 
 std::vector<int> best(const Firing& firing, const EmitterArray& array, const Substrate& substrate,
                       AddressingScheme scheme) {
-    constexpr int most_zones = 16384, tries = 4000;
+    constexpr int most_zones = 16384, tries = 3000;
     if (array.zones > most_zones)
         throw Error(
             Problem{.what = fmt::format("{} zones are too many to search for the best order", array.zones),

