@@ -46,20 +46,6 @@ double power(double t, double exponent) {
     return std::pow(t, exponent);
 }
 
-bool holds_for(SourceSize source, double subtense) {
-    switch (source) {
-        case SourceSize::any:
-            return true;
-        case SourceSize::point:
-            return subtense <= point_source;
-        case SourceSize::extended:
-            return subtense > point_source;
-        case SourceSize::extended_to_82_mrad:
-            return subtense > point_source && touches({0, 82e-3}, subtense);
-    }
-    return false;
-}
-
 }  // namespace
 
 double LimitCurve::energy(double duration, double subtense, double t2) const {

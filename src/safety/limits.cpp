@@ -9,7 +9,6 @@
 #include <cmath>
 
 namespace glint {
-namespace {
 
 bool holds_for(SourceSize source, double subtense) {
     switch (source) {
@@ -24,6 +23,8 @@ bool holds_for(SourceSize source, double subtense) {
     }
     return false;
 }
+
+namespace {
 
 bool within(Reach reach, const EmissionWindow& emission) {
     switch (reach) {

@@ -39,6 +39,9 @@ enum class SourceSize {
     extended_to_82_mrad  ///< above 1.5 mrad up to 82 mrad
 };
 
+/// Whether a row holds for a subtense [rad].
+[[nodiscard]] bool holds_for(SourceSize source, double subtense);
+
 /// A further bound on the duration that depends on the other arguments.
 enum class Reach {
     whole,
