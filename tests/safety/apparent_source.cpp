@@ -259,6 +259,24 @@ TEST_CASE("foci tried: all of accommodation, and where the beams come from") {
     CHECK(std::ranges::any_of(vergences(behind), [&](double v) { return std::abs(v - 1 / focus) < 1e-3; }));
 }
 
+TEST_CASE("foci on both sides of where the whole image becomes as large as asked") {
+    // A bare emitter at 150 mm: sharp at 1/0.15 dioptres, blurred by the pupil on both sides of that.
+    const EnteringLight light = entering_light(bare(radians(20)), {.place = Vec3(0.15, 0, 0)}, pulse_width);
+    const std::vector<double> tried = vergences(light);
+    const double subtense = 5e-3;
+    const std::vector<double> found = crossings(light, tried, std::array{subtense});
+    REQUIRE(found.size() == 4);
+    for (std::size_t i = 0; i < found.size(); i += 2) {
+        const double one = whole_subtense(retinal_image(light, found[i])),
+                     other = whole_subtense(retinal_image(light, found[i + 1]));
+        CHECK((one > subtense) != (other > subtense));
+        // Foci 3e-4 dioptres apart at most; the blur changes by 7 mm a dioptre times 0.88 (side of the square
+        // over the pupil's diameter) or less.
+        CHECK(std::abs(one - other) < 3e-4 * 7e-3);
+    }
+    CHECK(crossings(light, tried, std::array{0.5}).empty());
+}
+
 TEST_CASE("a relaxed eye sees the divergence of a beam, wherever it stands") {
     // Schulmeister, BiOS Ophthalmic Technologies XV (2005) 401-410: focused at infinity, the subtense is that
     // of the far field. A pupil wide enough not to cut; 1e-3 for what it cuts all the same.
