@@ -25,7 +25,7 @@ double own_dwell_rise(double diameter, const Substrate& substrate, double steady
     const double tp = plan.pulse_width, Tr = plan.shot_period;
     const int shots = std::min(plan.shots, one_by_one);
     double rise = 0;
-    for (int k = 0; k < shots; ++k) rise += Z(k * Tr + tp) - Z(k * Tr);
+    for (int k = 0; k < shots; ++k) rise += pulse_rise(diameter, substrate, tp, k * Tr + tp, steady);
     rise += tp / Tr * (Z((plan.shots - 1) * Tr + tp) - Z((shots - 1) * Tr + tp));
     return std::max(0.0, rise - frame_duty * Z(plan.frame_period));
 }
@@ -81,7 +81,19 @@ void add_neighbours(std::vector<double>& rise, const std::vector<int>& together,
         }
 }
 
-double base_resistance(const ChipModel& model, std::size_t emitter) { return model.dwell_rise[emitter] / 2; }
+// Half way up a dwell.
+Steady middle_of(const ChipModel& model, double current, std::size_t emitter, double average_temperature) {
+    return steady(model.diode.model, current, average_temperature, model.dwell_rise[emitter] / 2);
+}
+
+// The most that a diode sends at any temperature of a range; it may rise and fall again in between.
+double brightest(const DiodeModel& diode, double current, double coldest, double hottest) {
+    constexpr int steps = 32;
+    double most = 0;
+    for (int i = 0; i <= steps; ++i)
+        most = std::max(most, operate(diode, current, coldest + (hottest - coldest) * i / steps).power);
+    return most;
+}
 
 // The largest mean power between two currents, by golden section.
 ChipState state_of_largest_power(const ChipModel& model, double from, double to) {
@@ -144,7 +156,9 @@ Substrate substrate_of(const HeatSettings& heat) {
             .pulse_heating = heat.pulse_heating};
 }
 
-ChipModel chip_model(const Design& design, const EmitterArray& array, const FiringPlan& plan) {
+ChipModel chip_model(const Design& design, const EmitterArray& array, const FiringPlan& firing) {
+    FiringPlan plan = firing;
+    plan.pulse_width = equivalent_width(design.drive.shape, plan.pulse_width);
     const HeatSettings& heat = design.emitters.heat;
     const Substrate substrate = substrate_of(heat);
     const double aperture = design.emitters.aperture, self = self_resistance(aperture, substrate);
@@ -178,10 +192,7 @@ ChipModel chip_model(const Design& design, const EmitterArray& array, const Firi
 ChipState chip_state(const ChipModel& model, double current) {
     const std::size_t count = model.coupling.size();
     const HeatAt heat_at = [&](std::size_t emitter, double temperature) {
-        if (temperature >= runaway_temperature)
-            return operate(model.diode.model, current, runaway_temperature).heat;
-        return model.duty *
-               steady(model.diode.model, current, temperature, base_resistance(model, emitter)).at.heat;
+        return model.duty * middle_of(model, current, emitter, temperature).at.heat;
     };
     const ChipTemperatures balance =
         solve_chip(model.coupling, heat_at,
@@ -193,14 +204,15 @@ ChipState chip_state(const ChipModel& model, double current) {
     for (std::size_t i = 0; i < count && state.settled; ++i) {
         EmitterState& emitter = state.emitters[i];
         emitter.average_temperature = balance.temperature[i];
-        const Steady middle =
-            steady(model.diode.model, current, balance.temperature[i], base_resistance(model, i));
+        const Steady middle = middle_of(model, current, i, balance.temperature[i]);
         emitter.power = middle.at.power, emitter.voltage = middle.at.voltage, emitter.heat = middle.at.heat;
         emitter.last_temperature = balance.temperature[i] + model.dwell_rise[i] * middle.at.heat;
         state.settled = !middle.runaway && emitter.last_temperature < runaway_temperature;
         if (!state.settled) break;
         emitter.first_power = operate(model.diode.model, current, balance.temperature[i]).power;
         emitter.last_power = operate(model.diode.model, current, emitter.last_temperature).power;
+        emitter.brightest =
+            brightest(model.diode.model, current, model.sink_temperature, emitter.last_temperature);
     }
     return state;
 }

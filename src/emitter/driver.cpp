@@ -201,7 +201,7 @@ Discharge discharge(const DriveLoop& loop, double capacitance, double start_volt
         .supply_energy_clamped = start_voltage * capacitance * (start_voltage - std::max(0.0, end_voltage))};
 }
 
-ChargedCapacitor capacitor_for(const DriveLoop& loop, double fwhm, double peak) {
+std::optional<ChargedCapacitor> capacitor_for(const DriveLoop& loop, double fwhm, double peak) {
     check(loop);
     check({{fwhm, "fwhm"}, {peak, "peak"}});
     const double root = 1.5 * fwhm / pi;
@@ -211,9 +211,7 @@ ChargedCapacitor capacitor_for(const DriveLoop& loop, double fwhm, double peak) 
         // FWHM of the critically damped pulse t exp(-t/tau), tau = 2 L / R: 2.446386 tau, the distance of the
         // two roots of x exp(1 - x) = 1/2.
         const double longest = 2.446386037 * 2 * loop.inductance / loop.resistance;
-        if (fwhm >= longest * (1 - 1e-6))
-            refuse(fmt::format("a pulse of {:.4g} s would be damped to 1 or more", fwhm), "fwhm",
-                   fmt::format("below {:.4g} s in this loop", longest));
+        if (fwhm >= longest * (1 - 1e-6)) return std::nullopt;
         low = 0;
         high = std::min(high, 4 * loop.inductance / (loop.resistance * loop.resistance));
         for (int i = 0; i < 60; ++i) {
@@ -223,8 +221,8 @@ ChargedCapacitor capacitor_for(const DriveLoop& loop, double fwhm, double peak) 
     }
     const double capacitance = (low + high) / 2;
     const HalfWave wave = half_wave(loop, capacitance);
-    return {.capacitance = capacitance,
-            .voltage = loop.voltage + peak * loop.inductance / wave.at(wave.peak_time())};
+    return ChargedCapacitor{.capacitance = capacitance,
+                            .voltage = loop.voltage + peak * loop.inductance / wave.at(wave.peak_time())};
 }
 
 double equivalent_width(PulseShape shape, double fwhm) {

@@ -23,8 +23,8 @@ DriveLoop loop_of(const DriverSettings& driver, const DiodeModel& diode, const D
             .voltage = diode.voltage};
 }
 
-void work_ramp(DriverState& state, const Design& design, const FiringPlan& plan, const DriveLoop& loop,
-               std::vector<std::string>& findings) {
+void work_ramp(DriverState& state, const Design& design, const FiringPlan& plan, double duty,
+               const DriveLoop& loop, std::vector<std::string>& findings) {
     const DriverSettings& driver = design.drive.driver;
     const double current = state.load.channel_current;
     const double asked = driver.rise_time.value_or(design.drive.pulse_width / 3);
@@ -51,16 +51,16 @@ void work_ramp(DriverState& state, const Design& design, const FiringPlan& plan,
     }
     state.charge = current * plan.pulse_width;
     state.storage = storage_capacitance(current, plan.shots * plan.pulse_width, driver.droop * state.supply);
-    const double duty = plan.shots * plan.pulse_width / plan.frame_period;
     state.electrical_power = state.load.current * state.supply * duty * plan.dwells();
 }
 
 void work_resonant(DriverState& state, const Design& design, const FiringPlan& plan, const DriveLoop& loop,
                    std::vector<std::string>& findings) {
     const double fwhm = design.drive.pulse_width, current = state.load.channel_current;
-    // The damping of the undamped capacitor, (R/2) sqrt(C/L) with sqrt(L C) = 1.5 fwhm/pi.
-    const double swing = 1.5 * fwhm / pi, damping = loop.resistance / 2 * swing / loop.inductance;
-    if (damping > 0.9) {
+    const std::optional<ChargedCapacitor> capacitor = capacitor_for(loop, fwhm, current);
+    if (!capacitor) {
+        // As for the undamped capacitor: (R/2) sqrt(C/L) with sqrt(L C) = 1.5 fwhm/pi. 0.3: see Discharge.
+        const double damping = loop.resistance / 2 * 1.5 * fwhm / pi / loop.inductance;
         findings.push_back(fmt::format(
             "A resonant driver cannot make this pulse: {} in a loop of {} and {} does not swing. A loop of "
             "{} would, or a pulse of "
@@ -68,22 +68,21 @@ void work_resonant(DriverState& state, const Design& design, const FiringPlan& p
             show(fwhm, Kind::time), show(loop.inductance, Kind::inductance),
             show(loop.resistance, Kind::resistance), show(loop.inductance * damping / 0.3, Kind::inductance),
             show(fwhm * 0.3 / damping, Kind::time)));
-        state.supply = design.drive.driver.supply.value_or(0), state.damping = damping;
+        state.supply = design.drive.driver.supply.value_or(0);
         return;
     }
-    const ChargedCapacitor capacitor = capacitor_for(loop, fwhm, current);
-    const Discharge pulse = discharge(loop, capacitor.capacitance, capacitor.voltage);
-    state.storage = capacitor.capacitance, state.rise_time = pulse.rise_time, state.damping = pulse.damping;
+    const Discharge pulse = discharge(loop, capacitor->capacitance, capacitor->voltage);
+    state.storage = capacitor->capacitance, state.rise_time = pulse.rise_time, state.damping = pulse.damping;
     state.charge = pulse.charge;
     const std::optional<double> given = design.drive.driver.supply;
-    state.supply = given.value_or(capacitor.voltage);
-    if (given && *given < capacitor.voltage * (1 - 1e-9))
+    state.supply = given.value_or(capacitor->voltage);
+    if (given && *given < capacitor->voltage * (1 - 1e-9))
         findings.push_back(
             fmt::format("The driver cannot make this pulse: {} at {} half maximum needs {} on the capacitor, "
                         "the supply has {}. A loop "
                         "of less inductance or a longer pulse would do.",
                         show(current, Kind::current), show(fwhm, Kind::time),
-                        show(capacitor.voltage, Kind::voltage), show(*given, Kind::voltage)));
+                        show(capacitor->voltage, Kind::voltage), show(*given, Kind::voltage)));
     if (pulse.damping > 0.3)
         findings.push_back(
             fmt::format("The resonant loop is damped to {:.2f}, above 0.3: much of the energy stays in its "
@@ -177,12 +176,11 @@ Chip work_chip(const Design& design, const EmitterArray& array, const FiringPlan
             .accepted = fmt::format("more than {}", show(chip.model.diode.model.threshold, Kind::current)),
             .path = "drive/current"});
 
-    chip.driver.count = count_drivers(design.emitters.addressing.scheme, array);
     chip.driver.load = peak_load(design.emitters.addressing.scheme, array, plan, chip.state.current);
     const DriveLoop loop =
         loop_of(drive.driver, chip.model.diode.model, chip.driver.load, chip.state.current);
     if (drive.driver.kind == DriverKind::ramp)
-        work_ramp(chip.driver, design, plan, loop, chip.findings);
+        work_ramp(chip.driver, design, plan, chip.model.duty, loop, chip.findings);
     else
         work_resonant(chip.driver, design, plan, loop, chip.findings);
     note_drive(design, chip.state, chip.model.diode, chip.findings);

@@ -2,6 +2,7 @@
 #include <glint/emitter/layout.h>
 #include <glint/plan/assess.h>
 #include <glint/plan/requirements.h>
+#include <glint/ranging/spectrum.h>
 #include <glint/scene/scene_file.h>
 
 #include <fmt/format.h>
@@ -86,9 +87,8 @@ std::vector<std::string> collect_findings(const Design& design, const Assessment
     if (assessment.chip) {
         findings.insert(findings.end(), assessment.chip->findings.begin(), assessment.chip->findings.end());
         const Filter& filter = design.receiver.filter;
-        const auto out = std::ranges::count_if(assessment.chip->zone_wavelength, [&](double wavelength) {
-            return std::abs(wavelength - filter.center) > filter.width / 2;
-        });
+        const auto out = std::ranges::count_if(
+            assessment.chip->zone_wavelength, [&](double wavelength) { return !passes(filter, wavelength); });
         if (out > 0)
             findings.push_back(
                 fmt::format("{} of {} zones have drifted out of the filter's band and send nothing back.",
@@ -130,18 +130,16 @@ DotSearch dot_search(const Design& design, const EmitterArray& array) {
             .tolerance = 0.2 * spacing};
 }
 
-// A pulse is brightest while the chip is cold: eye safety counts on that.
-SafetyVerdict judge_coldest(const Design& design, const EmitterArray& array, const std::optional<Chip>& chip,
-                            const Progress& progress) {
-    const Lit lit = light_up(design, array, chip ? &*chip : nullptr, &EmitterState::first_power);
-    return judge_safety(lit.design, lit.array, progress);
+// Eye safety counts with the most that each emitter sends, from the first pulse after a cold start on.
+Lit brightest_of(const Design& design, const EmitterArray& array, const std::optional<Chip>& chip) {
+    return light_up(design, array, chip ? &*chip : nullptr, &EmitterState::brightest);
 }
 
 // What passes the receiver's filter: zones that have drifted out of its band do not.
 FarField received(FarField field, const Filter& filter, const std::optional<Chip>& chip) {
     if (!chip) return field;
     for (Beam& beam : field.beams)
-        if (std::abs(chip->zone_wavelength[beam.zone] - filter.center) > filter.width / 2) beam.power = 0;
+        if (!passes(filter, chip->zone_wavelength[beam.zone])) beam.power = 0;
     return field;
 }
 
@@ -180,7 +178,8 @@ Assessment work_through(const LoadedDesign& loaded, const Progress& progress) {
     result.points_on_object.assign(scene.objects.size(), 0);
     for (const Point& point : result.points) ++result.points_on_object[point.object];
 
-    result.safety = judge_coldest(loaded.design, array, result.chip, progress);
+    const Lit brightest = brightest_of(loaded.design, array, result.chip);
+    result.safety = judge_safety(brightest.design, brightest.array, progress);
     JudgedRequirements judged = judge_requirements(design, result, link, lights);
     result.requirements = std::move(judged.results);
     result.reaches = std::move(judged.reaches);
@@ -215,11 +214,9 @@ SafetyVerdict assess_safety(const LoadedDesign& loaded, const Progress& progress
     return with_places(loaded, [&] {
         const Design& design = loaded.design;
         const EmitterArray array = build_array(design.emitters, field_sense(design.optics), loaded.folder);
-        const std::optional<Chip> chip = chip_of(design, array, plan_firing(design, array));
-        SafetyVerdict verdict = judge_coldest(design, array, chip, progress);
-        judge_faults(verdict,
-                     light_up(design, array, chip ? &*chip : nullptr, &EmitterState::first_power).array,
-                     progress);
+        const Lit lit = brightest_of(design, array, chip_of(design, array, plan_firing(design, array)));
+        SafetyVerdict verdict = judge_safety(lit.design, lit.array, progress);
+        judge_faults(verdict, lit.array, progress);
         return verdict;
     });
 }

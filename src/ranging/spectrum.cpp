@@ -130,6 +130,10 @@ double lamp_band_irradiance(double colour_temperature, double low, double high) 
     return band * step / 3 / lux;
 }
 
+bool passes(const Filter& filter, double wavelength) {
+    return std::abs(wavelength - filter.center) <= filter.width / 2;
+}
+
 double ambient_band_irradiance(const Environment& environment, const Filter& filter) {
     const double low = filter.center - filter.width / 2, high = filter.center + filter.width / 2;
     switch (environment.source) {

@@ -3,6 +3,7 @@
 
 #include <glint/report/safety_page.h>
 #include <glint/safety/caution.h>
+#include <glint/safety/domain.h>
 
 #include <cmath>
 #include <nlohmann/json.hpp>
@@ -50,6 +51,9 @@ Json json_of(const FaultVerdict& fault) {
 void to_json(Json& json, const SafetyVerdict& verdict) {
     json["caution"] = caution_paragraph;
     json["class"] = short_name(verdict.laser_class);
+    json["notes"] = Json::array();
+    if (touches(second_limit_wavelengths, verdict.light.wavelength))
+        json["notes"].push_back(second_limit_note);
     json["worst_ratio"] = verdict.worst_ratio;
     json["margin"] = verdict.margin;
     json["tolerance_corner"] = verdict.corner;

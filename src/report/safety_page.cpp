@@ -4,6 +4,7 @@
 #include <glint/core/text.h>
 #include <glint/report/safety_page.h>
 #include <glint/safety/caution.h>
+#include <glint/safety/domain.h>
 #include <glint/safety/limits.h>
 
 #include <fmt/format.h>
@@ -130,6 +131,8 @@ std::string safety_section(const SafetyVerdict& verdict) {
             fmt::format("worst of {}: {}", counted(static_cast<long>(verdict.corners), "tolerance corner"),
                         verdict.corner),
             page_width, 2);
+    if (touches(second_limit_wavelengths, verdict.light.wavelength))
+        text += wrapped(second_limit_note, page_width, 2);
     if (verdict.criteria.empty()) return text + "  No light reaches any place where an eye can be.\n";
     text += "\nWhat governs\n";
     text += wrapped(in_words(verdict.criteria.front()), page_width, 2);

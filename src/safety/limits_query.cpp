@@ -1,4 +1,5 @@
 // Gathers everything the limit tables say about one emission.
+#include <glint/safety/caution.h>
 #include <glint/safety/limits_query.h>
 #include "refuse.h"
 
@@ -27,11 +28,7 @@ std::vector<std::string> notes_on(const LimitsQuery& query) {
             "From 400 nm to 600 nm the smaller of the thermal and the photochemical limit is shown; each is "
             "to be "
             "compared with emission inside its own angle of acceptance.");
-    if (touches({1250e-9, 1400e-9}, query.wavelength))
-        notes.emplace_back(
-            "From 1250 nm to 1400 nm the Class 3B limit is a second bound. EU: EN 60825-1:2014/A11:2021 sets "
-            "an "
-            "additional limit here that is not in these tables.");
+    if (touches(second_limit_wavelengths, query.wavelength)) notes.emplace_back(second_limit_note);
     if (query.repetition)
         notes.emplace_back(
             "The pulse criteria are for Class 1, a regular train and a time base of 100 s, as energy per "

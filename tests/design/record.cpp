@@ -73,7 +73,8 @@ TEST_CASE("a field in the wrong element is told where it belongs") {
     const std::string text = problems_with("<drive ", "<drive f_number=\"2\" ");
     CHECK(holds(text, "the field of that name is") ==
           false);  // not below <drive>: only its own fields are named
-    CHECK(holds(text, "drive/f_number: unknown field 'f_number'; accepted: by, peak_power, current, pulse_width "
+    CHECK(holds(text,
+                "drive/f_number: unknown field 'f_number'; accepted: by, peak_power, current, pulse_width "
                 "or shape"));
     CHECK(holds(problems_with("<receiver>", "<receiver f_number=\"2\">"),
                 "the field of that name is lens/f_number"));

@@ -245,6 +245,26 @@ TEST_CASE("a hot chip drifts to longer wavelengths") {
     CHECK(all.zone_wavelength[0] - 940e-9 <= 0.07e-9 * (hottest - 298.15));
 }
 
+TEST_CASE("the brightest moment counts, also when a cold chip shines less") {
+    // A threshold that is lowest at 360 K: cold diodes hardly shine, and light grows as they warm up.
+    Design design = always_on(4, 4, 40e-6);
+    design.emitters.diode.threshold_temperature = 360, design.emitters.diode.threshold_width = 60;
+    design.emitters.heat.sink_temperature = 233;
+    design.drive.current = 6e-3;
+    const Worked chip = worked(design);
+    const Chip all = work_chip(design, chip.array, chip.plan);
+    for (const EmitterState& emitter : all.state.emitters)
+        CHECK(emitter.brightest >= std::max({emitter.first_power, emitter.power, emitter.last_power}));
+    CHECK(all.state.emitters[0].brightest >
+          1.001 * operate(chip.model.diode.model, 6e-3, chip.model.sink_temperature).power);
+    // In the usual case it is the cold start: brighter than the first pulse of a warm chip.
+    const Worked usual = worked(always_on(4, 4, 40e-6));
+    const ChipState warm = chip_state(usual.model, 8e-3);
+    CHECK(warm.emitters[5].brightest ==
+          about(operate(usual.model.diode.model, 8e-3, usual.model.sink_temperature).power).epsilon(1e-12));
+    CHECK(warm.emitters[5].brightest > warm.emitters[5].first_power);
+}
+
 TEST_CASE("pulses of other shapes count by their energy") {
     Design design = grid(1, 1, 40e-6);
     const Worked chip = worked(design);
@@ -252,4 +272,13 @@ TEST_CASE("pulses of other shapes count by their energy") {
     design.drive.shape = PulseShape::half_sine;
     CHECK(light_up(design, chip.array, nullptr, &EmitterState::power).design.drive.peak_power ==
           about(3 / 3.14159265358979).epsilon(1e-9));
+}
+
+TEST_CASE("the heat and the light of a shaped pulse are those of its energy") {
+    // Gaussian: 1.0645 times the width at half maximum (sqrt(pi / (4 ln 2))).
+    Design design = grid(2, 2, 40e-6);
+    const Worked rectangular = worked(design);
+    design.drive.shape = PulseShape::gaussian;
+    const Worked gaussian = worked(design);
+    CHECK(gaussian.model.duty == about(1.0645 * rectangular.model.duty).epsilon(1e-4));
 }

@@ -49,6 +49,24 @@ TEST_CASE("safety prints one JSON object with the keys that are promised") {
     CHECK(answer["faults"][1]["worst_ratio"].get<double>() <= 2 * ratio * 1.105);
 }
 
+TEST_CASE("from 1250 nm to 1400 nm every verdict tells of the European limit that is missing") {
+    const Folder folder;
+    folder.write("scene.xml", small_scene);
+    const auto at = [&](const std::string& wavelength) {
+        std::string text =
+            replaced(small_design, "wavelength=\"940 nm\"", "wavelength=\"" + wavelength + "\"");
+        text = replaced(text, "center=\"940 nm\"", "center=\"" + wavelength + "\"");
+        return folder.write("band.xml", text);
+    };
+    for (const char* wavelength : {"1250 nm", "1310 nm", "1400 nm"}) {
+        CHECK(holds(run("glintplan safety " + at(wavelength)).out, "A11:2021"));
+        const auto answer = nlohmann::json::parse(run("glintplan safety --json " + at(wavelength)).out);
+        REQUIRE(answer["notes"].size() == 1);
+        CHECK(holds(answer["notes"][0].get<std::string>(), "A11:2021"));
+    }
+    CHECK(!holds(run("glintplan safety " + at("1240 nm")).out, "A11:2021"));
+}
+
 TEST_CASE("the page begins with the caution and names what governs and every fault") {
     const Folder folder;
     const Run asked = run("glintplan safety " + with_eye_safety(folder, "<faults><all_zones/></faults>"));

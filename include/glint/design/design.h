@@ -118,8 +118,8 @@ enum class FiringOrder { raster, serpentine, stride, bit_reversed, farthest_next
 /// When which zone fires.
 struct Firing {
     FiringOrder order = FiringOrder::raster;
-    int stride = 1;  ///< stride: zones from one that fires to the next
-    int seed = 1;    ///< shuffled, best
+    int stride = 1;              ///< stride: zones from one that fires to the next
+    int seed = 1;                ///< shuffled, best
     double exposure_weight = 1;  ///< best: of each score, see OrderScore
     double heat_weight = 1;
     double spacing_weight = 1;

@@ -26,10 +26,10 @@ struct ChipModel {
     HeatCoupling coupling;
     double sink_temperature = 0;  ///< [K]
     double self_resistance = 0;   ///< of the steady average [K/W]
-    double duty = 0;              ///< share of a frame in which an emitter fires
+    double duty = 0;              ///< average over peak power of an emitter
     /// [n] rise at the end of a dwell above the average of the frame, per watt of each emitter's heat in a
-    /// pulse [K/W]: by itself and by the emitters that fire with it. From superposed step responses; an upper
-    /// bound.
+    /// pulse [K/W]: by itself and by the emitters that fire with it. From superposed step responses of
+    /// rectangular pulses with the peak and the energy of the real ones.
     std::vector<double> dwell_rise;
 };
 [[nodiscard]] ChipModel chip_model(const Design& design, const EmitterArray& array, const FiringPlan& plan);
@@ -39,6 +39,7 @@ struct EmitterState {
     double average_temperature = 0;  ///< over the frame, and at the first pulse of a dwell [K]
     double last_temperature = 0;     ///< at the end of the last pulse of a dwell [K]
     double first_power = 0;          ///< optical, at the first pulse [W]
+    double brightest = 0;            ///< optical, at any temperature from the sink's to the last [W]
     double power = 0;                ///< half way up [W]
     double last_power = 0;           ///< at the last [W]
     double voltage = 0;              ///< half way up [V]
@@ -64,8 +65,7 @@ struct ChipState {
 
 /// What the driver of the heaviest channel has to do.
 struct DriverState {
-    DriverCount count;
-    DriverLoad load;       ///< currents 0 when the current of an emitter is not known
+    DriverLoad load;
     double supply = 0;     ///< given, or needed [V]
     double rise_time = 0;  ///< reached, or asked for [s]
     double storage = 0;  ///< ramp: capacitance beside a channel for one dwell; resonant: of its capacitor [F]

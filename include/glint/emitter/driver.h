@@ -110,8 +110,8 @@ struct ChargedCapacitor {
 
 /// The capacitor whose discharge has this FWHM [s] and peak current [A], both > 0. Without resistance
 /// C = (1.5 FWHM / pi)^2 / L and voltage = V + peak sqrt(L/C); resistance is allowed for.
-/// Error: a pulse so long that this loop would be damped to 1 or more.
-[[nodiscard]] ChargedCapacitor capacitor_for(const DriveLoop& loop, double fwhm, double peak);
+/// None for a pulse so long that this loop would be damped to 1 or more.
+[[nodiscard]] std::optional<ChargedCapacitor> capacitor_for(const DriveLoop& loop, double fwhm, double peak);
 
 /// Energy over peak power [s]: the width of the rectangular pulse of the same energy and peak. In units of
 /// the FWHM: 1, 3/pi = 0.955 and sqrt(pi / (4 ln 2)) = 1.064.

@@ -15,6 +15,9 @@ namespace glint {
 /// Irradiance in a band of a Planckian lamp of a colour temperature that gives one lux [W/m2/lx].
 [[nodiscard]] double lamp_band_irradiance(double colour_temperature, double low, double high);
 
+/// Whether a wavelength [m] lies in the pass band of a filter.
+[[nodiscard]] bool passes(const Filter& filter, double wavelength);
+
 /// Irradiance that the ambient light puts on a surface within the filter's pass band [W/m2], filter losses
 /// not counted. Sun: the G173 spectrum scaled to the illuminance; exact only for that spectral shape,
 /// pessimistic in shade. Lamp: a Planckian scaled to the illuminance.

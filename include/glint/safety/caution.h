@@ -20,4 +20,9 @@ inline constexpr std::string_view caution_paragraph =
 inline constexpr std::string_view caution_line =
     "Early-design estimate from nominal data; no laser classification, no permission to expose anybody.";
 
+/// What every verdict from 1250 nm to 1400 nm has to say.
+inline constexpr std::string_view second_limit_note =
+    "From 1250 nm to 1400 nm the Class 3B limit is a second bound. EU: EN 60825-1:2014/A11:2021 sets an "
+    "additional limit here that is not in these tables: have it checked before relying on this class.";
+
 }  // namespace glint

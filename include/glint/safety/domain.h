@@ -11,11 +11,12 @@ struct Interval {
     bool operator==(const Interval&) const = default;
 };
 
-inline constexpr Interval limit_wavelengths{400e-9, 1800e-9};         // m, the bands the tables hold
-inline constexpr Interval retinal_wavelengths{400e-9, 1400e-9};       // m, light that reaches the retina
-inline constexpr Interval photochemical_wavelengths{400e-9, 600e-9};  // m
-inline constexpr Interval limit_durations{1e-13, 3e4};                // s
-inline constexpr Interval limit_subtenses{0, 3.1415927};              // rad, up to a half space
+inline constexpr Interval limit_wavelengths{400e-9, 1800e-9};          // m, the bands the tables hold
+inline constexpr Interval retinal_wavelengths{400e-9, 1400e-9};        // m, light that reaches the retina
+inline constexpr Interval second_limit_wavelengths{1250e-9, 1400e-9};  // m, see second_limit_note
+inline constexpr Interval photochemical_wavelengths{400e-9, 600e-9};   // m
+inline constexpr Interval limit_durations{1e-13, 3e4};                 // s
+inline constexpr Interval limit_subtenses{0, 3.1415927};               // rad, up to a half space
 
 /// True when `x` lies in the interval or within one part in 1e9 of its ends, so that a bound reached by
 /// arithmetic (0.35 s as 3.5e-1, 1400 nm as 1400 * 1e-9) belongs to both cells that meet there. The tables
