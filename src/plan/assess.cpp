@@ -135,6 +135,18 @@ Lit brightest_of(const Design& design, const EmitterArray& array, const std::opt
     return light_up(design, array, chip ? &*chip : nullptr, &EmitterState::brightest);
 }
 
+void refuse_lost_band(const Filter& filter, const std::optional<Chip>& chip) {
+    if (!chip || std::ranges::any_of(chip->zone_wavelength, [&](double w) { return passes(filter, w); }))
+        return;
+    const auto [shortest, longest] = std::ranges::minmax(chip->zone_wavelength);
+    throw Error(Problem{
+        .what =
+            fmt::format("every zone has drifted out of the filter's band, to {} to {}",
+                        show_quantity(shortest, Kind::length, 5), show_quantity(longest, Kind::length, 5)),
+        .accepted = "a pass band that holds the wavelengths of the warm chip, or a cooler chip",
+        .path = "receiver/filter/center"});
+}
+
 // What passes the receiver's filter: zones that have drifted out of its band do not.
 FarField received(FarField field, const Filter& filter, const std::optional<Chip>& chip) {
     if (!chip) return field;
@@ -164,6 +176,7 @@ Assessment work_through(const LoadedDesign& loaded, const Progress& progress) {
     const FarField field = far_field(result.beams);
 
     const Scene scene = load_scene_of(loaded);
+    refuse_lost_band(design.receiver.filter, result.chip);
     const FarField in_band = received(field, design.receiver.filter, result.chip);
     const Link link = make_link(design, result.plan, in_band);
     const std::vector<PixelLight> lights = pixel_lights(link, progress);

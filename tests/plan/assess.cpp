@@ -1,6 +1,7 @@
 // The assessment as a whole: requirements against what was got, and what must hold between its parts.
 #include "about.h"
 
+#include <glint/core/error.h>
 #include <glint/core/files.h>
 #include <glint/plan/assess.h>
 
@@ -89,6 +90,57 @@ TEST_CASE("the zone that lights a pixel is the one whose part of the field it is
     CHECK(result.zones[0].field.direction.y() > 0);
     CHECK(result.zones[0].field.direction.z() > 0);
     CHECK(result.zones[11].field.direction.y() < 0);
+}
+
+// The small module with diodes that heat up.
+Module driven_by_current() {
+    Module module;
+    Emitters& emitters = module.loaded.design.emitters;
+    emitters.heat.package_resistance = 0, emitters.heat.substrate_thickness = 100e-6;
+    module.loaded.design.drive.by = DriveBy::current;
+    module.loaded.design.drive.current = 20e-3;
+    return module;
+}
+
+TEST_CASE("eye safety counts with the brightest moment of the diodes") {
+    Module module = driven_by_current();
+    const Assessment driven = module.assessed();
+    REQUIRE(driven.chip);
+    // At the sink's temperature all are equally bright.
+    module.loaded.design.drive.by = DriveBy::data_sheet;
+    module.loaded.design.drive.peak_power = driven.chip->state.emitters.front().brightest;
+    CHECK(driven.safety.worst_ratio == about(module.assessed().safety.worst_ratio).epsilon(1e-9));
+    CHECK(driven.chip->state.emitters.front().brightest > 1.001 * mean_power(driven.chip->state));
+}
+
+TEST_CASE("zones that drift out of the filter send nothing back, and a finding says so") {
+    Module module = driven_by_current();
+    // On nearly all the time, so that the middle of the chip is hotter than its corners.
+    module.loaded.design.drive.pulse_width = 300e-9;
+    const Assessment whole = module.assessed();
+    const std::vector<double>& wavelength = whole.chip->zone_wavelength;
+    const auto [shortest, longest] = std::ranges::minmax(wavelength);
+    REQUIRE(longest - shortest > 1e-12);
+    // A band that ends between them.
+    const double end = (shortest + longest) / 2;
+    Filter& filter = module.loaded.design.receiver.filter;
+    filter.width = 2 * (end - 935e-9) / 2, filter.center = 935e-9 + filter.width / 2;
+    const Assessment cut = module.assessed();
+    const auto told = [](const Assessment& assessment) {
+        return std::ranges::any_of(assessment.findings, [](const std::string& finding) {
+            return finding.find("drifted out of the filter") != std::string::npos;
+        });
+    };
+    CHECK(!told(whole));
+    CHECK(told(cut));
+    for (std::size_t zone = 0; zone < wavelength.size(); ++zone) {
+        CAPTURE(zone);
+        CHECK((cut.zones[zone].returns == 0) == (wavelength[zone] > end));
+        CHECK(cut.zones[zone].landing.landed == about(whole.zones[zone].landing.landed).epsilon(1e-12));
+    }
+    // All of them out: told why nothing is seen.
+    filter.width = 4e-9, filter.center = 938e-9;
+    CHECK_THROWS_WITH_AS((void)module.assessed(), doctest::Contains("drifted out of the filter"), Error);
 }
 
 TEST_CASE("more power reaches farther and is never safer") {
